@@ -1,0 +1,1 @@
+"""Effects: combinations, frame analysis, envelope, zero-force inspection."""

@@ -1,0 +1,1 @@
+"""What is given: the job file and the tables."""

@@ -1,0 +1,1 @@
+"""Choice: sizes, comparison of shapes."""

@@ -1,0 +1,1 @@
+"""Actions: load cases by the standards."""

@@ -1,0 +1,1 @@
+"""Faces: schedules, workbook, result file, terminal."""

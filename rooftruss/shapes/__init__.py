@@ -1,0 +1,1 @@
+"""Geometry: parametric shapes to nodes and members."""

@@ -1,0 +1,1 @@
+"""Strength: member checks by the timber standards."""
