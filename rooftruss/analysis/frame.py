@@ -1,0 +1,242 @@
+"""Plane frame: one stiffness matrix per truss, every load case a right-hand side of it.
+
+Members are Bernoulli-Euler beams on their centre lines; moment-free ends are condensed into the element.
+Batch axes lead; `b` below stands for one flattened batch axis.
+"""
+
+from dataclasses import dataclass, replace
+from functools import cache
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.analysis.freedoms import DIRECTIONS, Freedoms, bending_coefficients, freedoms, shape_coefficients
+from rooftruss.errors import UnstableTrussError
+from rooftruss.loads.cases import LoadCases
+from rooftruss.shapes.truss import Topology, Truss
+
+Array = NDArray[np.float64]
+SINGULAR = 1e-11  # smallest eigenvalue of the scaled stiffness below which the truss counts as a mechanism
+
+
+@dataclass(frozen=True, kw_only=True)
+class Solution:
+    """Movements and end forces of every case.
+
+    displacements (..., c, node, 2) [m], rotations at member ends are not kept; end_forces (..., c, m, 6) in member
+    axes [axial, transverse, moment] at start and end, acting on the member [N, N m]; reactions (..., c, support, 2) [N]
+    """
+
+    displacements: Array
+    end_forces: Array
+    reactions: Array
+
+
+def solve(truss: Truss, stiffness_axial: Array, stiffness_bending: Array, cases: LoadCases) -> Solution:
+    """Solve all cases of a batch with one factorisation per truss.
+
+    stiffness_axial EA [N] and stiffness_bending EI [N m2] are (..., m).
+    Raises UnstableTrussError that names a joint and a direction when the truss is a mechanism.
+    """
+    batch = cases.q.shape[:-3]
+    number = freedoms(truss.topology)
+    length = _flat(truss.length, batch, 1)
+    direction = _flat(truss.direction, batch, 2)
+    ea, ei = _flat(stiffness_axial, batch, 1), _flat(stiffness_bending, batch, 1)
+    on_member = _equivalent_forces(truss.topology, cases, length, direction, batch)
+    load = _to_nodes(number, _rotate(on_member, direction, back=True))
+    load[..., number.of_node] += _flat(cases.nodal, batch, 3)
+    movement = np.zeros((*load.shape[:2], number.total + 1))
+    movement[..., : number.free] = _factor_and_solve(truss, number, _stiffness(truss.topology, ea, ei, length, direction), load)
+    local = _rotate(movement[..., number.of_member], direction, back=False)
+    forces = _end_forces(truss.topology, local, ea, ei, length) - on_member
+    return Solution(
+        displacements=movement[..., number.of_node].reshape(*batch, -1, len(truss.topology.nodes), 2),
+        end_forces=forces.reshape(*batch, *forces.shape[1:]),
+        reactions=_reactions(number, truss.topology, forces, direction, _flat(cases.nodal, batch, 3)).reshape(
+            *batch, len(cases.heads), -1, 2
+        ),
+    )
+
+
+def _flat(array: Array, batch: tuple[int, ...], own: int) -> Array:
+    """`array` with its batch axes broadcast and joined to one."""
+    tail = array.shape[array.ndim - own :]
+    return np.ascontiguousarray(np.broadcast_to(array, (*batch, *tail))).reshape(-1, *tail)
+
+
+def _equivalent_forces(
+    topology: Topology, cases: LoadCases, length: Array, direction: Array, batch: tuple[int, ...]
+) -> Array:
+    """Forces (b, c, m, 6) in member axes that the member loads put on the ends: integral of load times shape function."""
+    moments_along, moments_across = _load_moments(cases, length, direction, batch)
+    a = shape_coefficients(topology)
+    across = np.matmul(moments_across[..., None, :], np.swapaxes(a, 1, 2))[..., 0, :]  # (b, c, m, 4)
+    out = np.empty((*across.shape[:-1], 6))
+    out[..., 0] = moments_along[..., 0] - moments_along[..., 1]
+    out[..., 3] = moments_along[..., 1]
+    out[..., [1, 2, 4, 5]] = across
+    out[..., [2, 5]] *= length[:, None, :, None]
+    return out
+
+
+def _load_moments(
+    cases: LoadCases, length: Array, direction: Array, batch: tuple[int, ...]
+) -> tuple[Array, Array]:
+    """Integrals of load times xi^k over each member, k = 0..1 along and 0..3 across it: (b, c, m, 2), (b, c, m, 4)."""
+    member = np.array(cases.member_of)
+    span = length[:, member]
+    a, b = _flat(cases.x0, batch, 1) / span, _flat(cases.x1, batch, 1) / span
+    powers = np.stack([(b ** (k + 1) - a ** (k + 1)) * span / (k + 1) for k in range(4)], axis=-1)  # (b, s, 4)
+    q = _flat(cases.q, batch, 3)
+    cos, sin = direction[:, None, member, 0], direction[:, None, member, 1]
+    along = q[..., 0] * cos + q[..., 1] * sin
+    across = q[..., 1] * cos - q[..., 0] * sin
+    first = np.searchsorted(member, np.arange(length.shape[1]))
+    moments_along = np.add.reduceat(along[..., None] * powers[:, None, :, :2], first, axis=2)
+    moments_across = np.add.reduceat(across[..., None] * powers[:, None, :, :], first, axis=2)
+    for p in cases.points:
+        xi = _flat(p.at, batch, 0) / length[:, p.member]
+        c, s = direction[:, p.member, 0], direction[:, p.member, 1]
+        fx, fy = _flat(p.fx, batch, 0), _flat(p.fy, batch, 0)
+        power = np.stack([xi**k for k in range(4)], axis=-1)
+        moments_along[:, p.case, p.member, :] += (fx * c + fy * s)[:, None] * power[:, :2]
+        moments_across[:, p.case, p.member, :] += (fy * c - fx * s)[:, None] * power
+    return moments_along, moments_across
+
+
+def _rotate(values: Array, direction: Array, *, back: bool) -> Array:
+    """Member-end values (b, c, m, 6) from global to member axes, or back."""
+    cos, sin = direction[:, None, :, 0], direction[:, None, :, 1] * (-1.0 if back else 1.0)
+    out = np.empty_like(values)
+    for k in (0, 3):
+        out[..., k] = cos * values[..., k] + sin * values[..., k + 1]
+        out[..., k + 1] = cos * values[..., k + 1] - sin * values[..., k]
+        out[..., k + 2] = values[..., k + 2]
+    return out
+
+
+def _to_nodes(number: Freedoms, at_ends: Array) -> Array:
+    """Sum of member-end values over the movements (b, c, total + 1)."""
+    return at_ends.reshape(*at_ends.shape[:2], -1) @ number.incidence
+
+
+def _stiffness(topology: Topology, ea: Array, ei: Array, length: Array, direction: Array) -> Array:
+    """Stiffness matrices of the free movements (b, free, free).
+
+    Entries of all members are formed with the batch axis last (whole vectors at a time) and summed entry by entry.
+    """
+    number = freedoms(topology)
+    local = _local_stiffness(topology, ea.T, ei.T, length.T)
+    cos, sin = np.ascontiguousarray(direction[..., 0].T), np.ascontiguousarray(direction[..., 1].T)
+    turned = _turn_rows(local, cos, sin)
+    turned = np.swapaxes(_turn_rows(np.swapaxes(turned, 1, 2), cos, sin), 1, 2)
+    order, first, rows, columns = _scatter(topology)
+    entries = np.add.reduceat(turned.reshape(-1, ea.shape[0])[order], first, axis=0)
+    out = np.zeros((ea.shape[0], number.free, number.free))
+    out[:, rows, columns] = entries.T
+    return out
+
+
+def _local_stiffness(topology: Topology, ea: Array, ei: Array, length: Array) -> Array:
+    """Element stiffness in member axes (m, 6, 6, b) from vectors (m, b)."""
+    bending = bending_coefficients(topology)
+    out = np.zeros((ea.shape[0], 6, 6, ea.shape[1]))
+    axial = ea / length
+    out[:, 0, 0], out[:, 3, 3], out[:, 0, 3], out[:, 3, 0] = axial, axial, -axial, -axial
+    scale = [ei / length**3, ei / length**2, ei / length]
+    at = (1, 2, 4, 5)
+    for i in range(4):
+        for j in range(4):
+            out[:, at[i], at[j]] = bending[:, i, j, None] * scale[i % 2 + j % 2]
+    return out
+
+
+def _turn_rows(local: Array, cos: Array, sin: Array) -> Array:
+    """Rows of (m, 6, 6, b) from member to global axes."""
+    out = local.copy()
+    c, s = cos[:, None, :], sin[:, None, :]
+    for k in (0, 3):
+        out[:, k] = c * local[:, k] - s * local[:, k + 1]
+        out[:, k + 1] = s * local[:, k] + c * local[:, k + 1]
+    return out
+
+
+@cache
+def _scatter(topology: Topology) -> tuple[NDArray[np.intp], ...]:
+    """How the 36 m element entries add up to entries of the stiffness: order, starts of equal runs, rows, columns."""
+    number = freedoms(topology)
+    rows = np.repeat(number.of_member[:, :, None], 6, axis=2).ravel()
+    columns = np.repeat(number.of_member[:, None, :], 6, axis=1).ravel()
+    kept = np.flatnonzero((rows < number.free) & (columns < number.free))
+    place = rows[kept] * number.free + columns[kept]
+    order = kept[np.argsort(place, kind="stable")]
+    places, first = np.unique(np.sort(place), return_index=True)
+    return order, first, places // number.free, places % number.free
+
+
+def _factor_and_solve(truss: Truss, number: Freedoms, stiffness: Array, load: Array) -> Array:
+    """Movements (b, c, free) under loads (b, c, total + 1)."""
+    right = np.swapaxes(load[..., : number.free], 1, 2)
+    try:
+        found = np.linalg.solve(stiffness, right)
+    except np.linalg.LinAlgError:
+        require_stable(truss.topology, stiffness)
+        raise UnstableTrussError("the truss is a mechanism; add a member or a support") from None
+    return np.swapaxes(found, 1, 2)
+
+
+def require_stable(topology: Topology, stiffness: Array) -> None:
+    """Raise UnstableTrussError naming the joint that moves most and its direction in the softest mode.
+
+    stiffness (b, free, free). A mechanism has an eigenvalue of zero in the diagonally scaled matrix.
+    """
+    number = freedoms(topology)
+    for matrix in stiffness:
+        diagonal = matrix.diagonal()
+        idle = np.flatnonzero(diagonal <= 0)
+        scale = 1 / np.sqrt(np.where(diagonal > 0, diagonal, 1.0))
+        values, modes = np.linalg.eigh(matrix * np.outer(scale, scale))
+        if idle.size or values[0] < SINGULAR:
+            worst = idle[0] if idle.size else int(np.abs(modes[:, 0] * scale).argmax())
+            node, direction = number.label[worst]
+            raise UnstableTrussError(
+                f"{topology.shape}: joint {topology.nodes[node]} can move {DIRECTIONS[direction]}; "
+                "add a member or a support there"
+            )
+
+
+def stiffness_matrix(truss: Truss, stiffness_axial: Array, stiffness_bending: Array) -> Array:
+    """Stiffness of the free movements (..., free, free) of a batch, for stability checks and tests."""
+    batch = np.broadcast_shapes(truss.length.shape[:-1], stiffness_axial.shape[:-1])
+    flat = [_flat(x, batch, own) for x, own in ((stiffness_axial, 1), (stiffness_bending, 1), (truss.length, 1), (truss.direction, 2))]
+    out = _stiffness(truss.topology, *flat)
+    return out.reshape(*batch, *out.shape[1:])
+
+
+def _end_forces(topology: Topology, local: Array, ea: Array, ei: Array, length: Array) -> Array:
+    """Forces (b, c, m, 6) on the member ends from their movements in member axes."""
+    bending = bending_coefficients(topology)
+    out = np.empty_like(local)
+    out[..., 3] = (ea / length)[:, None, :] * (local[..., 3] - local[..., 0])
+    out[..., 0] = -out[..., 3]
+    across = local[..., [1, 2, 4, 5]]
+    across[..., [1, 3]] *= length[:, None, :, None]
+    forces = np.matmul(across[..., None, :], bending)[..., 0, :] * (ei / length**3)[:, None, :, None]
+    forces[..., [1, 3]] *= length[:, None, :, None]
+    out[..., [1, 2, 4, 5]] = forces
+    return out
+
+
+def _reactions(number: Freedoms, topology: Topology, forces: Array, direction: Array, nodal: Array) -> Array:
+    """Forces of the supports on the truss (b, c, support, 2); zero in a direction that is not held."""
+    total = _to_nodes(number, _rotate(forces, direction, back=True))
+    total[..., number.of_node] -= nodal
+    nodes = [s.node for s in topology.supports]
+    held = np.array([[s.horizontal, s.vertical] for s in topology.supports], dtype=float)
+    return total[..., number.of_node[nodes]] * held
+
+
+def pin_jointed(topology: Topology) -> Topology:
+    """The same truss with every member pinned at both ends (loads then act at the joints only)."""
+    return replace(topology, members=tuple(replace(m, pinned_start=True, pinned_end=True) for m in topology.members))
