@@ -1,7 +1,8 @@
 """The job: everything the estimator gave, checked, in SI and frozen. `jobform` makes it from a file."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
+from pathlib import Path
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -103,6 +104,7 @@ class Job:
     """A whole job file. `site` holds the load standard's own keys, SI numbers or words, every default filled in."""
 
     source: str  # file name for messages
+    folder: str  # folder of the file, for scheme files beside it
     title: str
     client: str
     number: str
@@ -113,3 +115,5 @@ class Job:
     limits: LimitSpec
     trusses: tuple[TrussSpec, ...]
     assumptions: tuple[Assumption, ...]
+    folder: Path = Path()  # where the file lies; paths in it start there
+    given: Mapping[str, object] = field(default_factory=dict, repr=False)  # as written: a like job is read from it

@@ -1,0 +1,122 @@
+"""The keys of a job file, read from tables/jobform: what each may hold, its default and the words printed for it.
+
+A further load or timber standard adds one file there; nothing here asks which standard is in force.
+"""
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from functools import cache
+from typing import Any, cast
+
+from rooftruss.basis import grades, sections
+from rooftruss.basis.kinds import RESISTANCE, SI_UNIT, Choice, Kind, Names, Number, Pitch, Quantity, RestraintKind, Text
+from rooftruss.basis.tables import data_folder, read_settings
+from rooftruss.errors import TableError
+
+FOLDER = "jobform"
+Entry = Mapping[str, Any]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Key:
+    """One key of one table of the job file."""
+
+    name: str
+    kind: Kind
+    help: str
+    default: Mapping[str, object] | None = None  # as written, by system of units; None: see the next two
+    same_as: str = ""  # key of the same table whose value stands for this one
+    optional: bool = False  # may be left out, and then is None ("" for text)
+    assumption: str = ""  # sentence printed when the default is used
+    source: str = ""
+    only: tuple[str, ...] = ()  # standards that know the key; () is all that the file serves
+    needed_with: Mapping[str, str] | None = None  # required only where another key holds this word
+    idle_without: str = ""  # key that makes this one unnecessary when it is zero
+
+
+Keys = Mapping[str, Key]
+Form = Mapping[str, Keys]
+
+
+@cache
+def common_form() -> Form:
+    """Keys that every standard shares, by table: job, standard, loads, point, timber, chord, web, deflection, truss."""
+    return _form("form")
+
+
+@cache
+def form_for(load_standard: str, timber_standard: str) -> Form:
+    """All keys of a job under these standards: those of `common_form`, and what each standard adds to its tables.
+
+    Raises TableError for a standard that no file of tables/jobform serves.
+    """
+    merged = {table: dict(keys) for table, keys in common_form().items()}
+    for family, name in (("load", load_standard), ("timber", timber_standard)):
+        for table, keys in _form(_file_serving(family, name)).items():
+            merged.setdefault(table, {}).update(keys)
+    return merged
+
+
+def _file_serving(family: str, standard: str) -> str:
+    """Name of the file of a family ("load" or "timber") whose keys belong to a standard such as "NDS 2018 ASD"."""
+    names = sorted(path.stem for path in (data_folder("tables") / FOLDER).glob(f"{family}_*.toml"))
+    served: list[str] = []
+    for name in names:
+        about = cast(Entry, read_settings(f"{FOLDER}/{name}")["about"])
+        served += about["serves"]
+        if any(standard == known or standard.startswith(f"{known} ") for known in about["serves"]):
+            return name
+    raise TableError(f"no job keys for the {family} standard {standard!r}; tables/{FOLDER} serves {', '.join(served)}")
+
+
+def _form(file: str) -> dict[str, dict[str, Key]]:
+    tables = cast(Mapping[str, Mapping[str, Entry]], read_settings(f"{FOLDER}/{file}"))
+    return {
+        table: {name: _key(f"{file}.toml [{table}.{name}]", name, entry) for name, entry in keys.items()}
+        for table, keys in tables.items()
+        if table != "about"
+    }
+
+
+def _key(place: str, name: str, entry: Entry) -> Key:
+    rest = dict(entry)
+    try:
+        kind = _KINDS[rest.pop("kind")](rest)
+        default = {"US": rest.pop("default")} if "default" in rest else None
+        if default is not None:
+            default["metric"] = rest.pop("metric_default", default["US"])
+        return Key(name=name, kind=kind, default=default, only=tuple(rest.pop("only", ())), **rest)
+    except (KeyError, TypeError) as error:
+        raise TableError(f"{place}: {error}") from None
+
+
+def _take(entry: dict[str, Any], *names: str) -> dict[str, Any]:
+    """Remove those of `names` that the entry holds; lists become tuples."""
+    found = {name: entry.pop(name) for name in names if name in entry}
+    return {name: tuple(value) if isinstance(value, list) else value for name, value in found.items()}
+
+
+def _quantity(shows: str, unit: str) -> Callable[[dict[str, Any]], Kind]:
+    return lambda entry: Quantity(shows=shows, unit=unit, **_take(entry, "limits"))
+
+
+def _names(entry: dict[str, Any]) -> Names:
+    return _CATALOGUES[entry.pop("catalogue")]
+
+
+_CATALOGUES = {
+    "grades": Names(known=grades.find_grade, example='["SPF No.1/No.2"]'),
+    "sections": Names(known=sections.find_section, example='["2x4", "2x6"]'),
+}
+_KINDS: dict[str, Callable[[dict[str, Any]], Kind]] = {
+    "text": lambda entry: Text(**_take(entry, "longest", "may_be_empty", "pattern", "rule")),
+    "choice": lambda entry: Choice(**_take(entry, "choices")),
+    "flag": lambda entry: Choice(choices=(True, False)),
+    "number": lambda entry: Number(**_take(entry, "limits")),
+    "whole": lambda entry: Number(whole=True, **_take(entry, "limits")),
+    "pitch": lambda entry: Pitch(**_take(entry, "limits")),
+    "restraint": lambda entry: RestraintKind(**_take(entry, "words", "limits")),
+    "names": _names,
+    "thermal resistance": _quantity("", RESISTANCE),
+    **{shows: _quantity(shows, unit) for shows, unit in SI_UNIT.items()},
+}

@@ -1,0 +1,160 @@
+"""Reads the [[truss]] tables of a job with the keys of [loads] and [timber] that each overrides."""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from typing import Any
+
+from rooftruss.basis.job import GroupTimber, LoadSpec, PointLoad, TimberSpec, TrussSpec
+from rooftruss.basis.jobkeys import Form, Key
+from rooftruss.basis.kinds import Choice
+from rooftruss.basis.tablereader import Entries, Given, TableReader, entries
+from rooftruss.basis.written import told
+
+MOST_TRUSSES = 500
+GROUPS = {"top_chord": "chord", "bottom_chord": "chord", "web": "web"}  # key of [timber] -> table of the form
+_ANY = Key(name="", kind=Choice(choices=()), help="")  # stands for a key whose value is read elsewhere
+
+
+@dataclass(frozen=True, slots=True)
+class TrussReader:
+    """Reads each [[truss]] with the keys of [loads] and [timber] that it overrides."""
+
+    reader: TableReader
+    form: Form
+    loads: Entries  # as given in [loads]
+    timber: Entries
+
+    def trusses(self, given: object) -> tuple[TrussSpec, ...]:
+        """All trusses, or those that are right; mistakes have been noted."""
+        self._check_common()
+        if given is None or given == []:
+            self.reader.problem(
+                "[[truss]]", "there is none; add at least one, with its mark, shape, span, pitch, spacing"
+            )
+            return ()
+        if not isinstance(given, list | tuple) or not all(isinstance(t, Mapping) for t in given):
+            self.reader.problem(
+                "[[truss]]", "is not a list of tables; write [[truss]], in two brackets, over each truss"
+            )
+            return ()
+        if len(given) > MOST_TRUSSES:
+            self.reader.problem("[[truss]]", f"there are {len(given)}; a job has at most {MOST_TRUSSES}")
+            return ()
+        self._refuse_twins(given)
+        read = [self._truss(table, _place(table, number)) for number, table in enumerate(given, 1)]
+        return tuple(truss for truss in read if truss is not None)
+
+    def _check_common(self) -> None:
+        """Read what [loads] and [timber] give, so that a value every truss overrides is checked too."""
+        self.reader.refuse_unknown({**self.form["loads"], "point": _ANY}, self.loads)
+        self.reader.refuse_unknown({**self.form["timber"], **dict.fromkeys(GROUPS, _ANY)}, self.timber)
+        for keys, given in ((self.form["loads"], self.loads), (self.form["timber"], self.timber)):
+            for name, value in given.items():
+                if name in keys:
+                    self.reader.value(keys[name], value)
+
+    def _refuse_twins(self, given: Sequence[Mapping[str, object]]) -> None:
+        seen: dict[str, int] = {}
+        for number, table in enumerate(given, 1):
+            mark = table.get("mark")
+            first = seen.setdefault(mark.strip().casefold(), number) if isinstance(mark, str) else number
+            if first != number:
+                self.reader.problem(
+                    _place(table, number), f"mark: truss {first} has it already; every mark stands once"
+                )
+
+    def _truss(self, table: Mapping[str, object], place: str) -> TrussSpec | None:
+        before = len(self.reader.problems)
+        given = entries(table, place)
+        own, loads, timber = (
+            {name: g for name, g in given.items() if name in keys}
+            for keys in (self.form["truss"], {*self.form["loads"], "point"}, {*self.form["timber"], *GROUPS})
+        )
+        every = {
+            **self.form["truss"],
+            **self.form["loads"],
+            **self.form["timber"],
+            "point": _ANY,
+            **dict.fromkeys(GROUPS, _ANY),
+        }
+        self.reader.refuse_unknown(every, given)
+        values = self.reader.read(self.form["truss"], own, place)
+        load_values = self._loads({**self.loads, **loads})
+        timber_values = self._timber(timber)
+        if len(self.reader.problems) > before:
+            return None
+        truss = TrussSpec(**values, loads=load_values, timber=timber_values)
+        _check_geometry(self.reader, truss, place)
+        return truss
+
+    def _loads(self, given: Entries) -> Any:
+        """LoadSpec, or None after a mistake."""
+        before = len(self.reader.problems)
+        known = {name: g for name, g in given.items() if name in self.form["loads"]}
+        values = self.reader.read(self.form["loads"], known, "[loads]")
+        points = self._points(given["point"]) if "point" in given else ()
+        return LoadSpec(**values, points=points) if len(self.reader.problems) == before else None
+
+    def _points(self, given: Given) -> tuple[PointLoad, ...]:
+        head = f"{given.place} point"
+        if not isinstance(given.value, list | tuple):
+            self.reader.problem(head, "is not a list of tables; write [[loads.point]], in two brackets, over each load")
+            return ()
+        points = []
+        for number, item in enumerate(given.value, 1):
+            place = f"{head} {number}"
+            before = len(self.reader.problems)
+            values = self.reader.read(self.form["point"], self.reader.table(item, place), place)
+            if len(self.reader.problems) == before:
+                points.append(PointLoad(**{**values, "note": values["note"] or ""}))
+        return tuple(points)
+
+    def _timber(self, override: Entries) -> Any:
+        """TimberSpec, or None after a mistake."""
+        before = len(self.reader.problems)
+        plain = {name: g for name, g in {**self.timber, **override}.items() if name in self.form["timber"]}
+        values = self.reader.read(self.form["timber"], plain, "[timber]")
+        groups = {name.replace("_", " "): self._group(name, override.get(name)) for name in GROUPS}
+        if len(self.reader.problems) > before:
+            return None
+        return TimberSpec(groups=groups, longest_stock=values.pop("longest_stock"), options=values)
+
+    def _group(self, name: str, override: Given | None) -> Any:
+        """GroupTimber of "top_chord" and so on, or None after a mistake; an override changes single keys of it."""
+        before = len(self.reader.problems)
+        keys = self.form[GROUPS[name]]
+        given: dict[str, Given] = {}
+        for part in (self.timber.get(name), override):
+            if part is not None and isinstance(part.value, Mapping):
+                given |= entries(part.value, part.place)
+            elif part is not None:
+                example = f"{name} = {{ grades = [...], sizes = [...], restraint = ... }}"
+                self.reader.problem(f"{part.place} {name}", f"{told(part.value)} is not a table; write {example}")
+        if not given and len(self.reader.problems) == before:
+            self.reader.problem(f"[timber] {name}", "is missing; write its grades, sizes and restraint")
+        if not given:
+            return None
+        values = self.reader.read(keys, given, "[timber]", f"{name}.")
+        return GroupTimber(**values) if len(self.reader.problems) == before else None
+
+
+def _place(table: Mapping[str, object], number: int) -> str:
+    mark = table.get("mark")
+    named = isinstance(mark, str) and mark.strip().isprintable() and 0 < len(mark.strip()) <= 20
+    return f"[[truss]] {str(mark).strip() if named else f'number {number}'}"
+
+
+def _check_geometry(reader: TableReader, truss: TrussSpec, place: str) -> None:
+    """Note what is plausible by itself but not together."""
+    if truss.bearing >= truss.span / 4:
+        reader.problem(f"{place} bearing", "must be shorter than a quarter of the span")
+    if truss.overhang >= truss.span / 2:
+        reader.problem(f"{place} overhang", "must be shorter than half the span")
+    if truss.bottom_pitch is not None and truss.bottom_pitch >= truss.pitch:
+        reader.problem(f"{place} bottom_pitch", "must be flatter than the pitch of the top chord")
+    for name in ("roof_dead", "ceiling_dead"):
+        if getattr(truss.loads, f"{name}_least") > getattr(truss.loads, name) * (1 + 1e-9):
+            reader.problem(f"{place} {name}_least", f"is more than {name}; it is the part that is certain to be there")
+    for number, point in enumerate(truss.loads.points, 1):
+        if point.position > truss.span:
+            reader.problem(f"{place} point {number} position", "lies beyond the span of this truss")

@@ -1,0 +1,120 @@
+"""A finished design: a run of one truss, its envelopes, checks and deflections, and what failed."""
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.analysis.envelope import Envelope, Peak, ReactionEnvelope, envelope_of, peak, reaction_envelope
+from rooftruss.basis.job import TrussSpec
+from rooftruss.design.serviceability import Deflections, deflections
+from rooftruss.design.stages import GROUPS, Option, Run
+
+Array = NDArray[np.float64]
+LIMIT = 1.0 + 1e-9  # a utilisation of 1.00 passes
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Outcome:
+    """What decides about a batch of trusses (...,); arrays (..., m), (..., support) and (..., place)."""
+
+    envelope: Envelope
+    reactions: ReactionEnvelope
+    utilisation: Peak  # (..., m)
+    rule: NDArray[np.intp]  # (..., m) number of the governing rule
+    bearing: Peak  # (..., support)
+    deflection: Deflections
+    volume: Array  # timber of one truss (...,) [m3]
+    mass: Array  # (...,) [kg]
+
+    @property
+    def worst(self) -> Array:
+        """Largest of all utilisations and deflection ratios (...,)."""
+        parts = (self.utilisation.value, self.bearing.value, self.deflection.ratio)
+        return np.max(np.stack([p.max(axis=-1) for p in parts]), axis=0)
+
+    @property
+    def passes(self) -> NDArray[np.bool_]:
+        """Whether nothing exceeds its limit (...,)."""
+        return self.worst <= LIMIT
+
+
+def outcome_of(run: Run) -> Outcome:
+    """Envelopes and governing checks of a run."""
+    numbers = np.flatnonzero(run.combinations.strength)
+    utilisation = peak(run.checks.utilisation, numbers, -2)
+    row = np.searchsorted(numbers, np.maximum(utilisation.combination, 0))
+    rule = np.take_along_axis(run.checks.rule, row[..., None, :], -2).squeeze(-2)
+    solid = run.members.breadth * run.members.depth * run.members.plies * run.members.length
+    return Outcome(
+        envelope=envelope_of(run.extremes, numbers),
+        reactions=reaction_envelope(run.reactions, numbers),
+        utilisation=utilisation,
+        rule=rule,
+        bearing=peak(run.bearing, numbers, -2),
+        deflection=deflections(run),
+        volume=solid.sum(axis=-1),
+        mass=(solid * run.members.properties["density"]).sum(axis=-1),
+    )
+
+
+@dataclass(frozen=True, kw_only=True)
+class Design:
+    """One truss of the job, sized and checked."""
+
+    spec: TrussSpec
+    run: Run  # without batch axes
+    outcome: Outcome
+    notes: tuple[str, ...] = ()
+
+    @cached_property
+    def sizes(self) -> dict[str, Option]:
+        """Size and grade of each group."""
+        return {g: self.run.choice.taken(g) for g in GROUPS}
+
+    @property
+    def passes(self) -> bool:
+        """Whether every check and limit is met."""
+        return bool(self.outcome.passes)
+
+    def combination(self, number: int) -> str:
+        """Name of a combination; a dash where nothing acts."""
+        return self.run.combinations.names[number] if number >= 0 else "-"
+
+    @cached_property
+    def failures(self) -> tuple[str, ...]:
+        """One sentence for everything over its limit, worst first."""
+        found = [*self._failed_members(), *self._failed_bearings(), *self._failed_deflections()]
+        return tuple(text for _, text in sorted(found, key=lambda pair: -pair[0]))
+
+    def _failed_members(self) -> list[tuple[float, str]]:
+        out = []
+        for k, name in enumerate(self.run.members.names):
+            value = float(self.outcome.utilisation.value[k])
+            if value > LIMIT:
+                option = self.sizes[self.run.family.topology.groups[k]]
+                rule = self.run.checks.rules[int(self.outcome.rule[k])]
+                under = self.combination(int(self.outcome.utilisation.combination[k]))
+                out.append(
+                    (value, f"{name} ({option.section.name} {option.grade.name}): {value:.2f} in {rule.name} ({rule.clause}), {under}")
+                )
+        return out
+
+    def _failed_bearings(self) -> list[tuple[float, str]]:
+        made = self.run.family.topology
+        out = []
+        for k, support in enumerate(made.supports):
+            value = float(self.outcome.bearing.value[k])
+            if value > LIMIT:
+                under = self.combination(int(self.outcome.bearing.combination[k]))
+                out.append((value, f"bearing at {made.nodes[support.node]}: {value:.2f} in compression across the grain, {under}"))
+        return out
+
+    def _failed_deflections(self) -> list[tuple[float, str]]:
+        found = self.outcome.deflection
+        return [
+            (float(r), f"{p.direction} deflection at {p.name}: {float(r):.2f} of its limit, {self.combination(int(c))}")
+            for p, r, c in zip(found.places, found.ratio, found.combination, strict=True)
+            if r > LIMIT
+        ]

@@ -1,0 +1,106 @@
+"""Deflections of a run under the service combinations, beside their limits."""
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.analysis.effects import mid_deflections
+from rooftruss.design.stages import Run
+
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Place:
+    """Where a deflection is taken: a node or the middle of a member."""
+
+    name: str
+    kind: str  # "node" or "member"
+    number: int
+    direction: str  # "vertical" or "horizontal"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Deflections:
+    """The deflection nearest to its limit at each place (..., place) [m], up and right positive; its limit [m],
+    the ratio of the two, and the number of its combination among all."""
+
+    places: tuple[Place, ...]
+    value: Array
+    limit: Array
+    ratio: Array
+    combination: NDArray[np.intp]
+
+
+def places_of(run: Run) -> tuple[Place, ...]:
+    """Panel points and tail ends, middles of chord members, and the sideways movement of each roller."""
+    made = run.family.topology
+    held = {s.node for s in made.supports if s.vertical}
+    nodes = [Place(name=n, kind="node", number=k, direction="vertical") for k, n in enumerate(made.nodes) if k not in held]
+    chords = [
+        Place(name=m.name, kind="member", number=k, direction="vertical")
+        for k, m in enumerate(made.members)
+        if m.role.endswith("chord")
+    ]
+    rollers = [
+        Place(name=made.nodes[s.node], kind="node", number=s.node, direction="horizontal")
+        for s in made.supports
+        if not s.horizontal
+    ]
+    return (*nodes, *chords, *rollers)
+
+
+def _unit(run: Run, places: tuple[Place, ...]) -> Array:
+    """Deflections of every case (..., c, place)."""
+    middle = mid_deflections(run.truss, run.cases, run.effects, run.solution, run.stiffness_bending)
+    moved = run.solution.displacements
+    return np.stack(
+        [
+            middle[..., p.number] if p.kind == "member" else moved[..., p.number, int(p.direction == "vertical")]
+            for p in places
+        ],
+        axis=-1,
+    )
+
+
+def _reach(run: Run, places: tuple[Place, ...]) -> Array:
+    """Length l of the limits l/x for each place (..., place): the span, or twice the cantilever for a tail end."""
+    made = run.family.topology
+    tips = {n for m in made.members if m.role == "tail" for n in (m.start, m.end)} - {
+        n for m in made.members if m.role != "tail" for n in (m.start, m.end)
+    }
+    span, tail = run.family.size.bearing_span, run.family.size.tail
+    return np.stack(
+        np.broadcast_arrays(*(2 * tail if p.kind == "node" and p.number in tips else span for p in places)), axis=-1
+    )
+
+
+def deflections(run: Run) -> Deflections:
+    """Deflections of all places under all service combinations against the limit of each combination's kind."""
+    places = places_of(run)
+    unit, reach = _unit(run, places), _reach(run, places)
+    sideways = np.array([p.direction == "horizontal" for p in places])
+    service = np.flatnonzero(~run.combinations.strength)
+    heads = run.cases.heads
+    factors = run.family.timber.service_factors(
+        run.combinations.factors[service],
+        actions=tuple(h.action for h in heads),
+        kinds=tuple(run.combinations.kinds[k] for k in service),
+    )
+    value = np.matmul(factors, unit)
+    divisor = np.array(
+        [run.family.timber.deflection_ratio(run.family.job.limits.ceiling, run.combinations.kinds[k]) for k in service]
+    )
+    limit = reach[..., None, :] / divisor[:, None]
+    limit = np.where(sideways, run.family.job.limits.horizontal, limit)
+    ratio = np.abs(value) / limit
+    worst = ratio.argmax(axis=-2)
+    pick = np.expand_dims(worst, -2)
+
+    def taken(array: Array) -> Array:
+        return np.take_along_axis(np.broadcast_to(array, ratio.shape), pick, -2).squeeze(-2)
+
+    return Deflections(
+        places=places, value=taken(value), limit=taken(limit), ratio=taken(ratio), combination=service[worst]
+    )

@@ -1,0 +1,328 @@
+"""The stages from dimensions and sizes to checks, for a batch of trusses of one layout.
+
+A batch holds trusses that differ in numbers only: many spans under one roof standard, or many candidate sizes of one
+truss. Everything that is a name (members, cases, combinations) is shared.
+"""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
+from functools import cached_property
+from typing import cast
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.analysis.combinations import Combinations, combine
+from rooftruss.analysis.effects import Extremes, UnitEffects, combined_extremes, unit_effects
+from rooftruss.analysis.frame import Solution, solve
+from rooftruss.basis.grades import Grade, find_grade
+from rooftruss.basis.job import Job, Restraint, TrussSpec
+from rooftruss.basis.schemes import Scheme, load_scheme
+from rooftruss.basis.sections import Section, find_section
+from rooftruss.basis.tables import read_table
+from rooftruss.errors import JobError
+from rooftruss.loads.actions import (
+    AreaLoads,
+    PlacedPoint,
+    action_cases,
+    area_loads,
+    cases_on,
+    position_from_centre,
+    roof_of,
+)
+from rooftruss.loads.cases import LoadCases, member_at
+from rooftruss.shapes.catalogue import Layout, topology
+from rooftruss.shapes.forming import Dimensions, dimensions, form, layout_of
+from rooftruss.shapes.truss import Topology, Truss
+from rooftruss.timber.check import Checks, Demand, Durations, Members, TimberStandard, standard
+from rooftruss.timber.restraint import restraint_lengths
+from rooftruss.units import GRAVITY
+
+Array = NDArray[np.float64]
+GROUPS = ("top chord", "bottom chord", "web")
+
+
+@dataclass(frozen=True, slots=True)
+class Option:
+    """One size and grade that a group may be made of."""
+
+    section: Section
+    grade: Grade
+
+
+@dataclass(frozen=True, kw_only=True)
+class Family:
+    """Trusses that share every name: layout, load cases, scheme, timber standard and settings."""
+
+    job: Job
+    spec: TrussSpec  # the first of them; settings that the whole family shares are read from it
+    layout: Layout
+    size: Dimensions
+    loads: AreaLoads
+    points: tuple[PlacedPoint, ...]
+    scheme: Scheme
+    timber: TimberStandard
+
+    @cached_property
+    def topology(self) -> Topology:
+        """Names and connectivity."""
+        return topology(self.layout)
+
+
+@dataclass(frozen=True, kw_only=True)
+class Choice:
+    """What each group of each truss of a batch is made of: options of a group and the number of the one taken (...,)."""
+
+    options: Mapping[str, tuple[Option, ...]]
+    index: Mapping[str, NDArray[np.intp]]
+
+    def column(self, group: str, values: Sequence[float]) -> Array:
+        """One value per option of a group, gathered over the batch (...,)."""
+        return np.asarray(values, dtype=float)[self.index[group]]
+
+    def one(self, number: int) -> "Choice":
+        """The choice of truss `number` of a flat batch."""
+        return Choice(options=self.options, index={g: np.asarray(i[number]) for g, i in self.index.items()})
+
+    def part(self, rows: slice) -> "Choice":
+        """The choices of a slice of a flat batch."""
+        return Choice(options=self.options, index={g: i[rows] for g, i in self.index.items()})
+
+    def taken(self, group: str) -> Option:
+        """The option of an unbatched choice."""
+        return self.options[group][int(self.index[group])]
+
+
+@dataclass(frozen=True, kw_only=True)
+class Run:
+    """Everything the stages found for a batch (or one truss, without batch axes)."""
+
+    family: Family
+    choice: Choice
+    truss: Truss
+    members: Members
+    cases: LoadCases
+    combinations: Combinations
+    stiffness_axial: Array
+    stiffness_bending: Array
+    solution: Solution
+    effects: UnitEffects
+    extremes: Extremes  # strength combinations
+    demand: Demand
+    checks: Checks
+    reactions: Array  # (..., strength combination, support, 2) [N], on the truss, up positive
+    bearing: Array  # utilisation (..., strength combination, support)
+
+    @property
+    def strength(self) -> list[int]:
+        """Numbers of the strength combinations."""
+        return [int(k) for k in np.flatnonzero(self.combinations.strength)]
+
+
+def family_of(job: Job, specs: Sequence[TrussSpec]) -> Family:
+    """Trusses of one layout as a family. Raises JobError where a key does not fit, naming it.
+
+    The specs must agree in everything but numbers; `run.families` sorts them.
+    """
+    first = specs[0]
+    layout = layout_of(first)
+    scheme = load_scheme(job.scheme, job.folder)
+    size = dimensions(specs)
+    return Family(
+        job=job,
+        spec=first,
+        layout=layout,
+        size=size,
+        loads=area_loads([s.loads for s in specs]),
+        points=_placed(layout, size, specs),
+        scheme=scheme,
+        timber=standard(scheme.timber_standard, first.timber.options),
+    )
+
+
+def unbatched(family: Family) -> Family:
+    """A family of one truss without its batch axis."""
+
+    def bare(record: object) -> dict[str, Array]:
+        return {f: np.asarray(getattr(record, f))[0] for f in type(record).__dataclass_fields__}  # type: ignore[attr-defined]
+
+    points = tuple(replace(p, x=p.x[0], force=p.force[0]) for p in family.points)
+    return replace(family, size=Dimensions(**bare(family.size)), loads=AreaLoads(**bare(family.loads)), points=points)
+
+
+def _placed(layout: Layout, size: Dimensions, specs: Sequence[TrussSpec]) -> tuple[PlacedPoint, ...]:
+    """Point loads on the chord members below or above them."""
+    out = []
+    line = form(replace(layout, raised_heel=False), size, 0.0, 0.0) if specs[0].loads.points else None
+    for k, point in enumerate(specs[0].loads.points):
+        x = np.array([position_from_centre(s.loads.points[k], s.bearing) for s in specs])
+        member = member_at(cast(Truss, line).one(0), point.chord, float(x[0]))
+        if member is None:
+            raise JobError(
+                f"[[loads.point]] position: {point.position:.2f} m is outside the {point.chord} chord of {specs[0].mark}; "
+                "measure from the outside of the left bearing"
+            )
+        force = np.array([s.loads.points[k].force for s in specs])
+        out.append(PlacedPoint(action=point.action, note=point.note, member=member, x=x, force=force))
+    return tuple(out)
+
+
+def options_of(spec: TrussSpec) -> dict[str, tuple[Option, ...]]:
+    """Allowed sizes and grades of each group of a truss, in the order given. Raises JobError for an unknown name."""
+    return {
+        group: tuple(Option(find_section(s), find_grade(g)) for s in timber.sizes for g in timber.grades)
+        for group, timber in spec.timber.groups.items()
+    }
+
+
+def run(family: Family, choice: Choice) -> Run:
+    """All stages for a batch: geometry, cases, combinations, effects, extremes, checks."""
+    depth = {g: choice.column(g, [o.section.depth for o in choice.options[g]]) for g in GROUPS}
+    truss = form(family.layout, family.size, depth["top chord"], depth["bottom chord"])
+    members = _members(family, choice, truss)
+    heads = action_cases(family.scheme.load_standard, roof_of(family.size), family.loads, family.job.site)
+    area = members.breadth * members.depth * members.plies
+    weight = area * members.properties["density"] * GRAVITY
+    cases = cases_on(truss, heads, family.size.spacing, weight, family.points)
+    combinations = combine(cases.heads, family.scheme, family.job.scheme_options)
+    modulus = members.properties["E"]
+    ea, ei = modulus * area, modulus * area * members.depth**2 / 12
+    solution = solve(truss, ea, ei, cases)
+    effects = unit_effects(truss, cases, solution)
+    strength = np.flatnonzero(combinations.strength)
+    factors = combinations.factors[strength]
+    extremes = combined_extremes(effects, factors)
+    demand = demand_of(extremes)
+    durations = durations_of(combinations)
+    reactions = _combined_reactions(factors, solution.reactions)
+    return Run(
+        family=family,
+        choice=choice,
+        truss=truss,
+        members=members,
+        cases=cases,
+        combinations=combinations,
+        stiffness_axial=ea,
+        stiffness_bending=ei,
+        solution=solution,
+        effects=effects,
+        extremes=extremes,
+        demand=demand,
+        checks=family.timber.check(members, demand, durations),
+        reactions=reactions,
+        bearing=bearing_utilisation(family, members, truss, reactions, durations),
+    )
+
+
+def demand_of(extremes: Extremes) -> Demand:
+    """Demands on each member: the extremes split by sign."""
+    return Demand(
+        tension=np.maximum(extremes.axial_max, 0.0),
+        compression=np.maximum(-extremes.axial_min, 0.0),
+        moment_positive=np.maximum(extremes.moment_max, 0.0),
+        moment_negative=np.maximum(-extremes.moment_min, 0.0),
+        shear=extremes.shear,
+    )
+
+
+def durations_of(combinations: Combinations) -> Durations:
+    """Load durations of the strength combinations."""
+    strength = np.flatnonzero(combinations.strength)
+    return Durations(
+        names=tuple(combinations.durations[k] for k in strength), time_effect=combinations.time_effects[strength]
+    )
+
+
+def _combined_reactions(factors: Array, unit: Array) -> Array:
+    flat = unit.reshape(*unit.shape[:-2], -1)
+    return np.matmul(factors, flat).reshape(*unit.shape[:-3], factors.shape[0], *unit.shape[-2:])
+
+
+def bearing_members(made: Topology) -> list[int]:
+    """The member that rests on each support: the bottom chord there, else any member that ends there."""
+    out = []
+    for support in made.supports:
+        here = [k for k, m in enumerate(made.members) if support.node in (m.start, m.end)]
+        out.append(next((k for k in here if made.members[k].role == "bottom chord"), here[0]))
+    return out
+
+
+def bearing_utilisation(
+    family: Family, members: Members, truss: Truss, reactions: Array, durations: Durations
+) -> Array:
+    """Compression across the grain over each bearing (..., strength combination, support)."""
+    resting = bearing_members(family.topology)
+    down = np.maximum(reactions[..., 1], 0.0)
+    return family.timber.bearing(down, take_members(members, resting), truss.bearing[..., None], durations)
+
+
+def take_members(members: Members, rows: Sequence[int]) -> Members:
+    """Some of the members, in the order asked for."""
+    rows = list(rows)
+
+    def pick(a: Array) -> Array:
+        return np.asarray(a)[..., rows]
+
+    return Members(
+        names=tuple(members.names[k] for k in rows),
+        roles=tuple(members.roles[k] for k in rows),
+        breadth=pick(members.breadth),
+        depth=pick(members.depth),
+        plies=pick(members.plies),
+        length=pick(members.length),
+        le_strong=pick(members.le_strong),
+        le_weak=pick(members.le_weak),
+        lu_positive=pick(members.lu_positive),
+        lu_negative=pick(members.lu_negative),
+        load_sharing=np.asarray(members.load_sharing)[..., rows],
+        properties={name: pick(values) for name, values in members.properties.items()},
+    )
+
+
+def _members(family: Family, choice: Choice, truss: Truss) -> Members:
+    """Sizes, restraint and timber properties of every member (..., m)."""
+    made = family.topology
+    batch = truss.length.shape[:-1]
+    spread = _Spread(made, choice, batch)
+    restraints = [family.spec.timber.groups[g].restraint for g in made.groups]
+    le_weak, lu_positive, lu_negative = restraint_lengths(truss.length, made.roles, restraints)
+    per_length = [float(cast(float, read_table("timber/effective_length").where(role=r)["factor"])) for r in made.roles]
+    kinds = {g: [family.timber.properties(o.grade, o.section) for o in choice.options[g]] for g in GROUPS}
+    shape = (*np.broadcast_shapes(batch, np.shape(family.size.plies)), len(made.members))
+    return Members(
+        names=made.names,
+        roles=made.roles,
+        breadth=spread({g: [o.section.breadth for o in choice.options[g]] for g in GROUPS}),
+        depth=spread({g: [o.section.depth for o in choice.options[g]] for g in GROUPS}),
+        plies=np.broadcast_to(np.asarray(family.size.plies)[..., None], shape),
+        length=truss.length,
+        le_strong=truss.length * np.array(per_length),
+        le_weak=le_weak,
+        lu_positive=lu_positive,
+        lu_negative=lu_negative,
+        load_sharing=np.array([load_sharing(family, r, x) for r, x in zip(made.roles, restraints, strict=True)]),
+        properties={n: spread({g: [k[n] for k in kinds[g]] for g in GROUPS}) for n in kinds["web"][0]},
+    )
+
+
+def load_sharing(family: Family, role: str, restraint: Restraint) -> bool:
+    """Whether a member meets the timber standard's conditions for sharing load with its neighbours."""
+    spec = family.spec
+    return family.timber.shares_load(
+        role=role, sheathed=restraint.kind == "sheathed", quantity=spec.quantity, spacing=float(np.max(family.size.spacing))
+    )
+
+
+class _Spread:
+    """Spreads one value per option of each group over the members of the batch."""
+
+    def __init__(self, made: Topology, choice: Choice, batch: tuple[int, ...]) -> None:
+        self.made, self.choice = made, choice
+        self.batch = np.broadcast_shapes(batch, *(i.shape for i in choice.index.values()))
+        self.columns = {g: [k for k, x in enumerate(made.groups) if x == g] for g in GROUPS}
+
+    def __call__(self, values: Mapping[str, Sequence[float]]) -> Array:
+        out = np.empty((*self.batch, len(self.made.members)))
+        for group, columns in self.columns.items():
+            out[..., columns] = self.choice.column(group, values[group])[..., None]
+        return out
