@@ -128,9 +128,7 @@ def _every_head_has_a_place(heads: Sequence[CaseHead], scheme: Scheme) -> None:
             raise TableError(f"scheme {scheme.name} has no combination with {head.action} (load case {head.name!r})")
 
 
-def _lines(
-    row: Row, heads: tuple[CaseHead, ...], scheme: Scheme, options: Mapping[str, object]
-) -> Iterator[_Line]:
+def _lines(row: Row, heads: tuple[CaseHead, ...], scheme: Scheme, options: Mapping[str, object]) -> Iterator[_Line]:
     """All combinations of one row, those with everything absent first."""
     dead = [_Part(f, "", *_dead(heads, row.dead)) for term in row.terms for f in term if f.action == "D"]
     dead = [part for part in dead if part.columns]

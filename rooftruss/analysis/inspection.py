@@ -4,8 +4,8 @@ The pin-jointed idealisation has every load at a joint. Tails stand outside it: 
 that it continues, and its load goes to the two ends of that rafter panel.
 """
 
-from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
 from functools import cache
 
 import numpy as np
@@ -34,8 +34,6 @@ def triangulation(topology: Topology) -> Triangulation:
     kept = tuple(k for k, m in enumerate(topology.members) if m.role != "tail")
     nodes = tuple(sorted({n for k in kept for n in (topology.members[k].start, topology.members[k].end)}))
     number = {n: k for k, n in enumerate(nodes)}
-    from dataclasses import replace
-
     part = Topology(
         shape=topology.shape,
         nodes=tuple(topology.nodes[n] for n in nodes),
@@ -152,7 +150,7 @@ def nodal_cases(truss: Truss, loads: Array, like: LoadCases) -> LoadCases:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Step:
-    """One finding at one joint. member is "" where the finding is about a support, joint where it is about the truss."""
+    """One finding at one joint: member carries nothing. member is "" where a reaction was found to be zero."""
 
     joint: str
     member: str
@@ -162,28 +160,32 @@ class Step:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Inspection:
-    """What can be said of one load case by looking at the joints one at a time; everything by name."""
+    """What looking at one joint at a time says of one load case; everything by name."""
 
     steps: tuple[Step, ...]
     zero: tuple[str, ...]  # members that carry nothing, in the order of the topology
-    collinear: tuple[tuple[str, str], ...]  # members in one line that pass their force on to each other
+    collinear: tuple[tuple[str, str], ...]  # members in one line that pass their force on to each other unchanged
 
 
 @dataclass(frozen=True, slots=True)
 class _Force:
-    """A force that may act at a joint: a member, the load, or one direction of a support."""
+    """A force that may act at a joint: of a member, a load, or one direction held by a support."""
 
     kind: str  # "member", "load", "support"
     label: str
     direction: Array
 
 
+Joints = dict[str, list[_Force]]
+HELD = ("horizontal", "vertical")
+
+
 def inspect_case(truss: Truss, forces: Array) -> Inspection:
     """Zero-force members of an unbatched truss under joint loads (node, 2) [N], as `joint_loads` gives them.
 
-    Where all forces at a joint but one lie in one line, that one is zero: nothing else acts across the line. A force
-    is a member not yet found idle, the load, or a direction held by a support. Joints are taken from left to right,
-    again and again until a round finds nothing.
+    Where all forces at a joint but one lie in one line, that one is zero, since nothing else acts across the line.
+    A force is a member not yet found idle, the load, or a direction held by a support. Joints are taken from left to
+    right, again and again until a round finds nothing.
     """
     part = triangulation(truss.topology)
     inner, loads = _part(truss), np.asarray(forces, float)[list(part.nodes)]
@@ -192,25 +194,20 @@ def inspect_case(truss: Truss, forces: Array) -> Inspection:
         reason = "No load acts on any joint in this case, so no member carries anything."
         return Inspection(steps=(Step(joint="", member="", rule="no load", reason=reason),), zero=names, collinear=())
     joints = _joints(inner, loads)
-    steps = [step for step in (_idle_sideways(inner, loads),) if step is not None]
-    for step in steps:
-        _drop(joints, step.joint, f"the {HELD[0]} reaction")
-    idle: list[str] = []
-    while found := _round(joints, idle):
+    meeting = {joint: [f.label for f in forces] for joint, forces in joints.items()}
+    steps = _balance_of_the_whole(inner, loads, joints)
+    while found := [step for joint in joints for step in _at_joint(joint, joints, meeting[joint])]:
         steps += found
+    zero = {step.member for step in steps}
     return Inspection(
         steps=tuple(steps),
-        zero=tuple(n for n in names if n in idle),
+        zero=tuple(name for name in names if name in zero),
         collinear=tuple(pair for forces in joints.values() for pair in _passing_on(forces)),
     )
 
 
-HELD = ("horizontal", "vertical")
-Joints = dict[str, list[_Force]]
-
-
 def _joints(truss: Truss, loads: Array) -> Joints:
-    """Forces that may act at each joint, joints from left to right (from below where one stands over the other)."""
+    """Forces that may act at each joint, joints from left to right (the lower of two first)."""
     topology = truss.topology
     out: Joints = {topology.nodes[n]: [] for n in np.lexsort((truss.xy[:, 1], truss.xy[:, 0]))}
     for k, m in enumerate(topology.members):
@@ -226,31 +223,143 @@ def _joints(truss: Truss, loads: Array) -> Joints:
     return out
 
 
-def _idle_sideways(truss: Truss, loads: Array) -> Step | None:
-    """Equilibrium of the whole: without a sideways resultant, the only horizontal support carries nothing sideways."""
+def _balance_of_the_whole(truss: Truss, loads: Array, joints: Joints) -> list[Step]:
+    """Without a sideways resultant the only support held sideways carries nothing sideways (sum of horizontals)."""
     holders = [s.node for s in truss.topology.supports if s.horizontal]
-    if len(holders) != 1 or abs(loads[:, 0].sum()) > TOLERANCE * np.abs(loads).max():
-        return None
+    least = TOLERANCE * np.abs(loads).max()
+    if len(holders) != 1 or abs(loads[:, 0].sum()) > least:
+        return []
     joint = truss.topology.nodes[holders[0]]
-    none = not (np.abs(loads[:, 0]) > TOLERANCE * np.abs(loads).max()).any()
-    why = "no load acts sideways" if none else "the sideways loads cancel each other"
-    reason = f"Joint {joint}: it alone is held sideways and {why}, so the horizontal reaction is zero."
-    return Step(joint=joint, member="", rule="balance of the whole", reason=reason)
+    none = bool((np.abs(loads[:, 0]) <= least).all())
+    why = "no load acts sideways" if none else "the sideways loads cancel out"
+    _drop(joints[joint], f"the {HELD[0]} reaction")
+    reason = f"Joint {joint}: only this joint is held sideways and {why}, so its horizontal reaction is zero."
+    return [Step(joint=joint, member="", rule="balance of the whole", reason=reason)]
 
 
-def _round(joints: Joints, idle: list[str]) -> list[Step]:
-    """One walk over all joints; what is found at a joint counts from there on."""
-    steps: list[Step] = []
-    for joint, forces in joints.items():
-        for force, others in _off_the_line(forces):
-            gone = [f for f in idle if f in _names_at(joints, joint)]
-            steps.append(_step(joint, force, others, gone))
-            if force.kind == "member":
-                idle.append(force.label)
-    for step in steps:
-        for joint in joints:
-            if step.member:
-                _drop(joints, joint, step.member)
-        if not step.member:
-            _drop(joints, step.joint, step.rule)
+def _at_joint(joint: str, joints: Joints, meeting: list[str]) -> list[Step]:
+    """All that one joint gives; each find counts at once, here and at the member's other end."""
+    steps = []
+    while (found := _across_the_line(joints[joint])) is not None:
+        force, line = found
+        settled = [label for label in meeting if label not in {f.label for f in joints[joint]}]
+        steps.append(_step(joint, force, line, settled))
+        for forces in joints.values() if force.kind == "member" else (joints[joint],):
+            _drop(forces, force.label)
     return steps
+
+
+def _drop(forces: list[_Force], label: str) -> None:
+    forces[:] = [f for f in forces if f.label != label]
+
+
+def _parallel(a: _Force, b: _Force) -> bool:
+    return bool(abs(a.direction[0] * b.direction[1] - a.direction[1] * b.direction[0]) < TOLERANCE)
+
+
+def _across_the_line(forces: list[_Force]) -> tuple[_Force, list[_Force]] | None:
+    """First force that is alone across the one line of all the others, with those others."""
+    for force in forces:
+        others = [f for f in forces if f is not force]
+        in_line = all(_parallel(others[0], f) for f in others[1:])
+        if force.kind != "load" and in_line and not (others and _parallel(others[0], force)):
+            return force, others
+    return None
+
+
+def _step(joint: str, force: _Force, line: list[_Force], settled: list[str]) -> Step:
+    """The finding that `force` is zero, in words."""
+    loaded = any(f.kind == "load" for f in line)
+    unloaded = "" if loaded else " and no load acts on the joint"
+    if not line:
+        rule, why = "lone member", f"{force.label} is alone{unloaded}"
+    elif len(line) == 1:
+        rule, why = "corner", f"{force.label} and {line[0].label} meet at an angle{unloaded}"
+    else:
+        rule = "load in line" if loaded else "branch" if all(f.kind == "member" for f in line) else "reaction in line"
+        why = f"{_listed([f.label for f in line])} lie in one line{unloaded}"
+    where = f"Joint {joint}" + (f" (nothing in {_listed(settled)})" if settled else "")
+    member = force.kind == "member"
+    end = f"{force.label} carries nothing" if member else f"{force.label} is zero"
+    return Step(joint=joint, member=force.label if member else "", rule=rule, reason=f"{where}: {why}, so {end}.")
+
+
+def _listed(words: list[str]) -> str:
+    return words[0] if len(words) == 1 else ", ".join(words[:-1]) + " and " + words[-1]
+
+
+def _passing_on(forces: list[_Force]) -> list[tuple[str, str]]:
+    """Pairs of members in one line, when everything else at the joint lies in one other line."""
+    members = [f for f in forces if f.kind == "member"]
+    pairs = []
+    for k, one in enumerate(members):
+        for other in members[k + 1 :]:
+            rest = [f for f in forces if f is not one and f is not other]
+            aside = all(_parallel(rest[0], f) for f in rest[1:]) and not (rest and _parallel(rest[0], one))
+            if _parallel(one, other) and aside:
+                pairs.append((one.label, other.label))
+    return pairs
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Waking:
+    """A member idle under gravity, and the other case in which its force is largest [N]."""
+
+    member: str
+    case: str
+    force: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Summary:
+    """Zero-force members over all cases and combinations of one pin-jointed truss; everything by name."""
+
+    by_case: tuple[Inspection, ...]  # in the order of the cases
+    axial: Array  # (c, m) [N]
+    idle: tuple[str, ...]  # members that carry nothing in every combination
+    waking: tuple[Waking, ...]
+    beyond_inspection: tuple[tuple[str, tuple[str, ...]], ...]  # case -> members only the solver finds unloaded
+
+
+def summary(truss: Truss, ea: Array, cases: LoadCases, factors: Array, gravity: Sequence[int]) -> Summary:
+    """Inspection of every case of an unbatched truss, held against the solver.
+
+    ea (m,) [N]; factors (k, c) of the combinations; gravity: numbers of the cases that count as gravity. A member is
+    unloaded when its force is below 1e-9 of the largest in that case or combination; tails are left out.
+    """
+    names, loads = truss.topology.names, joint_loads(truss, cases)
+    axial = pin_jointed_axial(truss, ea, cases)
+    inside = list(triangulation(truss.topology).members)
+    by_case = tuple(inspect_case(truss, case) for case in loads)
+    quiet, quiet_combined = _unloaded(axial), _unloaded(np.asarray(factors) @ axial)
+    beyond = (
+        (name, tuple(names[k] for k in inside if quiet[c, k] and names[k] not in by_case[c].zero))
+        for c, name in enumerate(cases.names)
+    )
+    return Summary(
+        by_case=by_case,
+        axial=axial,
+        idle=tuple(names[k] for k in inside if quiet_combined[:, k].all()),
+        waking=_waking(truss, cases, axial, quiet, gravity),
+        beyond_inspection=tuple((name, members) for name, members in beyond if members),
+    )
+
+
+def _unloaded(axial: Array) -> NDArray[np.bool_]:
+    """Whether each force (k, m) is nothing beside the largest of its row."""
+    return np.asarray(np.abs(axial) <= TOLERANCE * np.abs(axial).max(axis=-1, keepdims=True))
+
+
+def _waking(
+    truss: Truss, cases: LoadCases, axial: Array, quiet: NDArray[np.bool_], gravity: Sequence[int]
+) -> tuple[Waking, ...]:
+    """Members that carry nothing under any gravity case, but do under another."""
+    others = [c for c in range(len(cases.names)) if c not in set(gravity)]
+    if not others or not gravity:
+        return ()
+    out = []
+    for k in triangulation(truss.topology).members:
+        c = max(others, key=lambda c: abs(axial[c, k]))
+        if quiet[list(gravity), k].all() and not quiet[c, k]:
+            out.append(Waking(member=truss.topology.names[k], case=cases.names[c], force=float(axial[c, k])))
+    return tuple(out)

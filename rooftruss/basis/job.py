@@ -104,7 +104,7 @@ class Job:
     """A whole job file. `site` holds the load standard's own keys, SI numbers or words, every default filled in."""
 
     source: str  # file name for messages
-    folder: str  # folder of the file, for scheme files beside it
+    folder: Path  # of the file; paths in it (a scheme file) start there
     title: str
     client: str
     number: str
@@ -115,5 +115,4 @@ class Job:
     limits: LimitSpec
     trusses: tuple[TrussSpec, ...]
     assumptions: tuple[Assumption, ...]
-    folder: Path = Path()  # where the file lies; paths in it start there
     given: Mapping[str, object] = field(default_factory=dict, repr=False)  # as written: a like job is read from it

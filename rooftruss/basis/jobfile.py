@@ -11,19 +11,9 @@ LARGEST_FILE = 1_000_000  # bytes
 
 def read_toml(path: Path) -> Mapping[str, object]:
     """Tables of a TOML file. Raises JobError with one clear line for anything that is none."""
-    try:
-        if path.is_dir():
-            raise JobError(f"{path.name}: is a folder; give the job file in it")
-        size = path.stat().st_size
-        if size > LARGEST_FILE:
-            raise JobError(
-                f"{path.name}: has {size:,} bytes; a job file has at most {LARGEST_FILE:,}. Is it another file?"
-            )
-        raw = path.read_bytes()
-    except FileNotFoundError:
-        raise JobError(f"{path}: there is no such file; `rooftruss new {path.name}` writes a fresh job form") from None
-    except (OSError, ValueError) as error:
-        raise JobError(f"{path}: cannot be read ({getattr(error, 'strerror', None) or error})") from None
+    raw = _bytes(path)
+    if len(raw) > LARGEST_FILE:
+        raise JobError(f"{path.name}: is too large; a job file has at most {LARGEST_FILE:,} bytes. Is it another file?")
     text = _text(path.name, raw)
     try:
         return tomllib.loads(text)
@@ -31,6 +21,21 @@ def read_toml(path: Path) -> Mapping[str, object]:
         raise JobError(f"{path.name}: brackets are nested too deeply for a job file") from None
     except ValueError as error:  # TOMLDecodeError, and integers of thousands of digits
         raise JobError(f"{path.name}: is not valid TOML: {error}; text and quantities stand in quotes") from None
+
+
+def _bytes(path: Path) -> bytes:
+    """Content of a file, cut off soon after the size a job file may have."""
+    try:
+        if path.is_dir():
+            raise JobError(f"{path.name}: is a folder; give the job file in it")
+        with path.open("rb") as file:
+            return file.read(LARGEST_FILE + 1)
+    except FileNotFoundError:
+        raise JobError(
+            f"{path.name}: there is no such file ({path}); `rooftruss new FILE` writes a fresh form"
+        ) from None
+    except OSError as error:
+        raise JobError(f"{path.name}: cannot be read ({error.strerror})") from None
 
 
 def _text(name: str, raw: bytes) -> str:

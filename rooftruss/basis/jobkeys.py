@@ -3,15 +3,16 @@
 A further load or timber standard adds one file there; nothing here asks which standard is in force.
 """
 
+import re
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, partial
 from typing import Any, cast
 
 from rooftruss.basis import grades, sections
 from rooftruss.basis.kinds import RESISTANCE, SI_UNIT, Choice, Kind, Names, Number, Pitch, Quantity, RestraintKind, Text
 from rooftruss.basis.tables import data_folder, read_settings
-from rooftruss.errors import TableError
+from rooftruss.errors import JobError, TableError
 
 FOLDER = "jobform"
 Entry = Mapping[str, Any]
@@ -64,7 +65,7 @@ def _file_serving(family: str, standard: str) -> str:
     for name in names:
         about = cast(Entry, read_settings(f"{FOLDER}/{name}")["about"])
         served += about["serves"]
-        if any(standard == known or standard.startswith(f"{known} ") for known in about["serves"]):
+        if any(re.match(rf"{re.escape(known)}(?!\w)", standard) for known in about["serves"]):
             return name
     raise TableError(f"no job keys for the {family} standard {standard!r}; tables/{FOLDER} serves {', '.join(served)}")
 
@@ -101,13 +102,21 @@ def _quantity(shows: str, unit: str) -> Callable[[dict[str, Any]], Kind]:
 
 
 def _names(entry: dict[str, Any]) -> Names:
-    return _CATALOGUES[entry.pop("catalogue")]
+    catalogue = entry.pop("catalogue")
+    if catalogue == "sections":
+        return Names(known=sections.find_section, **_take(entry, "example"))
+    family, _, _ = catalogue.rpartition(" grades")
+    return Names(known=partial(_grade_of, family), **_take(entry, "example"))
 
 
-_CATALOGUES = {
-    "grades": Names(known=grades.find_grade, example='["SPF No.1/No.2"]'),
-    "sections": Names(known=sections.find_section, example='["2x4", "2x6"]'),
-}
+def _grade_of(family: str, name: str) -> grades.Grade:
+    """Grade of a family of standards. Raises JobError for a grade of another one."""
+    grade = grades.find_grade(name)
+    if grade.family != family:
+        raise JobError(f"{name!r} is a grade to {grade.family}; the scheme of this job checks timber to {family}")
+    return grade
+
+
 _KINDS: dict[str, Callable[[dict[str, Any]], Kind]] = {
     "text": lambda entry: Text(**_take(entry, "longest", "may_be_empty", "pattern", "rule")),
     "choice": lambda entry: Choice(**_take(entry, "choices")),

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from rooftruss.basis.job import GroupTimber, LoadSpec, PointLoad, TimberSpec, TrussSpec
-from rooftruss.basis.jobkeys import Form, Key
+from rooftruss.basis.jobkeys import Form, Key, Keys
 from rooftruss.basis.kinds import Choice
 from rooftruss.basis.tablereader import Entries, Given, TableReader, entries
 from rooftruss.basis.written import told
@@ -28,14 +28,10 @@ class TrussReader:
         """All trusses, or those that are right; mistakes have been noted."""
         self._check_common()
         if given is None or given == []:
-            self.reader.problem(
-                "[[truss]]", "there is none; add at least one, with its mark, shape, span, pitch, spacing"
-            )
+            self.reader.problem("[[truss]]", "there is none; add one, with its mark, shape, span, pitch and spacing")
             return ()
         if not isinstance(given, list | tuple) or not all(isinstance(t, Mapping) for t in given):
-            self.reader.problem(
-                "[[truss]]", "is not a list of tables; write [[truss]], in two brackets, over each truss"
-            )
+            self.reader.problem("[[truss]]", "is not a list of tables; write [[truss]], in two brackets, over each one")
             return ()
         if len(given) > MOST_TRUSSES:
             self.reader.problem("[[truss]]", f"there are {len(given)}; a job has at most {MOST_TRUSSES}")
@@ -46,12 +42,18 @@ class TrussReader:
 
     def _check_common(self) -> None:
         """Read what [loads] and [timber] give, so that a value every truss overrides is checked too."""
-        self.reader.refuse_unknown({**self.form["loads"], "point": _ANY}, self.loads)
-        self.reader.refuse_unknown({**self.form["timber"], **dict.fromkeys(GROUPS, _ANY)}, self.timber)
+        self.reader.refuse_unknown(self._load_keys(), self.loads)
+        self.reader.refuse_unknown(self._timber_keys(), self.timber)
         for keys, given in ((self.form["loads"], self.loads), (self.form["timber"], self.timber)):
             for name, value in given.items():
                 if name in keys:
                     self.reader.value(keys[name], value)
+
+    def _load_keys(self) -> Keys:
+        return {**self.form["loads"], "point": _ANY}
+
+    def _timber_keys(self) -> Keys:
+        return {**self.form["timber"], **dict.fromkeys(GROUPS, _ANY)}
 
     def _refuse_twins(self, given: Sequence[Mapping[str, object]]) -> None:
         seen: dict[str, int] = {}
@@ -59,29 +61,20 @@ class TrussReader:
             mark = table.get("mark")
             first = seen.setdefault(mark.strip().casefold(), number) if isinstance(mark, str) else number
             if first != number:
-                self.reader.problem(
-                    _place(table, number), f"mark: truss {first} has it already; every mark stands once"
-                )
+                self.reader.problem(f"{_place(table, number)} mark", f"truss {first} has it already; write another")
 
     def _truss(self, table: Mapping[str, object], place: str) -> TrussSpec | None:
-        before = len(self.reader.problems)
+        before = self.reader.mistakes
         given = entries(table, place)
         own, loads, timber = (
             {name: g for name, g in given.items() if name in keys}
-            for keys in (self.form["truss"], {*self.form["loads"], "point"}, {*self.form["timber"], *GROUPS})
+            for keys in (self.form["truss"], self._load_keys(), self._timber_keys())
         )
-        every = {
-            **self.form["truss"],
-            **self.form["loads"],
-            **self.form["timber"],
-            "point": _ANY,
-            **dict.fromkeys(GROUPS, _ANY),
-        }
-        self.reader.refuse_unknown(every, given)
+        self.reader.refuse_unknown({**self.form["truss"], **self._load_keys(), **self._timber_keys()}, given)
         values = self.reader.read(self.form["truss"], own, place)
         load_values = self._loads({**self.loads, **loads})
         timber_values = self._timber(timber)
-        if len(self.reader.problems) > before:
+        if self.reader.mistakes > before:
             return None
         truss = TrussSpec(**values, loads=load_values, timber=timber_values)
         _check_geometry(self.reader, truss, place)
@@ -89,11 +82,11 @@ class TrussReader:
 
     def _loads(self, given: Entries) -> Any:
         """LoadSpec, or None after a mistake."""
-        before = len(self.reader.problems)
+        before = self.reader.mistakes
         known = {name: g for name, g in given.items() if name in self.form["loads"]}
         values = self.reader.read(self.form["loads"], known, "[loads]")
         points = self._points(given["point"]) if "point" in given else ()
-        return LoadSpec(**values, points=points) if len(self.reader.problems) == before else None
+        return LoadSpec(**values, points=points) if self.reader.mistakes == before else None
 
     def _points(self, given: Given) -> tuple[PointLoad, ...]:
         head = f"{given.place} point"
@@ -103,25 +96,25 @@ class TrussReader:
         points = []
         for number, item in enumerate(given.value, 1):
             place = f"{head} {number}"
-            before = len(self.reader.problems)
+            before = self.reader.mistakes
             values = self.reader.read(self.form["point"], self.reader.table(item, place), place)
-            if len(self.reader.problems) == before:
+            if self.reader.mistakes == before:
                 points.append(PointLoad(**{**values, "note": values["note"] or ""}))
         return tuple(points)
 
     def _timber(self, override: Entries) -> Any:
         """TimberSpec, or None after a mistake."""
-        before = len(self.reader.problems)
+        before = self.reader.mistakes
         plain = {name: g for name, g in {**self.timber, **override}.items() if name in self.form["timber"]}
         values = self.reader.read(self.form["timber"], plain, "[timber]")
         groups = {name.replace("_", " "): self._group(name, override.get(name)) for name in GROUPS}
-        if len(self.reader.problems) > before:
+        if self.reader.mistakes > before:
             return None
         return TimberSpec(groups=groups, longest_stock=values.pop("longest_stock"), options=values)
 
     def _group(self, name: str, override: Given | None) -> Any:
         """GroupTimber of "top_chord" and so on, or None after a mistake; an override changes single keys of it."""
-        before = len(self.reader.problems)
+        before = self.reader.mistakes
         keys = self.form[GROUPS[name]]
         given: dict[str, Given] = {}
         for part in (self.timber.get(name), override):
@@ -130,12 +123,12 @@ class TrussReader:
             elif part is not None:
                 example = f"{name} = {{ grades = [...], sizes = [...], restraint = ... }}"
                 self.reader.problem(f"{part.place} {name}", f"{told(part.value)} is not a table; write {example}")
-        if not given and len(self.reader.problems) == before:
+        if not given and self.reader.mistakes == before:
             self.reader.problem(f"[timber] {name}", "is missing; write its grades, sizes and restraint")
         if not given:
             return None
         values = self.reader.read(keys, given, "[timber]", f"{name}.")
-        return GroupTimber(**values) if len(self.reader.problems) == before else None
+        return GroupTimber(**values) if self.reader.mistakes == before else None
 
 
 def _place(table: Mapping[str, object], number: int) -> str:

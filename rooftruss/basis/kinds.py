@@ -119,12 +119,12 @@ class Number:
     def read(self, value: object, system: str) -> float | int:
         """The number; an int where whole numbers are asked for."""
         sort = "a whole number" if self.whole else "a number"
-        number = isinstance(value, int | float) and not isinstance(value, bool)
-        if not number or (self.whole and not (math.isfinite(value) and value == int(value))):  # type: ignore[arg-type, call-overload]
+        number = value if isinstance(value, int | float) and not isinstance(value, bool) else math.nan
+        if not isinstance(value, int | float) or isinstance(value, bool) or (self.whole and number % 1 != 0):
             raise JobError(f"{written.told(value)} is not {sort}; write one without quotes, {self.range()}")
-        if not self.limits[0] <= value <= self.limits[1]:  # type: ignore[operator]
+        if not self.limits[0] <= number <= self.limits[1]:
             raise JobError(f"{written.told(value)} is not plausible; {self.range()}")
-        return int(value) if self.whole else float(value)  # type: ignore[call-overload, no-any-return]
+        return int(number) if self.whole else float(number)
 
     def range(self) -> str:
         """Sentence part that gives the limits."""

@@ -7,7 +7,7 @@ how to write a scheme.
 
 import re
 import tomllib
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from functools import cache
 from math import nan
@@ -175,7 +175,9 @@ def parse_expression(text: str, actions: Mapping[str, str]) -> tuple[Term, ...]:
     while text[place:].strip():
         found = TOKEN.match(text, place)
         if not found:
-            raise TableError(f"{text[place:].strip()[0]!r} has no meaning in an expression; write like 'D + 0.75(Lr or S)'")
+            raise TableError(
+                f"{text[place:].strip()[0]!r} has no meaning in an expression; write like 'D + 0.75(Lr or S)'"
+            )
         tokens.append(found.group().strip())
         place = found.end()
     tokens.reverse()
@@ -288,7 +290,9 @@ def _every_action_has_a_duration(rows: Iterable[Row], durations: Pairs, file: st
     timed = [action for _, actions in durations for action in actions]
     for action in sorted({f.action for row in rows for term in row.terms for f in term} - {NO_CASE}):
         if timed.count(action) != 1:
-            raise TableError(f"{file} durations: {action} must stand in exactly one of them, it is in {timed.count(action)}")
+            raise TableError(
+                f"{file} durations: {action} must stand in exactly one of them, it is in {timed.count(action)}"
+            )
 
 
 def _options(given: object, place: str) -> Pairs:
@@ -311,7 +315,7 @@ def _text(row: Mapping[str, object], key: str, place: str) -> str:
     return value.strip()
 
 
-def _choice(row: Mapping[str, object], key: str, allowed: Iterable[str], default: str | None, place: str) -> str:
+def _choice(row: Mapping[str, object], key: str, allowed: Sequence[str], default: str | None, place: str) -> str:
     value = row.get(key, default)
     if value not in allowed:
         raise TableError(f"{place} {key}: {value!r} is no choice; {nearest(str(value), allowed)}")

@@ -37,10 +37,12 @@ class TableReader:
     system: str  # "US" or "metric"
     standard: str = ""  # load standard, for keys that belong to one edition and for the words of assumptions
     problems: dict[str, None] = field(default_factory=dict)
+    mistakes: int = 0  # counts repetitions too: whoever sees it grow has not read everything
     assumptions: dict[Assumption, None] = field(default_factory=dict)
 
     def problem(self, place: str, message: str) -> None:
         """Note one mistake."""
+        self.mistakes += 1
         self.problems[f"{self.source} {place}: {message}"] = None
 
     @contextmanager
@@ -108,7 +110,7 @@ class TableReader:
             return None
         if key.needed_with and any(values.get(other) != word for other, word in key.needed_with.items()):
             return None
-        self.problem(place, f"is missing; {self._wanted(key)}")
+        self.problem(place, f"is missing ({self._wanted(key)})")
         return None
 
     def assume(self, place: str, text: str) -> None:
@@ -116,10 +118,9 @@ class TableReader:
         self.assumptions[Assumption(place=place, text=text.replace("{standard}", self.standard))] = None
 
     def _wanted(self, key: Key) -> str:
-        for other, word in (key.needed_with or {}).items():
-            return f"{other} = {word!r} needs it: {key.help}"
-        choices = getattr(key.kind, "choices", ())
-        return f"{key.help}" + (f" ({', '.join(told(c) for c in choices)})" if choices else "")
+        because = "".join(f"needed with {other} = {word!r}; " for other, word in (key.needed_with or {}).items())
+        choices = ", ".join(told(choice) for choice in getattr(key.kind, "choices", ()))
+        return because + key.help + (f"; {choices}" if choices else "")
 
     def _foreign(self, key: Key) -> str:
         return f"belongs to {' and '.join(key.only)}, this job's scheme to {self.standard}; take the line out"

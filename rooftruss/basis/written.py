@@ -62,7 +62,7 @@ def quantity(value: object, unit: str) -> float:
         raise JobError(f"{told(value)} is not a quantity; {hint}for example '{example}'")
     try:
         total = math.fsum(_number(number) * magnitude(f"1 {_spelt(name)}", unit) for number, name in parts)
-        return float(f"{total:.12g}")  # drops the rounding of the conversion: 3.5 in is 0.0889 m
+        return float(f"{total:.14g}")  # drops the rounding of the conversion: 3.5 in is 0.0889 m
     except JobError:
         raise JobError(f"{told(value)} is not in a unit that fits; write for example '{example}'") from None
 

@@ -7,12 +7,13 @@ truss. Everything that is a name (members, cases, combinations) is shared.
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from functools import cached_property
+from pathlib import Path
 from typing import cast
 
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.analysis.combinations import Combinations, combine
+from rooftruss.analysis.combinations import CaseHead, Combinations, combine
 from rooftruss.analysis.effects import Extremes, UnitEffects, combined_extremes, unit_effects
 from rooftruss.analysis.frame import Solution, solve
 from rooftruss.basis.grades import Grade, find_grade
@@ -34,7 +35,7 @@ from rooftruss.loads.cases import LoadCases, member_at
 from rooftruss.shapes.catalogue import Layout, topology
 from rooftruss.shapes.forming import Dimensions, dimensions, form, layout_of
 from rooftruss.shapes.truss import Topology, Truss
-from rooftruss.timber.check import Checks, Demand, Durations, Members, TimberStandard, standard
+from rooftruss.timber.check import Bearings, Checks, Demand, Durations, Members, TimberStandard, standard
 from rooftruss.timber.restraint import restraint_lengths
 from rooftruss.units import GRAVITY
 
@@ -126,7 +127,7 @@ def family_of(job: Job, specs: Sequence[TrussSpec]) -> Family:
     """
     first = specs[0]
     layout = layout_of(first)
-    scheme = load_scheme(job.scheme, job.folder)
+    scheme = load_scheme(job.scheme, Path(job.folder))
     size = dimensions(specs)
     return Family(
         job=job,
@@ -184,7 +185,7 @@ def run(family: Family, choice: Choice) -> Run:
     area = members.breadth * members.depth * members.plies
     weight = area * members.properties["density"] * GRAVITY
     cases = cases_on(truss, heads, family.size.spacing, weight, family.points)
-    combinations = combine(cases.heads, family.scheme, family.job.scheme_options)
+    combinations = combine(case_heads(cases), family.scheme, family.job.scheme_options)
     modulus = members.properties["E"]
     ea, ei = modulus * area, modulus * area * members.depth**2 / 12
     solution = solve(truss, ea, ei, cases)
@@ -210,8 +211,15 @@ def run(family: Family, choice: Choice) -> Run:
         demand=demand,
         checks=family.timber.check(members, demand, durations),
         reactions=reactions,
-        bearing=bearing_utilisation(family, members, truss, reactions, durations),
+        bearing=family.timber.bearing(
+            bearings_of(family.topology, members, truss), np.maximum(reactions[..., 1], 0.0), durations
+        ),
     )
+
+
+def case_heads(cases: LoadCases) -> list[CaseHead]:
+    """What combinations need to know of the cases."""
+    return [CaseHead(name=h.name, short=h.short, action=h.action, pattern=h.pattern) for h in cases.heads]
 
 
 def demand_of(extremes: Extremes) -> Demand:
@@ -222,6 +230,7 @@ def demand_of(extremes: Extremes) -> Demand:
         moment_positive=np.maximum(extremes.moment_max, 0.0),
         moment_negative=np.maximum(-extremes.moment_min, 0.0),
         shear=extremes.shear,
+        tension_least=np.maximum(extremes.axial_min, 0.0),
     )
 
 
@@ -247,35 +256,20 @@ def bearing_members(made: Topology) -> list[int]:
     return out
 
 
-def bearing_utilisation(
-    family: Family, members: Members, truss: Truss, reactions: Array, durations: Durations
-) -> Array:
-    """Compression across the grain over each bearing (..., strength combination, support)."""
-    resting = bearing_members(family.topology)
-    down = np.maximum(reactions[..., 1], 0.0)
-    return family.timber.bearing(down, take_members(members, resting), truss.bearing[..., None], durations)
+def bearings_of(made: Topology, members: Members, truss: Truss) -> Bearings:
+    """The places where the truss rests on the walls, at the ends of its chords."""
+    resting = bearing_members(made)
 
+    def at(values: Array) -> Array:
+        return np.asarray(values)[..., resting]
 
-def take_members(members: Members, rows: Sequence[int]) -> Members:
-    """Some of the members, in the order asked for."""
-    rows = list(rows)
-
-    def pick(a: Array) -> Array:
-        return np.asarray(a)[..., rows]
-
-    return Members(
-        names=tuple(members.names[k] for k in rows),
-        roles=tuple(members.roles[k] for k in rows),
-        breadth=pick(members.breadth),
-        depth=pick(members.depth),
-        plies=pick(members.plies),
-        length=pick(members.length),
-        le_strong=pick(members.le_strong),
-        le_weak=pick(members.le_weak),
-        lu_positive=pick(members.lu_positive),
-        lu_negative=pick(members.lu_negative),
-        load_sharing=np.asarray(members.load_sharing)[..., rows],
-        properties={name: pick(values) for name, values in members.properties.items()},
+    return Bearings(
+        names=tuple(made.nodes[s.node] for s in made.supports),
+        breadth=at(members.breadth),
+        plies=at(members.plies),
+        length=np.broadcast_to(truss.bearing[..., None], at(members.breadth).shape),
+        end_distance=np.zeros(at(members.breadth).shape),
+        properties={name: at(values) for name, values in members.properties.items()},
     )
 
 
@@ -285,7 +279,7 @@ def _members(family: Family, choice: Choice, truss: Truss) -> Members:
     batch = truss.length.shape[:-1]
     spread = _Spread(made, choice, batch)
     restraints = [family.spec.timber.groups[g].restraint for g in made.groups]
-    le_weak, lu_positive, lu_negative = restraint_lengths(truss.length, made.roles, restraints)
+    across = restraint_lengths(_length_across(truss), restraints, truss.length, made.roles)
     per_length = [float(cast(float, read_table("timber/effective_length").where(role=r)["factor"])) for r in made.roles]
     kinds = {g: [family.timber.properties(o.grade, o.section) for o in choice.options[g]] for g in GROUPS}
     shape = (*np.broadcast_shapes(batch, np.shape(family.size.plies)), len(made.members))
@@ -297,12 +291,23 @@ def _members(family: Family, choice: Choice, truss: Truss) -> Members:
         plies=np.broadcast_to(np.asarray(family.size.plies)[..., None], shape),
         length=truss.length,
         le_strong=truss.length * np.array(per_length),
-        le_weak=le_weak,
-        lu_positive=lu_positive,
-        lu_negative=lu_negative,
+        le_weak=across.le_weak,
+        lu_positive=across.lu_positive,
+        lu_negative=across.lu_negative,
         load_sharing=np.array([load_sharing(family, r, x) for r, x in zip(made.roles, restraints, strict=True)]),
         properties={n: spread({g: [k[n] for k in kinds[g]] for g in GROUPS}) for n in kinds["web"][0]},
     )
+
+
+def _length_across(truss: Truss) -> Array:
+    """Length of each member between its ends across the plane (..., m): a chord runs on through its panel points."""
+    made = truss.topology
+    lines = [m.surface.replace("tail", "slope") if m.surface else m.name for m in made.members]
+    out = truss.length.copy()
+    for line in set(lines):
+        here = [k for k, x in enumerate(lines) if x == line]
+        out[..., here] = truss.length[..., here].sum(axis=-1, keepdims=True)
+    return out
 
 
 def load_sharing(family: Family, role: str, restraint: Restraint) -> bool:

@@ -1,0 +1,197 @@
+"""Many trusses at once: grouped into families, run in chunks of bounded memory, on any executor.
+
+Trusses of one layout are one stacked solve; mixed layouts are grouped. Each chunk is independent work, so any
+`concurrent.futures.Executor` can carry it.
+"""
+
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from concurrent.futures import Executor
+from dataclasses import dataclass, fields, replace
+from typing import TYPE_CHECKING
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.basis.job import Job, TrussSpec
+from rooftruss.design.design import LIMIT, Outcome, outcome_of
+from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, run
+from rooftruss.errors import JobError
+from rooftruss.loads.actions import AreaLoads
+from rooftruss.shapes.forming import Dimensions, layout_of
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+Array = NDArray[np.float64]
+CHUNK_BYTES = 48e6  # memory of the largest array of a chunk; about six such arrays live at once
+LARGEST_CHUNK = 256  # trusses; more gives no speed, the arrays leave the processor's cache
+Sizes = Mapping[str, tuple[str, str]]  # group -> (size, grade)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Report:
+    """Result of a batch, one row per truss in the order given.
+
+    worst (truss,): largest utilisation or deflection ratio; member, rule and combination name where it is; down,
+    uplift (truss,) [N]; volume [m3], mass [kg].
+    """
+
+    mark: tuple[str, ...]
+    worst: Array
+    utilisation: Array
+    member: tuple[str, ...]
+    rule: tuple[str, ...]
+    combination: tuple[str, ...]
+    bearing: Array
+    deflection: Array
+    down: Array
+    uplift: Array
+    volume: Array
+    mass: Array
+
+    @property
+    def passes(self) -> NDArray[np.bool_]:
+        """Whether nothing exceeds its limit (truss,)."""
+        return self.worst <= LIMIT
+
+    def frame(self) -> "pd.DataFrame":
+        """The same as a data frame, SI units, indexed by mark."""
+        import pandas as pd
+
+        columns = {f.name: getattr(self, f.name) for f in fields(self)}
+        return pd.DataFrame({**columns, "passes": self.passes}).set_index("mark")
+
+
+def check_many(
+    job: Job,
+    specs: Sequence[TrussSpec],
+    sizes: Sequence[Sizes],
+    *,
+    executor: Executor | None = None,
+    progress: Callable[[int, int], None] | None = None,
+) -> Report:
+    """Analyse and check many trusses with given sizes and grades.
+
+    sizes: one mapping per truss, or a single one for all, of group to (size, grade) names. `progress(done, all)` is
+    called after every chunk. Raises JobError naming the truss whose input does not fit.
+    """
+    if len(sizes) not in (1, len(specs)):
+        raise JobError(f"sizes for {len(sizes)} trusses were given, {len(specs)} trusses; give one for each, or one for all")
+    chunks = list(_chunks(job, specs, list(sizes) * (len(specs) if len(sizes) == 1 else 1)))
+    results = executor.map(_chunk_report, chunks) if executor else map(_chunk_report, chunks)
+    parts: list[Report] = []
+    rows: list[NDArray[np.intp]] = []
+    for chunk, part in zip(chunks, results, strict=True):
+        parts.append(part)
+        rows.append(chunk.rows)
+        if progress:
+            progress(sum(map(len, rows)), len(specs))
+    return _joined(parts, rows)
+
+
+@dataclass(frozen=True, slots=True)
+class _Chunk:
+    rows: NDArray[np.intp]  # numbers of the trusses in the caller's order
+    family: Family
+    choice: Choice
+    marks: tuple[str, ...]
+
+
+def _shared_key(job: Job, spec: TrussSpec) -> object:
+    """What trusses must have in common to be one family."""
+    timber = spec.timber
+    points = tuple((p.action, p.chord, p.note) for p in spec.loads.points)
+    groups = tuple(sorted((g, t.restraint) for g, t in timber.groups.items()))
+    alone = spec.mark if points else ""  # a point load may stand on another member in the next truss
+    return (layout_of(spec), groups, tuple(sorted((k, str(v)) for k, v in timber.options.items())), spec.quantity >= 3, alone)
+
+
+def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Iterator[_Chunk]:
+    groups: dict[object, list[int]] = {}
+    for k, spec in enumerate(specs):
+        try:
+            groups.setdefault(_shared_key(job, spec), []).append(k)
+        except JobError as error:
+            raise JobError(f"truss {spec.mark}: {error}") from None
+    for rows in groups.values():
+        family = family_of(job, [specs[k] for k in rows])
+        choice = _choice([sizes[k] for k in rows])
+        step = _chunk_length(family)
+        for start in range(0, len(rows), step):
+            part = slice(start, start + step)
+            yield _Chunk(
+                np.array(rows[part]), _part(family, part), choice.part(part), tuple(specs[k].mark for k in rows[part])
+            )
+
+
+def _choice(sizes: Sequence[Sizes]) -> Choice:
+    from rooftruss.basis.grades import find_grade
+    from rooftruss.basis.sections import find_section
+
+    options: dict[str, tuple[Option, ...]] = {}
+    index: dict[str, NDArray[np.intp]] = {}
+    for group in GROUPS:
+        names = [s[group] for s in sizes]
+        kinds = list(dict.fromkeys(names))
+        number = {kind: k for k, kind in enumerate(kinds)}
+        options[group] = tuple(Option(find_section(size), find_grade(grade)) for size, grade in kinds)
+        index[group] = np.array([number[name] for name in names])
+    return Choice(options=options, index=index)
+
+
+def _chunk_length(family: Family) -> int:
+    """Trusses per chunk: the widest array holds 5 numbers per segment under every combination (about 200)."""
+    numbers = 5 * 2 * len(family.topology.members) * 200
+    return int(max(1, min(LARGEST_CHUNK, CHUNK_BYTES // (8 * numbers))))
+
+
+def _part(family: Family, rows: slice) -> Family:
+    size = Dimensions(**{f.name: getattr(family.size, f.name)[rows] for f in fields(Dimensions)})
+    loads = AreaLoads(**{f.name: getattr(family.loads, f.name)[rows] for f in fields(AreaLoads)})
+    points = tuple(replace(p, x=p.x[rows], force=p.force[rows]) for p in family.points)
+    return replace(family, size=size, loads=loads, points=points)
+
+
+def _chunk_report(chunk: _Chunk) -> Report:
+    done = run(chunk.family, chunk.choice)
+    outcome = outcome_of(done)
+    each = np.arange(len(chunk.rows))
+    member = outcome.utilisation.value.argmax(axis=-1)
+    return Report(
+        mark=chunk.marks,
+        worst=outcome.worst,
+        utilisation=outcome.utilisation.value[each, member],
+        member=tuple(done.members.names[k] for k in member),
+        rule=tuple(done.checks.rules[k].name for k in outcome.rule[each, member]),
+        combination=tuple(_named(done.combinations.names, k) for k in outcome.utilisation.combination[each, member]),
+        **_totals(outcome),
+    )
+
+
+def _named(names: tuple[str, ...], number: int) -> str:
+    return names[number] if number >= 0 else "-"
+
+
+def _totals(outcome: Outcome) -> dict[str, Array]:
+    return {
+        "bearing": outcome.bearing.value.max(axis=-1),
+        "deflection": outcome.deflection.ratio.max(axis=-1),
+        "down": outcome.reactions.down.value.max(axis=-1),
+        "uplift": outcome.reactions.uplift.value.max(axis=-1),
+        "volume": outcome.volume,
+        "mass": outcome.mass,
+    }
+
+
+def _joined(parts: Sequence[Report], rows: Sequence[NDArray[np.intp]]) -> Report:
+    """Chunk reports as one, in the caller's order."""
+    order = np.argsort(np.concatenate(rows)) if rows else np.zeros(0, dtype=np.intp)
+    columns: dict[str, object] = {}
+    for f in fields(Report):
+        values = [getattr(p, f.name) for p in parts]
+        if values and isinstance(values[0], np.ndarray):
+            columns[f.name] = np.concatenate(values)[order]
+        else:
+            flat = [x for part in values for x in part]
+            columns[f.name] = tuple(flat[k] for k in order)
+    return Report(**columns)  # type: ignore[arg-type]

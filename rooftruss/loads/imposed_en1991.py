@@ -1,0 +1,120 @@
+"""Imposed loads to EN 1991-1-1:2002: a roof that is walked on for maintenance only (category H), and the loft."""
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from typing import cast
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.basis.tables import read_table
+from rooftruss.errors import OutOfScopeError
+from rooftruss.loads.roof import ActionCase, Roof, SurfaceLoad, Value
+from rooftruss.shapes.truss import Truss
+from rooftruss.units import shown
+
+Array = NDArray[np.float64]
+LEFT = ("left tail", "left slope")
+RIGHT = ("right slope", "right tail")
+CLAUSE = "EN 1991-1-1, 6.3.4.2"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class WalkedPoint:
+    """A concentrated load at one place of its walk: its case (which holds no other load), and where it stands."""
+
+    case: ActionCase
+    member: int  # chord member below or above x
+    x: Array  # plan position from the left bearing centre (...,) [m]
+    force: float  # downwards [N]
+
+
+def category_h(name: str) -> tuple[float, float, float]:
+    """(recommended, least, most) of "q" [Pa] or "Q" [N] of category H; EN 1991-1-1:2002, Table 6.10.
+
+    >>> category_h("Q")
+    (1000.0, 900.0, 1500.0)
+    """
+    row = read_table("loads/imposed_roof_en1991").where(category="H")
+    return tuple(cast(float, row[f"{name}_{which}"]) for which in ("k", "least", "most"))  # type: ignore[return-value]
+
+
+def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
+    """Uniform load q_k [Pa, on plan] of category H (action Lr) on the whole roof and on either half; EN 1991-1-1, 6.3.4.
+
+    A free action (6.2.1(1)): the halves reverse webs that the full load leaves alone. None where it is zero on all
+    roofs. Raises OutOfScopeError above the range of Table 6.10: such a roof is of category I and has other factors.
+    """
+    q = np.asarray(roof_live, dtype=float)
+    if not np.any(q):
+        return []
+    most = category_h("q")[2]
+    if np.any(q > most * (1 + 1e-9)):
+        raise OutOfScopeError(
+            f"[loads] roof_live {shown(float(np.max(q)), 'pressure', 'metric')}: EN 1991-1-1, Table 6.10 gives up to "
+            f"{shown(most, 'pressure', 'metric')} for roofs of category H; a roof in use is of category I, not covered"
+        )
+    q = q + np.zeros_like(np.asarray(roof.span, dtype=float))
+    value = Value(symbol="q_k", value=q, kind="pressure", clause=f"{CLAUSE}, Table 6.10")
+    patterns = (("full", "full", LEFT + RIGHT), ("left half", "left", LEFT), ("right half", "right", RIGHT))
+    return [
+        ActionCase(
+            name=f"imposed on roof, {name}", short=short, action="Lr", pattern="", loads=_on(on, q), values=(value,)
+        )
+        for name, short, on in patterns
+    ]
+
+
+def loft_cases(loft: Array) -> list[ActionCase]:
+    """Imposed load of the loft (action L) [Pa, on plan] over the whole bottom chord; none where it is zero.
+
+    Storage fills a loft slowly and is taken over the whole of it; the scheme says whether its psi factors are those of
+    category A or of category E (EN 1990, Table A1.1).
+    """
+    if not np.any(loft):
+        return []
+    q = np.asarray(loft, dtype=float)
+    value = Value(symbol="q_k", value=q, kind="pressure", clause="EN 1991-1-1, 6.3.1 and 6.3.2")
+    return [
+        ActionCase(
+            name="imposed in loft", short="", action="L", pattern="", loads=_on(("ceiling",), q), values=(value,)
+        )
+    ]
+
+
+def walked_points(truss: Truss, force: float, surfaces: Sequence[str] = (*LEFT, *RIGHT)) -> list[WalkedPoint]:
+    """Places of the concentrated load Q_k [N] of category H on its walk (action Lr); EN 1991-1-1, 6.3.4.2(4).
+
+    Over the top chord: the middle and both ends of every panel, and the tail ends. Each place is a case of its own that
+    excludes the uniform load and the other places, as Q_k and q_k act apart. None for a force of zero.
+    """
+    if not force:
+        return []
+    value = Value(symbol="Q_k", value=force, kind="force", clause=f"{CLAUSE}, Table 6.10")
+    made = []
+    for member, place, x in _walk(truss, surfaces):
+        case = ActionCase(
+            name=f"person on roof, {place}", short=place, action="Lr", pattern="person", loads=(), values=(value,)
+        )
+        made.append(WalkedPoint(case=case, member=member, x=x, force=force))
+    return made
+
+
+def _walk(truss: Truss, surfaces: Sequence[str]) -> Iterator[tuple[int, str, Array]]:
+    """(member, place in words, plan position) of every stop, from the left; a shared panel point is one stop."""
+    made = truss.topology
+    seen: set[int] = set()
+    for k in made.on(*surfaces):
+        member = made.members[k]
+        start, end = truss.start_xy[..., k, 0], truss.end_xy[..., k, 0]
+        if member.start not in seen:
+            seen.add(member.start)
+            yield k, f"at {made.nodes[member.start]}", start
+        yield k, f"middle of {member.name}", (start + end) / 2
+        if member.end not in seen:
+            seen.add(member.end)
+            yield k, f"at {made.nodes[member.end]}", end
+
+
+def _on(surfaces: Sequence[str], pressure: Array) -> tuple[SurfaceLoad, ...]:
+    return tuple(SurfaceLoad(surface=s, kind="plan", pressure=pressure) for s in surfaces)

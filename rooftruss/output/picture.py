@@ -1,0 +1,103 @@
+"""Elevation of a truss as lines and labels [m], for the chart of the workbook or any other drawing."""
+
+from dataclasses import dataclass
+
+from rooftruss.design.design import Design
+from rooftruss.shapes.truss import Truss
+
+Point = tuple[float, float]
+MARK = 0.022  # size of a support mark, as a share of the width of the picture
+POSITION = {"top chord": "above", "tail": "above", "bottom chord": "below", "web": "on"}
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Path:
+    """A set of strokes drawn alike; each stroke is a polyline."""
+
+    name: str  # "top chord", "bottom chord", "web", "support"
+    strokes: tuple[tuple[Point, ...], ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Label:
+    """A word at a point; position says on which side of it: "above", "below", "left", "right", "on"."""
+
+    text: str
+    at: Point
+    position: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Picture:
+    """Everything that is drawn, and the box (left, bottom, right, top) that holds the lines."""
+
+    paths: tuple[Path, ...]
+    member_names: tuple[Label, ...]
+    panel_points: tuple[Label, ...]
+    box: tuple[float, float, float, float]
+
+
+def picture_of(truss: Truss) -> Picture:
+    """Elevation of an unbatched truss."""
+    x, y = truss.xy[:, 0], truss.xy[:, 1]
+    mark = MARK * float(x.max() - x.min())
+    groups = dict.fromkeys(m.group for m in truss.topology.members)
+    paths = [Path(name=g, strokes=_strokes(truss, g)) for g in groups]
+    return Picture(
+        paths=(*paths, Path(name="support", strokes=tuple(s for k in range(len(truss.topology.supports)) for s in _support(truss, k, mark)))),
+        member_names=tuple(_member_name(truss, k) for k in range(len(truss.topology.members))),
+        panel_points=tuple(_panel_point(truss, k) for k in range(len(truss.topology.nodes))),
+        box=(float(x.min()), float(y.min()) - 1.5 * mark, float(x.max()), float(y.max())),
+    )
+
+
+def picture(design: Design) -> Picture:
+    """Elevation of a design."""
+    return picture_of(design.run.truss)
+
+
+def _point(truss: Truss, node: int) -> Point:
+    return (float(truss.xy[node, 0]), float(truss.xy[node, 1]))
+
+
+def _strokes(truss: Truss, group: str) -> tuple[tuple[Point, ...], ...]:
+    """Members of a group as polylines; one that starts where the last one ended carries on its stroke."""
+    strokes: list[list[int]] = []
+    members = sorted((m for m in truss.topology.members if m.group == group), key=lambda m: truss.xy[m.start, 0])
+    for m in members:
+        if strokes and strokes[-1][-1] == m.start:
+            strokes[-1].append(m.end)
+        else:
+            strokes.append([m.start, m.end])
+    return tuple(tuple(_point(truss, n) for n in stroke) for stroke in strokes)
+
+
+def _support(truss: Truss, number: int, mark: float) -> list[tuple[Point, ...]]:
+    """Triangle under a bearing; a roller has a line below it."""
+    support = truss.topology.supports[number]
+    x, y = _point(truss, support.node)
+    half = 0.6 * mark
+    triangle = ((x, y), (x - half, y - mark), (x + half, y - mark), (x, y))
+    if support.horizontal:
+        return [triangle]
+    return [triangle, ((x - half, y - 1.4 * mark), (x + half, y - 1.4 * mark))]
+
+
+def _member_name(truss: Truss, k: int) -> Label:
+    member = truss.topology.members[k]
+    (x0, y0), (x1, y1) = _point(truss, member.start), _point(truss, member.end)
+    return Label(text=member.name, at=((x0 + x1) / 2, (y0 + y1) / 2), position=POSITION.get(member.role, "on"))
+
+
+def _panel_point(truss: Truss, node: int) -> Label:
+    """Letter above a point of the roof, below one of the bottom chord, beside a bearing."""
+    x, y = _point(truss, node)
+    middle = float(truss.xy[:, 0].mean())
+    roles = {m.role for m in truss.topology.members if node in (m.start, m.end)}
+    if node in {s.node for s in truss.topology.supports}:
+        position = "left" if x < middle else "right"
+    elif roles <= {"tail"}:
+        position = "below"
+    else:
+        position = "below" if "bottom chord" in roles else "above"
+    return Label(text=truss.topology.nodes[node], at=(x, y), position=position)

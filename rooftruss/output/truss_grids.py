@@ -1,0 +1,312 @@
+"""Grids of one truss: members, reactions, deflections, loading, and the combinations these speak of."""
+
+from collections.abc import Collection
+from functools import lru_cache
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.analysis.envelope import Peak
+from rooftruss.analysis.inspection import pin_jointed_axial, triangulation
+from rooftruss.design.design import LIMIT, Design
+from rooftruss.design.stages import GROUPS
+from rooftruss.loads.cases import LoadCases
+from rooftruss.loads.roof import ActionCase, SurfaceLoad
+from rooftruss.output.schedule import Cell, Column, Grid
+
+COMBINATION = Column("Comb.", "combination")
+ACTS = {
+    "plan": "down, per plan area",
+    "slope": "down, per sloping area",
+    "normal": "square to the surface, towards it",
+    "right": "to the right, per upright area",
+}
+BOTH = {
+    ("left tail", "left slope", "right slope", "right tail"): "whole roof",
+    ("left slope", "right slope"): "both slopes",
+    ("left tail", "right tail"): "both tails",
+}
+
+
+def governing(found: Peak, k: int) -> tuple[float, int]:
+    """Value and combination number of one entry of a peak."""
+    return float(found.value[k]), int(found.combination[k])
+
+
+@lru_cache(maxsize=64)
+def idle_members(design: Design) -> frozenset[str]:
+    """Members of the pin-jointed truss that carry nothing in any strength combination; tails are left out."""
+    run = design.run
+    axial = pin_jointed_axial(run.truss, run.stiffness_axial, run.cases)
+    combined = np.abs(run.combinations.factors[run.combinations.strength] @ axial)
+    idle = np.all(combined <= 1e-9 * combined.max(axis=-1, keepdims=True), axis=0)
+    names = run.family.topology.names
+    return frozenset(names[k] for k in triangulation(run.family.topology).members if idle[k])
+
+
+def members_grid(design: Design, idle: Collection[str] = ()) -> Grid:
+    """Every member: size, governing effects with their combinations, and its worst check. `idle` are marked."""
+    columns = (
+        Column("Member"),
+        Column("Part"),
+        Column("Size"),
+        Column("Grade"),
+        Column("Length", "length"),
+        Column("Tension", "force"),
+        COMBINATION,
+        Column("Com-pression", "force"),
+        COMBINATION,
+        Column("Bending moment", "moment"),
+        COMBINATION,
+        Column("Shear", "force"),
+        COMBINATION,
+        Column("Utili-sation", "ratio"),
+        COMBINATION,
+        Column("Result", "result"),
+        Column("Governing rule"),
+        Column("Clause"),
+        Column("Axial force"),
+    )
+    return Grid("Members", columns, tuple(_member(design, k, idle) for k in range(len(design.run.members.names))))
+
+
+def _member(design: Design, k: int, idle: Collection[str]) -> tuple[Cell, ...]:
+    made, outcome, effects = design.run.family.topology.members[k], design.outcome, design.outcome.envelope
+    option = design.sizes[made.group]
+    value, combination = governing(outcome.utilisation, k)
+    rule = design.run.checks.rules[int(outcome.rule[k])]
+    acting = combination >= 0
+    return (
+        made.name,
+        made.role,
+        size_text(option.section.name, design.spec.plies),
+        option.grade.name,
+        float(design.run.truss.length[k]),
+        *governing(effects.tension, k),
+        *governing(effects.compression, k),
+        *governing(effects.moment, k),
+        *governing(effects.shear, k),
+        value,
+        combination,
+        value <= LIMIT,
+        rule.name if acting else None,
+        rule.clause if acting else None,
+        "always 0" if made.name in idle else None,
+    )
+
+
+def size_text(name: str, plies: int) -> str:
+    """Size with the number of plies where there are several.
+
+    >>> size_text("2x6", 1), size_text("2x6", 2)
+    ('2x6', '2 ply 2x6')
+    """
+    return name if plies == 1 else f"{plies} ply {name}"
+
+
+def reactions_grid(design: Design) -> Grid:
+    """Support forces on the bearings, and the timber across the grain above them."""
+    columns = (
+        Column("Panel point"),
+        Column("Held"),
+        Column("Bearing length", "size"),
+        Column("Down", "force"),
+        COMBINATION,
+        Column("Uplift", "force"),
+        COMBINATION,
+        Column("Side-ways", "force"),
+        COMBINATION,
+        Column("Utili-sation", "ratio"),
+        COMBINATION,
+        Column("Result", "result"),
+        Column("Rule"),
+    )
+    run, found = design.run, design.outcome
+    rows = []
+    for k, support in enumerate(run.family.topology.supports):
+        value, combination = governing(found.bearing, k)
+        rows.append(
+            (
+                run.family.topology.nodes[support.node],
+                "down + sideways" if support.horizontal else "down",
+                float(run.truss.bearing),
+                *governing(found.reactions.down, k),
+                *governing(found.reactions.uplift, k),
+                *governing(found.reactions.horizontal, k),
+                value,
+                combination,
+                value <= LIMIT,
+                "chord across the grain on the wall plate",
+            )
+        )
+    return Grid("Reactions and bearings", columns, tuple(rows))
+
+
+def deflections_grid(design: Design) -> Grid:
+    """Deflection nearest to its limit at every place, up and right positive."""
+    columns = (
+        Column("Place"),
+        Column("Direction"),
+        Column("Deflec-tion", "deflection"),
+        Column("Limit", "deflection"),
+        Column("Share of limit", "ratio"),
+        COMBINATION,
+        Column("Result", "result"),
+        Column("Service combination"),
+    )
+    found = design.outcome.deflection
+    rows = tuple(
+        (
+            p.name if p.kind == "node" else f"mid {p.name}",
+            p.direction,
+            float(found.value[k]),
+            float(found.limit[k]),
+            float(found.ratio[k]),
+            int(found.combination[k]),
+            bool(found.ratio[k] <= LIMIT),
+            design.combination(int(found.combination[k])).removeprefix("deflection, "),
+        )
+        for k, p in enumerate(found.places)
+    )
+    return Grid("Deflections", columns, rows)
+
+
+def loading_grid(design: Design) -> Grid:
+    """One row per load case: range of its pressures and its whole force on the truss."""
+    columns = (
+        Column("Case", "count"),
+        Column("Load case"),
+        Column("Action"),
+        Column("Least", "pressure"),
+        Column("Most", "pressure"),
+        Column("Total down", "force"),
+        Column("Total right", "force"),
+        Column("How it acts"),
+        Column("Clause"),
+    )
+    cases = design.run.cases
+    right, down = _totals(design, cases)
+    rows = tuple(
+        (k + 1, head.name, head.action, *_range(head), float(down[k]), float(right[k]), _how(head, design), case_clause(head))
+        for k, head in enumerate(cases.heads)
+    )
+    return Grid("Loading", columns, rows)
+
+
+def _totals(design: Design, cases: LoadCases) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+    """Resultant of every case, to the right and down (c,) [N]; without loads straight onto a support."""
+    total = np.einsum("csx,s->cx", cases.q, cases.x1 - cases.x0) + cases.nodal.sum(axis=-2)
+    for p in cases.points:
+        total[p.case] += (float(p.fx), float(p.fy))
+    return total[:, 0], -total[:, 1]
+
+
+def _pressures(head: ActionCase) -> list[float]:
+    return [float(load.pressure) for load in head.loads if load.surface != "self-weight"]
+
+
+def _range(head: ActionCase) -> tuple[float | None, float | None]:
+    """Least and greatest pressure of a case, none where it has none (self-weight, point loads)."""
+    pressures = _pressures(head)
+    return (min(pressures), max(pressures)) if pressures else (None, None)
+
+
+def _how(head: ActionCase, design: Design) -> str:
+    if not head.loads:
+        notes = [p.note for p in design.spec.loads.points if p.action == head.action and p.note]
+        return "point loads" + (f": {', '.join(notes)}" if notes else "")
+    if head.loads[0].surface == "self-weight":
+        return "down, per length of member"
+    return "; ".join(dict.fromkeys(ACTS[load.kind] for load in head.loads))
+
+
+def case_clause(head: ActionCase) -> str:
+    """Clause of the last value of a case, the one that the load itself comes from."""
+    return head.values[-1].clause if head.values else "job"
+
+
+def surfaces_grid(design: Design) -> Grid:
+    """Every uniform load of every case on the roof surfaces; surfaces that carry the same are listed together."""
+    columns = (
+        Column("Case", "count"),
+        Column("Load case"),
+        Column("Surface"),
+        Column("How it acts"),
+        Column("Pressure", "pressure"),
+        Column("From x", "length"),
+        Column("To x", "length"),
+    )
+    rows: list[tuple[Cell, ...]] = []
+    for k, head in enumerate(design.run.cases.heads):
+        for surfaces, load in _alike(head):
+            if load.surface != "self-weight":
+                place = (None if x is None else float(x) for x in (load.x_from, load.x_to))
+                rows.append((k + 1, head.name, surfaces, ACTS[load.kind], float(load.pressure), *place))
+    for point in design.spec.loads.points:
+        row = [k for k, head in enumerate(design.run.cases.heads) if not head.loads and head.action == point.action]
+        text = f"point load {point.note}".strip()
+        centre = point.position - design.spec.bearing / 2
+        rows.append((row[0] + 1, text, f"{point.chord} chord", "down, see the loading of the truss", None, centre, centre))
+    return Grid("Loads on the surfaces", columns, tuple(rows))
+
+
+def _alike(head: ActionCase) -> list[tuple[str, SurfaceLoad]]:
+    """Loads of a case with the words for all surfaces that carry the same, in the order of the case."""
+    groups: dict[tuple[object, ...], list[SurfaceLoad]] = {}
+    for load in head.loads:
+        reach = tuple(None if x is None else float(x) for x in (load.x_from, load.x_to))
+        groups.setdefault((load.kind, float(load.pressure), *reach), []).append(load)
+    return [(_surfaces(tuple(load.surface for load in loads)), loads[0]) for loads in groups.values()]
+
+
+def _surfaces(names: tuple[str, ...]) -> str:
+    order = ("left tail", "left slope", "right slope", "right tail", "ceiling", "self-weight")
+    ordered = tuple(sorted(names, key=order.index))
+    return BOTH.get(ordered, ", ".join(ordered))
+
+
+def named_combinations_grid(design: Design) -> Grid:
+    """The combinations that the other grids of the truss name by number."""
+    outcome, combinations = design.outcome, design.run.combinations
+    effects, reactions = outcome.envelope, outcome.reactions
+    peaks = (effects.tension, effects.compression, effects.moment, effects.shear, outcome.utilisation, outcome.bearing)
+    peaks += (reactions.down, reactions.uplift, reactions.horizontal)
+    used = {int(n) for p in peaks for n in p.combination} | {int(n) for n in outcome.deflection.combination}
+    rows = tuple(
+        (n, combinations.names[n].removeprefix("deflection, "), combinations.clauses[n], combinations.durations[n])
+        for n in sorted(used - {-1})
+    )
+    columns = (Column("Comb.", "combination"), Column("Combination"), Column("Clause"), Column("Load duration"))
+    return Grid("Combinations named above", columns, rows)
+
+
+def sizes_grid(designs: Collection[Design]) -> Grid:
+    """Size and grade of each group of each truss with the worst utilisation in the group."""
+    columns = (
+        Column("Truss"),
+        Column("Shape"),
+        Column("Part"),
+        Column("Size"),
+        Column("Grade"),
+        Column("Utilisation", "ratio"),
+        Column("Member"),
+        Column("Result", "result"),
+    )
+    return Grid("Sizes", columns, tuple(_group(d, g) for d in designs for g in GROUPS))
+
+
+def _group(design: Design, group: str) -> tuple[Cell, ...]:
+    rows = [k for k, g in enumerate(design.run.family.topology.groups) if g == group]
+    values = design.outcome.utilisation.value[rows]
+    worst = rows[int(values.argmax())]
+    option = design.sizes[group]
+    return (
+        design.spec.mark,
+        design.spec.shape,
+        group,
+        size_text(option.section.name, design.spec.plies),
+        option.grade.name,
+        float(values.max()),
+        design.run.members.names[worst],
+        bool(values.max() <= LIMIT),
+    )

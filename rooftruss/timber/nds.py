@@ -1,0 +1,207 @@
+"""Timber by the NDS (ANSI/AWC), editions 2018 and 2024, by allowable stress (ASD) or load and resistance (LRFD)."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import numpy as np
+
+from rooftruss.basis.grades import Grade
+from rooftruss.basis.sections import Section
+from rooftruss.basis.tables import Cell, read_table
+from rooftruss.errors import JobError, OutOfScopeError, nearest
+from rooftruss.timber import nds_tables as tables
+from rooftruss.timber.check import Array, Bearings, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.nds_check import check_members
+from rooftruss.timber.nds_explain import explain_bearing, explain_member
+from rooftruss.timber.nds_formulas import bearing_area_factor, lumber_density
+
+MOISTURES = ("dry", "wet")
+TEMPERATURES = ("normal", "100 to 125 F", "125 to 150 F")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Nds:
+    """The NDS in one edition and method, under the service conditions of a job."""
+
+    edition: str  # "2018", "2024"
+    method: str  # "ASD", "LRFD"
+    moisture: str
+    temperature: str
+    incised: bool
+    buckling_stiffness: bool
+
+    @property
+    def name(self) -> str:
+        """Name in the register."""
+        return f"NDS {self.edition} {self.method}"
+
+    @property
+    def notes(self) -> tuple[str, ...]:
+        """Choices that belong among the printed assumptions."""
+        notes = [
+            f"the largest axial force and the largest moment of a member are taken together (NDS {self.edition}, 3.9)",
+            "beam stability by the loading not listed in NDS Table 3.3.3, the least favourable row",
+            "bearing area factor C_b counts only 3 in or more from the end of a chord (NDS 3.10.4)",
+        ]
+        if self.buckling_stiffness:
+            notes.append(
+                "C_T taken: lumber at 19 percent moisture or less when the roof sheathing is nailed (NDS 4.4.2)"
+            )
+        if self.edition == "2024":
+            notes.append("NDS 2024: reference values, factors and shear rules are those of 2018; check 3.4 for changes")
+        return tuple(notes)
+
+    def properties(self, grade: Grade, section: Section) -> dict[str, float]:
+        """Reference values, their factors and the products [Pa, -] of a grade in a size; NDS Table 4.3.1.
+
+        "Fb", "Ft" ... hold every factor that depends on neither duration nor length, K_F and phi with LRFD;
+        "E" is the mean modulus C_M C_t C_i E, "density" [kg/m3] the self weight at the moisture of the job.
+        Raises JobError for a grade of another family or without a needed value, OutOfScopeError for a size the
+        grade is not made in.
+        """
+        if grade.family != "NDS":
+            raise JobError(f"grade {grade.name!r} is for {grade.family}, the scheme checks by the {self.name}")
+        row = grade.values_for(section)
+        missing = [key for key in (*tables.PROPERTIES, "product") if key not in row]
+        if missing:
+            raise JobError(f"grade {grade.name!r} ({grade.table}) lacks {', '.join(missing)}; the NDS needs it")
+        product = tables.product(str(row["product"]), edition=self.edition)
+        if product.dry_only and (self.moisture != "dry" or self.incised):
+            raise OutOfScopeError(
+                f"grade {grade.name!r}: NDS 8.1.4 gives {row['product']} lumber for dry, untreated use only"
+            )
+        values = {
+            "density": self._density(grade, row),
+            "column_c": product.column_c,
+            "C_r": product.repetitive,
+            "K_T": product.K_T if product.K_T > 0 else 0.0,
+        }
+        for prop in tables.PROPERTIES:
+            values |= self._adjusted(prop, row, section)
+        return values
+
+    def _adjusted(self, prop: str, row: Mapping[str, Cell], section: Section) -> dict[str, float]:
+        edition, reference = self.edition, _positive(row, prop)
+        C_F = tables.size_factor(prop, str(row["size_class"]), section.breadth, section.depth, edition=edition)
+        factors = {
+            "C_M": tables.wet_service_factor(prop, reference, C_F, moisture=self.moisture, edition=edition),
+            "C_t": tables.temperature_factor(
+                prop, moisture=self.moisture, temperature=self.temperature, edition=edition
+            ),
+            "C_F": C_F,
+            "C_i": tables.incising_factor(prop, incised=self.incised, edition=edition),
+            "K_F": 1.0,
+            "phi": 1.0,
+        }
+        if self.method == "LRFD":
+            factors["K_F"], factors["phi"] = tables.format_and_resistance(prop, edition=edition)
+        values = {f"{prop} {letter}": factor for letter, factor in factors.items()}
+        return values | {f"{prop} reference": reference, prop: reference * float(np.prod(list(factors.values())))}
+
+    def _density(self, grade: Grade, row: Mapping[str, Cell]) -> float:
+        if "density" in row:
+            return _positive(row, "density")
+        if "G" not in row:
+            raise JobError(f"grade {grade.name!r} ({grade.table}) lacks G or density; self weight needs one of them")
+        content = read_table("timber/self_weight_moisture").where(moisture=self.moisture)["content"]
+        return float(lumber_density(_positive(row, "G"), float(content)))
+
+    def duration_factors(self, durations: Durations) -> Array:
+        """C_D (ASD, by the shortest load) or lambda (LRFD, by the scheme) of each combination (k,)."""
+        if self.method == "ASD":
+            return np.array([tables.load_duration_factor(name, edition=self.edition) for name in durations.names])
+        factors = np.asarray(durations.time_effect, dtype=float)
+        tables.require_time_effects(factors, edition=self.edition)
+        return factors
+
+    def check(self, members: Members, demand: Demand, durations: Durations) -> Checks:
+        """Worst utilisation (..., k, m) of every member under every combination; NDS chapter 3."""
+        factors = self.duration_factors(durations)
+        return check_members(members, demand, factors, edition=self.edition, buckling_stiffness=self.buckling_stiffness)
+
+    def bearing(self, bearings: Bearings, reaction: Array, durations: Durations) -> Array:
+        """Utilisation (..., k, s) across the grain; NDS 3.10.2. Neither C_D nor lambda applies; uplift gives 0."""
+        resistance = self._bearing_stress(bearings) * bearings.breadth * bearings.plies * bearings.length
+        return np.maximum(reaction, 0.0) / resistance[..., None, :]
+
+    def _bearing_stress(self, bearings: Bearings) -> Array:
+        addition, below, least = tables.bearing_area(edition=self.edition)
+        C_b = bearing_area_factor(
+            bearings.length, bearings.end_distance, addition=addition, length_below=below, least_end_distance=least
+        )
+        return np.asarray(bearings.properties["Fc_perp"] * C_b)
+
+    def explain(
+        self, members: Members, demand: Demand, durations: Durations, member: int, combination: int
+    ) -> tuple[Step, ...]:
+        """The check of one member of an unbatched truss, line by line; its last step is the utilisation of `check`."""
+        factor = float(self.duration_factors(durations)[combination])
+        duration = f"shortest load: {durations.names[combination]}" if self.method == "ASD" else "row of the scheme"
+        return explain_member(
+            members,
+            demand,
+            factor,
+            duration,
+            member,
+            combination,
+            edition=self.edition,
+            lrfd=self.method == "LRFD",
+            buckling_stiffness=self.buckling_stiffness,
+        )
+
+    def explain_bearing(
+        self, bearings: Bearings, reaction: Array, durations: Durations, bearing: int, combination: int
+    ) -> tuple[Step, ...]:
+        """The bearing check of one support of an unbatched truss, line by line."""
+        stress = float(np.broadcast_to(self._bearing_stress(bearings), bearings.length.shape)[bearing])
+        force = float(reaction[combination, bearing])
+        return explain_bearing(bearings, force, stress, bearing, edition=self.edition, lrfd=self.method == "LRFD")
+
+    def creep(self) -> Creep:
+        """Creep under lasting load, K_cr - 1; NDS 3.5.2. IBC Table 1604.3, note d, takes that share of dead load."""
+        K_cr = tables.creep_factor(self.moisture, edition=self.edition)
+        text = f"K_cr = {K_cr:g}, {self.moisture} service: lasting load deflects {K_cr:g} times its immediate amount"
+        return Creep(coefficient=K_cr - 1, clause=f"NDS {self.edition} 3.5.2", text=text)
+
+
+def nds_standard(name: str, options: Mapping[str, object]) -> Nds:
+    """The NDS called `name` ("NDS 2018 ASD") with the keys moisture, temperature, incised and buckling_stiffness.
+
+    Other keys of [timber] are not the standard's. Raises JobError naming the key that is missing or wrong.
+    """
+    _, edition, method = name.split()
+    moisture, temperature = _word(options, "moisture", MOISTURES), _word(options, "temperature", TEMPERATURES)
+    stiff = _flag(options, "buckling_stiffness")
+    if stiff and moisture != "dry":
+        raise JobError(
+            '[timber] buckling_stiffness: NDS 4.4.2 allows C_T only in dry service; set it false or moisture = "dry"'
+        )
+    return Nds(
+        edition=edition,
+        method=method,
+        moisture=moisture,
+        temperature=temperature,
+        incised=_flag(options, "incised"),
+        buckling_stiffness=stiff,
+    )
+
+
+def _word(options: Mapping[str, object], key: str, allowed: tuple[str, ...]) -> str:
+    value = options.get(key)
+    if value not in allowed:
+        raise JobError(f"[timber] {key}: {value!r} is not a choice of the NDS; {nearest(str(value), allowed)}")
+    return str(value)
+
+
+def _flag(options: Mapping[str, object], key: str) -> bool:
+    value = options.get(key)
+    if not isinstance(value, bool):
+        raise JobError(f"[timber] {key}: {value!r} must be true or false")
+    return value
+
+
+def _positive(row: Mapping[str, Cell], key: str) -> float:
+    value = row[key]
+    if not isinstance(value, float) or not value > 0:
+        raise JobError(f"grade {row['name']!r}: {key} is {value!r}, it must be a number above zero")
+    return value
