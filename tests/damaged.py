@@ -92,6 +92,7 @@ EDITS = (
     ("unknown_site_key", "\nexposure =", "\nexposre =", "[site]: there is no key 'exposre'; did you mean 'exposure'?"),
     ("unknown_load_key", "roof_live", "roof_life", "[loads]: there is no key 'roof_life'; did you mean 'roof_live'?"),
     ("unknown_table", "[loads]", "[load]", "[load]: there is no such table; did you mean 'loads'?"),
+    ("unknown_top_key", "[job]", '"a\\nb" = 1\n[job]', "[a\\nb]: there is no such table; allowed: 'job', 'standard'"),
     ("unknown_scheme", "22-asd", "21-asd", "[standard] scheme: there is no scheme 'asce7-21-asd'; did you mean"),
     ("scheme_number", '"asce7-22-asd"', "7", "[standard] scheme: 7 is not text; write it in quotes"),
     (

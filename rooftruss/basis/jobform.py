@@ -12,6 +12,7 @@ from rooftruss.basis.jobtrusses import TrussReader
 from rooftruss.basis.kinds import Choice, Number
 from rooftruss.basis.schemes import Scheme, load_scheme
 from rooftruss.basis.tablereader import Entries, Given, TableReader
+from rooftruss.basis.written import told
 from rooftruss.errors import JobError, nearest
 
 TABLES = ("job", "standard", "site", "loads", "timber", "deflection", "truss")
@@ -91,7 +92,7 @@ def _tables(reader: TableReader, data: Mapping[str, object]) -> dict[str, dict[s
     """Entries of every table but [[truss]]; a table that is absent has none."""
     for name in data:
         if name not in TABLES:
-            reader.problem(f"[{name[:40]}]", f"there is no such table; {nearest(name[:100], TABLES)}")
+            reader.problem(f"[{told(name)[1:-1]}]", f"there is no such table; {nearest(name[:100], TABLES)}")
     return {name: reader.table(data.get(name, {}), f"[{name}]") for name in TABLES if name != "truss"}
 
 

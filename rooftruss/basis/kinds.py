@@ -1,6 +1,5 @@
 """Kinds of values a job file may hold. Each reads one written value or raises a JobError without a place."""
 
-import math
 import re
 import unicodedata
 from collections.abc import Callable
@@ -12,7 +11,15 @@ from rooftruss.basis.job import Restraint
 from rooftruss.errors import JobError, nearest
 from rooftruss.units import SYSTEMS, shown
 
-SI_UNIT = {"length": "m", "size": "m", "pressure": "Pa", "speed": "m/s", "force": "N", "density": "kg/m^3"}
+SI_UNIT = {
+    "length": "m",
+    "size": "m",
+    "pressure": "Pa",
+    "speed": "m/s",
+    "force": "N",
+    "density": "kg/m^3",
+    "area": "m^2",
+}
 RESISTANCE = "m^2*K/W"
 LONGEST_TEXT = 200
 LONGEST_LIST = 100
@@ -88,7 +95,7 @@ class Quantity:
 
     def range(self, system: str) -> str:
         """Sentence part that gives the limits in the job's units."""
-        if self.shows not in SYSTEMS[system]:
+        if self.shows not in SYSTEMS[system] or self.shows == "area":  # areas are shown in the unit of a section
             return "allowed: {} to {}".format(*self.limits)
         least, most = (shown(written.quantity(v, self.unit), self.shows, system, 3) for v in self.limits)
         return f"allowed: {least} to {most}"
@@ -119,8 +126,8 @@ class Number:
     def read(self, value: object, system: str) -> float | int:
         """The number; an int where whole numbers are asked for."""
         sort = "a whole number" if self.whole else "a number"
-        number = value if isinstance(value, int | float) and not isinstance(value, bool) else math.nan
-        if not isinstance(value, int | float) or isinstance(value, bool) or (self.whole and number % 1 != 0):
+        number = value if isinstance(value, int | float) and not isinstance(value, bool) else None
+        if number is None or (self.whole and number % 1 != 0):
             raise JobError(f"{written.told(value)} is not {sort}; write one without quotes, {self.range()}")
         if not self.limits[0] <= number <= self.limits[1]:
             raise JobError(f"{written.told(value)} is not plausible; {self.range()}")

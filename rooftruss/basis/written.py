@@ -50,7 +50,7 @@ def quantity(value: object, unit: str) -> float:
     >>> round(quantity("3 1/2 in", "m"), 4), round(quantity("28 ft 6 in", "m"), 4), quantity("1.5 kN/m2", "Pa")
     (0.0889, 8.6868, 1500.0)
     """
-    example = ROOM_FOR.get(unit, unit)
+    example = ROOM_FOR.get(unit, f"10 {unit}")
     if isinstance(value, bool) or not isinstance(value, int | float | str):
         raise JobError(f"{told(value)} is not a quantity; write for example '{example}'")
     text = str(value).strip() if isinstance(value, str) else ""

@@ -7,7 +7,6 @@ from numpy.typing import NDArray
 
 from rooftruss.analysis.effects import mid_deflections
 from rooftruss.design.stages import Run
-from rooftruss.timber.deflection import limit_ratio, with_creep
 
 Array = NDArray[np.float64]
 
@@ -84,10 +83,10 @@ def deflections(run: Run) -> Deflections:
     sideways = np.array([p.direction == "horizontal" for p in places])
     service = np.flatnonzero(~run.combinations.strength)
     kinds = [run.combinations.kinds[k] for k in service]
-    creep = run.family.timber.creep()
-    factors = with_creep(run.combinations.factors[service], [h.action for h in run.cases.heads], kinds, creep)
+    actions = tuple(h.action for h in run.cases.heads)
+    factors = run.family.timber.service_factors(run.combinations.factors[service], actions=actions, kinds=tuple(kinds))
     value = np.matmul(factors, unit)
-    divisor = np.array([limit_ratio(run.family.job.limits.ceiling, kind) for kind in kinds])
+    divisor = np.array([run.family.timber.deflection_ratio(run.family.job.limits.ceiling, kind) for kind in kinds])
     limit = reach[..., None, :] / divisor[:, None]
     limit = np.where(sideways, run.family.job.limits.horizontal, limit)
     ratio = np.abs(value) / limit

@@ -35,7 +35,7 @@ from rooftruss.loads.cases import LoadCases, member_at
 from rooftruss.shapes.catalogue import Layout, topology
 from rooftruss.shapes.forming import Dimensions, dimensions, form, layout_of
 from rooftruss.shapes.truss import Topology, Truss
-from rooftruss.timber.check import Bearings, Checks, Demand, Durations, Members, TimberStandard, standard
+from rooftruss.timber.check import Checks, Demand, Durations, Members, TimberStandard, standard
 from rooftruss.timber.restraint import restraint_lengths
 from rooftruss.units import GRAVITY
 
@@ -212,7 +212,10 @@ def run(family: Family, choice: Choice) -> Run:
         checks=family.timber.check(members, demand, durations),
         reactions=reactions,
         bearing=family.timber.bearing(
-            bearings_of(family.topology, members, truss), np.maximum(reactions[..., 1], 0.0), durations
+            np.maximum(reactions[..., 1], 0.0),
+            take_members(members, bearing_members(family.topology)),
+            truss.bearing[..., None],
+            durations,
         ),
     )
 
@@ -256,20 +259,16 @@ def bearing_members(made: Topology) -> list[int]:
     return out
 
 
-def bearings_of(made: Topology, members: Members, truss: Truss) -> Bearings:
-    """The places where the truss rests on the walls, at the ends of its chords."""
-    resting = bearing_members(made)
-
-    def at(values: Array) -> Array:
-        return np.asarray(values)[..., resting]
-
-    return Bearings(
-        names=tuple(made.nodes[s.node] for s in made.supports),
-        breadth=at(members.breadth),
-        plies=at(members.plies),
-        length=np.broadcast_to(truss.bearing[..., None], at(members.breadth).shape),
-        end_distance=np.zeros(at(members.breadth).shape),
-        properties={name: at(values) for name, values in members.properties.items()},
+def take_members(members: Members, rows: Sequence[int]) -> Members:
+    """Some of the members, in the order asked for; a member may be taken twice."""
+    rows = list(rows)
+    arrays = ("breadth", "depth", "plies", "length", "le_strong", "le_weak", "lu_positive", "lu_negative", "load_sharing")
+    return replace(
+        members,
+        names=tuple(members.names[k] for k in rows),
+        roles=tuple(members.roles[k] for k in rows),
+        properties={name: values[..., rows] for name, values in members.properties.items()},
+        **{name: np.asarray(getattr(members, name))[..., rows] for name in arrays},
     )
 
 
@@ -279,7 +278,7 @@ def _members(family: Family, choice: Choice, truss: Truss) -> Members:
     batch = truss.length.shape[:-1]
     spread = _Spread(made, choice, batch)
     restraints = [family.spec.timber.groups[g].restraint for g in made.groups]
-    across = restraint_lengths(_length_across(truss), restraints, truss.length, made.roles)
+    across = restraint_lengths(truss.length, made.roles, restraints)
     per_length = [float(cast(float, read_table("timber/effective_length").where(role=r)["factor"])) for r in made.roles]
     kinds = {g: [family.timber.properties(o.grade, o.section) for o in choice.options[g]] for g in GROUPS}
     shape = (*np.broadcast_shapes(batch, np.shape(family.size.plies)), len(made.members))
@@ -297,17 +296,6 @@ def _members(family: Family, choice: Choice, truss: Truss) -> Members:
         load_sharing=np.array([load_sharing(family, r, x) for r, x in zip(made.roles, restraints, strict=True)]),
         properties={n: spread({g: [k[n] for k in kinds[g]] for g in GROUPS}) for n in kinds["web"][0]},
     )
-
-
-def _length_across(truss: Truss) -> Array:
-    """Length of each member between its ends across the plane (..., m): a chord runs on through its panel points."""
-    made = truss.topology
-    lines = [m.surface.replace("tail", "slope") if m.surface else m.name for m in made.members]
-    out = truss.length.copy()
-    for line in set(lines):
-        here = [k for k, x in enumerate(lines) if x == line]
-        out[..., here] = truss.length[..., here].sum(axis=-1, keepdims=True)
-    return out
 
 
 def load_sharing(family: Family, role: str, restraint: Restraint) -> bool:

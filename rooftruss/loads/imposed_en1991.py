@@ -40,7 +40,7 @@ def category_h(name: str) -> tuple[float, float, float]:
 
 
 def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
-    """Uniform load q_k [Pa, on plan] of category H (action Lr) on the whole roof and on either half; EN 1991-1-1, 6.3.4.
+    """Uniform load q_k [Pa, on plan] of category H (action Lr) on the roof and on either half; EN 1991-1-1, 6.3.4.
 
     A free action (6.2.1(1)): the halves reverse webs that the full load leaves alone. None where it is zero on all
     roofs. Raises OutOfScopeError above the range of Table 6.10: such a roof is of category I and has other factors.

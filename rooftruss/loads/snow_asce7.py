@@ -164,14 +164,13 @@ def _unbalanced(roof: Roof, site: Site, balanced: _Balanced) -> list[ActionCase]
     needed = unbalanced_applies(balanced.edition, roof.pitch)
     if not np.any(needed):
         return []
-    pitch = np.where(needed, roof.pitch, 1.0)  # no division by a pitch that is not asked about
     h_d, values = _drift(roof, site, balanced)
     gamma = snow_density(balanced.p_g)
-    surcharge, width = ridge_surcharge(h_d, gamma * GRAVITY, pitch)
+    surcharge, width = ridge_surcharge(h_d, gamma * GRAVITY, roof.pitch)
     clause = balanced.clause("7.6.1")
     values += (
         Value(symbol="gamma", value=gamma, kind="density", clause=balanced.clause("eq. 7.7-1")),
-        Value(symbol="S", value=1 / pitch, kind="ratio", clause=clause),
+        Value(symbol="S", value=1 / np.asarray(roof.pitch), kind="ratio", clause=clause),
         Value(symbol="surcharge", value=np.where(needed, surcharge, 0.0), kind="pressure", clause=clause),
         Value(symbol="surcharge width", value=np.where(needed, width, 0.0), kind="length", clause=clause),
     )

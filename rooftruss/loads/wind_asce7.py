@@ -176,9 +176,9 @@ def _normal_to_ridge(roof: Roof, wind: _Wind) -> Iterator[ActionCase]:
         patches = [*_slopes(side, windward, leeward, steep), *_zones(roof, wind, side, k, h_over_L, ~steep)]
         values = [_ratio(wind, h_over_L)]
         if np.any(steep):
-            values += [_coefficient(wind, "windward", windward), _coefficient(wind, "leeward", leeward)]
+            values += [_coefficient(wind, "windward", windward, steep), _coefficient(wind, "leeward", leeward, steep)]
         if not np.all(steep):
-            values += _zone_values(wind, k, h_over_L)
+            values += _zone_values(wind, k, h_over_L, ~steep)
         name = f"wind from {side}, {VALUES[k]} value"
         yield from _with_internal(wind, name, f"{side} {k + 1}", patches, values, soffit=f"{side} tail")
 
@@ -224,7 +224,7 @@ def _parallel_to_ridge(wind: _Wind) -> Iterator[ActionCase]:
     everywhere = np.ones_like(h_over_L, dtype=bool)
     for k, C_p in enumerate(both):
         patches = [_Patch(surface=surface, C_p=C_p, there=everywhere) for surface in SURFACES]
-        values = [_ratio(wind, h_over_L), _coefficient(wind, "", C_p)]
+        values = [_ratio(wind, h_over_L), _coefficient(wind, "", C_p, everywhere)]
         yield from _with_internal(wind, f"wind along ridge, {VALUES[k]} value", f"ridge {k + 1}", patches, values)
 
 
@@ -275,14 +275,16 @@ def _ratio(wind: _Wind, h_over_L: Array) -> Value:
     return Value(symbol="h/L", value=h_over_L, kind="ratio", clause=wind.clause("Fig. 27.3-1"))
 
 
-def _coefficient(wind: _Wind, place: str, C_p: Array) -> Value:
+def _coefficient(wind: _Wind, place: str, C_p: Array, there: Bools) -> Value:
+    """NaN for the roofs of a batch that do not use it."""
+    C_p = np.where(there, C_p, np.nan)
     return Value(symbol=f"C_p {place}".strip(), value=C_p, kind="factor", clause=wind.clause("Fig. 27.3-1"))
 
 
-def _zone_values(wind: _Wind, k: int, h_over_L: Array) -> list[Value]:
+def _zone_values(wind: _Wind, k: int, h_over_L: Array, flat: Bools) -> list[Value]:
     """Coefficients of the distance zones, for slopes under 10 deg."""
     return [
-        _coefficient(wind, f"from {low:g}h to {high:g}h" if np.isfinite(high) else f"beyond {low:g}h", both[k])
+        _coefficient(wind, f"from {low:g}h to {high:g}h" if np.isfinite(high) else f"beyond {low:g}h", both[k], flat)
         for low, high, *both in distance_coefficients(wind.edition, h_over_L)
     ]
 

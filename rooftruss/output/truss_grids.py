@@ -1,7 +1,6 @@
 """Grids of one truss: members, reactions, deflections, loading, and the combinations these speak of."""
 
 from collections.abc import Collection
-from functools import lru_cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -33,7 +32,6 @@ def governing(found: Peak, k: int) -> tuple[float, int]:
     return float(found.value[k]), int(found.combination[k])
 
 
-@lru_cache(maxsize=64)
 def idle_members(design: Design) -> frozenset[str]:
     """Members of the pin-jointed truss that carry nothing in any strength combination; tails are left out."""
     run = design.run

@@ -83,18 +83,6 @@ class Checks:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Bearings:
-    """Places where chords rest on the wall plates, arrays (..., s) [m]."""
-
-    names: tuple[str, ...]
-    breadth: Array  # of one ply of the chord
-    plies: Array
-    length: Array  # bearing length along the chord
-    end_distance: Array  # from the end of the chord to the bearing; 0 at a heel
-    properties: Mapping[str, Array]  # of the chord
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
 class Creep:
     """Growth of the deflection under lasting load: final = (1 + coefficient) times the immediate one."""
 
@@ -131,8 +119,11 @@ class TimberStandard(Protocol):
     def check(self, members: Members, demand: Demand, durations: Durations) -> Checks:
         """Worst utilisation of every member under every combination."""
 
-    def bearing(self, bearings: Bearings, reaction: Array, durations: Durations) -> Array:
-        """Utilisation (..., k, s) across the grain under reactions (..., k, s) [N, upwards on the truss]."""
+    def bearing(self, reaction: Array, members: Members, length: Array, durations: Durations) -> Array:
+        """Utilisation (..., k, s) across the grain under reactions (..., k, s) [N, upwards on the truss].
+
+        `members` are the chords (..., s) that rest on each support, `length` (..., s) the bearing lengths [m].
+        """
 
     def explain(
         self, members: Members, demand: Demand, durations: Durations, member: int, combination: int
@@ -140,12 +131,27 @@ class TimberStandard(Protocol):
         """The check of one member of an unbatched truss under one combination, line by line."""
 
     def explain_bearing(
-        self, bearings: Bearings, reaction: Array, durations: Durations, bearing: int, combination: int
+        self,
+        reaction: Array,
+        members: Members,
+        length: Array,
+        durations: Durations,
+        support: int,
+        combination: int,
     ) -> tuple[Step, ...]:
         """The bearing check of one support of an unbatched truss, line by line."""
 
+    def shares_load(self, *, role: str, sheathed: bool, quantity: int, spacing: float) -> bool:
+        """Whether a member meets the conditions for repetitive members; spacing of the trusses [m]."""
+
     def creep(self) -> Creep:
         """Creep of the deflection under lasting load in the service conditions of the job."""
+
+    def service_factors(self, factors: Array, *, actions: tuple[str, ...], kinds: tuple[str, ...]) -> Array:
+        """Factors (k, c) of service combinations of the given `kinds` (k,) on cases of `actions` (c,), with creep."""
+
+    def deflection_ratio(self, ceiling: str, kind: str) -> float:
+        """Span over the largest deflection [-] under a kind of service combination."""
 
 
 def _nds(name: str, options: Mapping[str, object]) -> TimberStandard:

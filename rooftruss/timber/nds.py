@@ -10,10 +10,11 @@ from rooftruss.basis.sections import Section
 from rooftruss.basis.tables import Cell, read_table
 from rooftruss.errors import JobError, OutOfScopeError, nearest
 from rooftruss.timber import nds_tables as tables
-from rooftruss.timber.check import Array, Bearings, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.check import Array, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.deflection import limit_ratio
 from rooftruss.timber.nds_check import check_members
 from rooftruss.timber.nds_explain import explain_bearing, explain_member
-from rooftruss.timber.nds_formulas import bearing_area_factor, lumber_density
+from rooftruss.timber.nds_formulas import lumber_density
 
 MOISTURES = ("dry", "wet")
 TEMPERATURES = ("normal", "100 to 125 F", "125 to 150 F")
@@ -29,6 +30,7 @@ class Nds:
     temperature: str
     incised: bool
     buckling_stiffness: bool
+    repetitive: bool | None  # None: by the conditions of 4.3.9
 
     @property
     def name(self) -> str:
@@ -41,7 +43,7 @@ class Nds:
         notes = [
             f"the largest axial force and the largest moment of a member are taken together (NDS {self.edition}, 3.9)",
             "beam stability by the loading not listed in NDS Table 3.3.3, the least favourable row",
-            "bearing area factor C_b counts only 3 in or more from the end of a chord (NDS 3.10.4)",
+            "bearing area factor C_b = 1.0: trusses rest at the ends of their chords (NDS 3.10.4)",
         ]
         if self.buckling_stiffness:
             notes.append(
@@ -119,17 +121,13 @@ class Nds:
         factors = self.duration_factors(durations)
         return check_members(members, demand, factors, edition=self.edition, buckling_stiffness=self.buckling_stiffness)
 
-    def bearing(self, bearings: Bearings, reaction: Array, durations: Durations) -> Array:
-        """Utilisation (..., k, s) across the grain; NDS 3.10.2. Neither C_D nor lambda applies; uplift gives 0."""
-        resistance = self._bearing_stress(bearings) * bearings.breadth * bearings.plies * bearings.length
-        return np.maximum(reaction, 0.0) / resistance[..., None, :]
+    def bearing(self, reaction: Array, members: Members, length: Array, durations: Durations) -> Array:
+        """Utilisation (..., k, s) across the grain; NDS 3.10.2. Neither C_D nor lambda applies; uplift gives 0.
 
-    def _bearing_stress(self, bearings: Bearings) -> Array:
-        addition, below, least = tables.bearing_area(edition=self.edition)
-        C_b = bearing_area_factor(
-            bearings.length, bearings.end_distance, addition=addition, length_below=below, least_end_distance=least
-        )
-        return np.asarray(bearings.properties["Fc_perp"] * C_b)
+        A truss rests at the ends of its chords, where C_b = 1.0 (3.10.4); it is not counted elsewhere either.
+        """
+        resistance = members.properties["Fc_perp"] * members.breadth * members.plies * np.asarray(length)
+        return np.maximum(reaction, 0.0) / resistance[..., None, :]
 
     def explain(
         self, members: Members, demand: Demand, durations: Durations, member: int, combination: int
@@ -150,12 +148,32 @@ class Nds:
         )
 
     def explain_bearing(
-        self, bearings: Bearings, reaction: Array, durations: Durations, bearing: int, combination: int
+        self,
+        reaction: Array,
+        members: Members,
+        length: Array,
+        durations: Durations,
+        support: int,
+        combination: int,
     ) -> tuple[Step, ...]:
         """The bearing check of one support of an unbatched truss, line by line."""
-        stress = float(np.broadcast_to(self._bearing_stress(bearings), bearings.length.shape)[bearing])
-        force = float(reaction[combination, bearing])
-        return explain_bearing(bearings, force, stress, bearing, edition=self.edition, lrfd=self.method == "LRFD")
+        bearing_length = float(np.broadcast_to(length, members.breadth.shape)[support])
+        force = float(reaction[combination, support])
+        return explain_bearing(
+            members, force, bearing_length, support, edition=self.edition, lrfd=self.method == "LRFD"
+        )
+
+    def shares_load(self, *, role: str, sheathed: bool, quantity: int, spacing: float) -> bool:
+        """Whether C_r applies; NDS 4.3.9: three or more members not over 24 in apart, joined by sheathing.
+
+        The key `repetitive` of the job may set it for all chords or for none. Webs never share load.
+        """
+        if role == "web":
+            return False
+        if self.repetitive is not None:
+            return self.repetitive
+        least_number, spacing_up_to = tables.repetitive_conditions(edition=self.edition)
+        return sheathed and quantity >= least_number and spacing <= spacing_up_to * (1 + 1e-9)
 
     def creep(self) -> Creep:
         """Creep under lasting load, K_cr - 1; NDS 3.5.2. IBC Table 1604.3, note d, takes that share of dead load."""
@@ -163,10 +181,25 @@ class Nds:
         text = f"K_cr = {K_cr:g}, {self.moisture} service: lasting load deflects {K_cr:g} times its immediate amount"
         return Creep(coefficient=K_cr - 1, clause=f"NDS {self.edition} 3.5.2", text=text)
 
+    def service_factors(self, factors: Array, *, actions: tuple[str, ...], kinds: tuple[str, ...]) -> Array:
+        """Factors (k, c) with K_cr on dead load in combinations of the kind "total"; NDS eq. 3.5-1.
+
+        This is the whole deflection in the long run. IBC Table 1604.3, note d, would accept its creep part with live
+        load only.
+        """
+        lasting = np.array([action == "D" for action in actions])
+        total = np.array([kind == "total" for kind in kinds])
+        return np.where(total[:, None] & lasting, factors * (1 + self.creep().coefficient), factors)
+
+    def deflection_ratio(self, ceiling: str, kind: str) -> float:
+        """Span over the largest deflection [-]; IBC 2021 Table 1604.3."""
+        return limit_ratio(ceiling, kind)
+
 
 def nds_standard(name: str, options: Mapping[str, object]) -> Nds:
     """The NDS called `name` ("NDS 2018 ASD") with the keys moisture, temperature, incised and buckling_stiffness.
 
+    The key repetitive may stand beside them ("auto", true or false; "auto" without it: by the conditions of 4.3.9).
     Other keys of [timber] are not the standard's. Raises JobError naming the key that is missing or wrong.
     """
     _, edition, method = name.split()
@@ -183,6 +216,7 @@ def nds_standard(name: str, options: Mapping[str, object]) -> Nds:
         temperature=temperature,
         incised=_flag(options, "incised"),
         buckling_stiffness=stiff,
+        repetitive=None if options.get("repetitive", "auto") == "auto" else _flag(options, "repetitive"),
     )
 
 

@@ -11,7 +11,7 @@ import numpy as np
 
 from rooftruss.timber import nds_check as rules
 from rooftruss.timber import nds_formulas as nds
-from rooftruss.timber.check import Array, Bearings, Demand, Members, Step
+from rooftruss.timber.check import Array, Demand, Members, Step
 from rooftruss.timber.nds_resistance import Lateral, Resistances, Stability, resistances
 from rooftruss.timber.nds_tables import limit
 
@@ -94,37 +94,28 @@ def explain_member(
 
 
 def explain_bearing(
-    bearings: Bearings, force: float, stress: float, bearing: int, *, edition: str, lrfd: bool
+    members: Members, force: float, length: float, support: int, *, edition: str, lrfd: bool
 ) -> tuple[Step, ...]:
     """Compression across the grain of the chord on its wall plate; NDS 3.10.2."""
-    code, p, n = f"NDS {edition}", bearings.properties, bearing
-    length, breadth = float(bearings.length[n]), float(bearings.breadth[n] * bearings.plies[n])
-    C_b = stress / _at(p["Fc_perp"], n)
+    code, p, n = f"NDS {edition}", members.properties, support
+    breadth, stress = _at(members.breadth, n) * _at(members.plies, n), _at(p["Fc_perp"], n)
     f_c_perp = max(force, 0.0) / (length * breadth)
-    text = (
-        "shorter than 6 in and 3 in or more from the end" if C_b > 1 else "at the end of the chord, or 6 in or longer"
-    )
+    text = "f_c_perp / F_c_perp'; 1.00 is the limit"
     return (
         Step(symbol="R", value=force, kind="force", clause="analysis", text="reaction, upwards on the truss"),
         Step(symbol="l_b", value=length, kind="size", clause="job", text="bearing length"),
         Step(symbol="b", value=breadth, kind="size", clause="job", text="breadth of all plies"),
         *_reference(code, "Fc_perp", p, n, lrfd),
-        Step(symbol="C_b", value=C_b, kind="factor", clause=f"{code} 3.10.4", text=f"bearing area factor: {text}"),
         Step(
-            symbol="F_c_perp'",
-            value=stress,
-            kind="stress",
-            clause=f"{code} Table 4.3.1",
-            text="no load duration factor",
-        ),
-        Step(symbol="f_c_perp", value=f_c_perp, kind="stress", clause=f"{code} 3.10.2", text="R / (b l_b)"),
-        Step(
-            symbol="utilisation",
-            value=f_c_perp / stress,
+            symbol="C_b",
+            value=1.0,
             kind="factor",
-            clause=f"{code} 3.10.2",
-            text="f_c_perp / F_c_perp'; 1.00 is the limit",
+            clause=f"{code} 3.10.4",
+            text="bearing area factor, end of the chord",
         ),
+        _stress("F_c_perp'", stress, f"{code} Table 4.3.1", "no load duration or time effect factor"),
+        _stress("f_c_perp", f_c_perp, f"{code} 3.10.2", "R / (b l_b)"),
+        Step(symbol="utilisation", value=f_c_perp / stress, kind="factor", clause=f"{code} 3.10.2", text=text),
     )
 
 

@@ -128,6 +128,12 @@ def product(name: str, *, edition: str) -> Product:
     )
 
 
+def repetitive_conditions(*, edition: str) -> tuple[float, float]:
+    """Least number of members [-] and largest spacing [m] that C_r asks for; NDS 4.3.9."""
+    row = table(edition, "repetitive").rows[0]
+    return _number(row, "least_number"), _number(row, "spacing_up_to")
+
+
 def sheathed_chord(*, edition: str) -> Sheathed:
     """Constants of C_T for lumber at 19 percent moisture or less when sheathed; NDS 4.4.2."""
     row = table(edition, "buckling stiffness").where(seasoning="19 percent or less when sheathed")

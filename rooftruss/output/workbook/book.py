@@ -1,0 +1,41 @@
+"""The quote workbook of a job."""
+
+from collections.abc import Sequence
+from pathlib import Path
+
+from rooftruss.basis.job import Job
+from rooftruss.design.design import Design
+from rooftruss.output.workbook import pages
+from rooftruss.output.workbook.chart import PointSheet
+from rooftruss.output.workbook.saving import save
+from rooftruss.output.workbook.sheet import Page, sheet_name
+from rooftruss.output.workbook.styles import Looks, plain
+
+FIRST, LAST = ("Quote",), ("Combinations", "Cases", "Geometry", "Assumptions", "Cautions")
+
+
+def write_workbook(job: Job, designs: Sequence[Design], path: str | Path) -> None:
+    """Write the quote of a job as an .xlsx file. Raises OutputError; an existing file is kept unless the new one is whole."""
+    from openpyxl import Workbook
+
+    book = Workbook()
+    looks = Looks(book)
+    book.remove(book.active)
+    names = [*FIRST, *LAST]
+    marks: list[str] = []
+    for design in designs:
+        marks.append(sheet_name(design.spec.mark, [*names, *marks]))
+    page = {name: Page(book.create_sheet(name), looks, job.units) for name in (*FIRST, *marks, *LAST)}
+    points = PointSheet(page["Geometry"])
+    points.page.line("Geometry", "title", 24)
+    points.page.line("Points of the drawings, on centre lines; x from the middle of the left bearing, y up from it.")
+    pages.quote_page(page["Quote"], job, designs)
+    for mark, design in zip(marks, designs, strict=True):
+        pages.truss_page(page[mark], points, job, design)
+    pages.combinations_page(page["Combinations"], job, designs)
+    pages.cases_page(page["Cases"], job, designs)
+    pages.points_page(points.page.sheet, job)
+    pages.assumptions_page(page["Assumptions"], job, designs)
+    pages.cautions_page(page["Cautions"], job)
+    book.properties.title, book.properties.creator = plain(job.title), "rooftruss"
+    save(book, Path(path))

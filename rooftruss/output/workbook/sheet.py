@@ -1,0 +1,160 @@
+"""A sheet that is filled from the top: titles, notes and grids; and how it prints."""
+
+from collections.abc import Callable, Sequence
+from typing import TYPE_CHECKING
+
+from rooftruss.basis.job import Job
+from rooftruss.output.schedule import NOTHING, Grid, ShownCell, ShownColumn, ShownGrid, shown_grid
+from rooftruss.output.workbook.styles import Looks, looks_like_formula, plain
+
+if TYPE_CHECKING:
+    from openpyxl.worksheet.worksheet import Worksheet
+
+LINE_HEIGHT = 13.5  # points, of a line of body text
+Emphasis = Callable[[Sequence[ShownCell]], bool]
+FORBIDDEN = str.maketrans("", "", "[]:*?/\\")
+WIDEST_NAME = 31
+
+
+def sheet_name(wanted: str, taken: Sequence[str]) -> str:
+    """A name a sheet may have, unlike any other in the book whatever the case of the letters.
+
+    >>> sheet_name("T1/a", ["Quote"]), sheet_name("t1", ["T1"]), sheet_name("'", [])
+    ('T1a', 't1 (2)', 'Truss')
+    """
+    base = plain(wanted).translate(FORBIDDEN).strip().strip("'")[:WIDEST_NAME].strip() or "Truss"
+    known = {t.casefold() for t in taken} | {"history"}
+    name, count = base, 1
+    while name.casefold() in known:
+        count += 1
+        ending = f" ({count})"
+        name = base[: WIDEST_NAME - len(ending)] + ending
+    return name
+
+
+class Page:
+    """Writes one worksheet from the top down; `row` is the next free row."""
+
+    def __init__(self, sheet: "Worksheet", looks: Looks, units: str) -> None:
+        self.sheet, self.looks, self.units = sheet, looks, units
+        self.row = 1
+        sheet.sheet_view.showGridLines = False
+
+    def widths(self, widths: Sequence[float]) -> None:
+        """Widths of the columns from A on, in characters."""
+        from openpyxl.utils import get_column_letter
+
+        for k, width in enumerate(widths, start=1):
+            self.sheet.column_dimensions[get_column_letter(k)].width = width
+
+    def put(self, column: int, value: ShownCell, look: str = "body", number_format: str = "", align: str = "") -> None:
+        """Write one cell of the current row; text stays text whatever it looks like."""
+        cell = self.sheet.cell(self.row, column)
+        if isinstance(value, str):
+            text = plain(value)
+            cell.value = text
+            cell.data_type = "s"
+            cell._style = self.looks.style(look, "", align, quoted=looks_like_formula(text))
+            return
+        cell.value = value
+        cell._style = self.looks.style(look, number_format, align)
+
+    def line(self, text: str, look: str = "note", height: float | None = None) -> None:
+        """One line of text over the columns to its right."""
+        self.put(1, text, look)
+        if height:
+            self.sheet.row_dimensions[self.row].height = height
+        self.row += 1
+
+    def paragraph(self, text: str, columns: int, characters: int, look: str = "body") -> None:
+        """Text over several lines in merged cells, as high as it needs."""
+        self.sheet.merge_cells(start_row=self.row, end_row=self.row, start_column=1, end_column=columns)
+        self.put(1, text, look, align="wrap")
+        self.sheet.row_dimensions[self.row].height = LINE_HEIGHT * -(-len(text) // characters) + 2
+        self.row += 1
+
+    def grid(
+        self, grid: Grid, slots: Sequence[int] = (), *, title: str | None = None, wrap: Sequence[int] = (), fails: Emphasis | None = None
+    ) -> None:
+        """A grid with its title and headings; `slots` are the sheet columns of its columns, A on when left out.
+
+        wrap: columns (of the grid, from 0) whose text may take several lines. `fails` says which rows stand out.
+        """
+        shown = shown_grid(grid, self.units)
+        slots = slots or range(1, len(shown.columns) + 1)
+        heading = grid.title if title is None else title
+        if heading:
+            self.line(heading, "section", 18)
+        self._headings(shown.columns, slots)
+        self._rows(shown, slots, set(wrap), fails or _not_met(shown.columns))
+        self.row += 1
+
+    def _headings(self, columns: Sequence[ShownColumn], slots: Sequence[int]) -> None:
+        place = dict(zip(slots, columns, strict=True))
+        for look, height in (("head", 28), ("unit", 12)):
+            for slot in range(1, max(slots) + 1):
+                column = place.get(slot)
+                text = "" if column is None else column.heading if look == "head" else column.unit
+                self.put(slot, text, look, align=_align(column) if column else "")
+            self.sheet.row_dimensions[self.row].height = height
+            self.row += 1
+
+    def _rows(self, shown: ShownGrid, slots: Sequence[int], wrap: set[int], fails: Emphasis) -> None:
+        aligned = [_align(c) for c in shown.columns]
+        formats = [c.number_format for c in shown.columns]
+        filled = set(slots)
+        empty = [slot for slot in range(1, max(slots) + 1) if slot not in filled]
+        for row in shown.rows:
+            look = "fail" if fails(row) else "body"
+            for k, (slot, cell) in enumerate(zip(slots, row, strict=True)):
+                align = "wrap" if k in wrap else "right" if cell == NOTHING else aligned[k]
+                self.put(slot, cell, look, formats[k], align)
+            for slot in empty:
+                self.put(slot, None, look)
+            self.row += 1
+
+
+def _align(column: ShownColumn) -> str:
+    return "right" if column.number_format else "left"
+
+
+def _not_met(columns: Sequence[ShownColumn]) -> Emphasis:
+    """Rows whose result column says that a limit is not met."""
+    at = [k for k, c in enumerate(columns) if c.heading == "Result"]
+    return lambda row: any(str(row[k]).startswith("NOT") for k in at)
+
+
+def for_print(
+    sheet: "Worksheet", job: Job, *, landscape: bool, repeat: str = "", freeze: str = ""
+) -> None:
+    """Paper, margins, running lines, repeated rows ("1:3") and frozen panes ("B4") of a sheet."""
+    from openpyxl.worksheet.properties import PageSetupProperties
+
+    sheet.page_setup.paperSize = sheet.PAPERSIZE_LETTER if job.units == "US" else sheet.PAPERSIZE_A4
+    sheet.page_setup.orientation = "landscape" if landscape else "portrait"
+    sheet.page_setup.fitToWidth, sheet.page_setup.fitToHeight = 1, 0
+    sheet.sheet_properties.pageSetUpPr = PageSetupProperties(fitToPage=True)
+    margins = sheet.page_margins
+    margins.left = margins.right = 0.5
+    margins.top, margins.bottom, margins.header, margins.footer = 0.75, 0.7, 0.35, 0.35
+    sheet.print_options.horizontalCentered = True
+    sheet.oddHeader.left.text = running(f"{job.number}  {job.title}".strip())
+    sheet.oddHeader.right.text = running(job.client)
+    sheet.oddFooter.left.text = "&A"
+    sheet.oddFooter.center.text = "A first estimate. Read the sheet Cautions."
+    sheet.oddFooter.right.text = "Page &P of &N"
+    for part in (sheet.oddHeader.left, sheet.oddHeader.right, sheet.oddFooter.left, sheet.oddFooter.center, sheet.oddFooter.right):
+        part.size = 8
+    if repeat:
+        sheet.print_title_rows = repeat
+    if freeze:
+        sheet.freeze_panes = freeze
+
+
+def running(text: str) -> str:
+    """Text for a header or footer, where "&" begins a command and length is limited.
+
+    >>> running("Barn & shed")
+    'Barn && shed'
+    """
+    return plain(text).replace("\n", " ")[:90].replace("&", "&&")

@@ -1,0 +1,84 @@
+"""Looks of cells: few, quiet, and readable in grey; one style object for all cells that look alike."""
+
+import re
+from typing import TYPE_CHECKING, Any
+
+if TYPE_CHECKING:
+    from openpyxl import Workbook
+
+INK, LINE, HEAD, FAIL = "FF22303C", "FFC3CBD2", "FFE6EBEF", "FFF2C4BE"
+FONT = "Calibri"
+FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r", "'")
+CONTROL = re.compile(r"[\x00-\x08\x0b\x0c\x0e-\x1f\x7f\ud800-\udfff\ufffe\uffff]")
+LONGEST = 32_000  # characters of a cell; the file format ends at 32 767
+
+
+class Looks:
+    """Styles of one workbook by look: "title", "section", "head", "unit", "body", "strong", "fail", "note", "total"."""
+
+    def __init__(self, book: "Workbook") -> None:
+        self._sheet = book.active
+        self._made: dict[tuple[str, str, str, bool], Any] = {}
+
+    def style(self, look: str, number_format: str = "", align: str = "", *, quoted: bool = False) -> Any:
+        """The style of a look; `align` "left", "right", "center" or "wrap" (left, over several lines).
+
+        quoted marks text that a spreadsheet would take for a formula when it is typed again.
+        """
+        key = (look, number_format, align, quoted)
+        if key not in self._made:
+            self._made[key] = self._make(*key)
+        return self._made[key]
+
+    def _make(self, look: str, number_format: str, align: str, quoted: bool) -> Any:
+        from openpyxl.cell.cell import Cell
+        from openpyxl.styles import Alignment, Border, Font, PatternFill, Side
+
+        cell = Cell(self._sheet, row=1, column=1)
+        size = {"title": 15, "section": 11, "unit": 8, "note": 9}.get(look, 10)
+        bold = look in ("title", "section", "head", "strong", "fail", "total")
+        cell.font = Font(name=FONT, size=size, bold=bold, italic=look == "note", color=INK)
+        if look in ("head", "unit"):
+            cell.fill = PatternFill("solid", fgColor=HEAD)
+        if look == "fail":
+            cell.fill = PatternFill("solid", fgColor=FAIL)
+        thin, hair = Side(style="thin", color=INK), Side(style="hair", color=LINE)
+        lines = {
+            "section": Border(),
+            "head": Border(top=thin),
+            "unit": Border(bottom=thin),
+            "total": Border(top=thin, bottom=thin),
+            "body": Border(bottom=hair),
+            "strong": Border(bottom=hair),
+            "fail": Border(bottom=hair),
+        }
+        cell.border = lines.get(look, Border())
+        wrap = align == "wrap" or look == "head"
+        cell.alignment = Alignment(
+            horizontal="left" if align == "wrap" else align or None,
+            vertical="bottom" if look in ("head", "unit") else "top",
+            wrap_text=wrap or None,
+        )
+        if number_format:
+            cell.number_format = number_format
+        if quoted:
+            cell.quotePrefix = True
+        return cell._style
+
+
+def plain(text: object) -> str:
+    """Text without characters that a spreadsheet file cannot hold.
+
+    >>> plain("a\\x07b")
+    'ab'
+    """
+    return CONTROL.sub("", str(text))[:LONGEST]
+
+
+def looks_like_formula(text: str) -> bool:
+    """Whether a spreadsheet would take the text for a formula if a user typed it.
+
+    >>> looks_like_formula("=1+1"), looks_like_formula("-"), looks_like_formula("T1")
+    (True, False, False)
+    """
+    return len(text) > 1 and text.startswith(FORMULA_STARTS)
