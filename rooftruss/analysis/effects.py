@@ -1,15 +1,16 @@
 """Effects of each case along the members, and their exact extremes under every combination."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 
 import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.analysis.frame import Solution
-from rooftruss.loads.cases import LoadCases
+from rooftruss.loads.cases import LoadCases, first_segments, sum_segments
 from rooftruss.shapes.truss import Truss
 
 Array = NDArray[np.float64]
+BLOCK = 32_000  # segments x combinations worked on at a time: about 256 kB an array
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -29,30 +30,32 @@ class UnitEffects:
 
 def unit_effects(truss: Truss, cases: LoadCases, solution: Solution) -> UnitEffects:
     """Internal forces along the members from the end forces and the loads on the way."""
-    member = np.array(cases.member_of)
-    run = cases.x1 - cases.x0
-    cos, sin = truss.direction[..., None, member, 0], truss.direction[..., None, member, 1]
-    along = cases.q[..., 0] * cos + cases.q[..., 1] * sin
-    across = cases.q[..., 1] * cos - cases.q[..., 0] * sin
-    lengths = run[..., None, :]
-    axial_step, shear_step, moment_step = -along * lengths, across * lengths, across * lengths**2 / 2
-    shape = np.broadcast_shapes(across.shape, lengths.shape)
-    axial0, shear0, moment0 = (np.empty(shape) for _ in range(3))
-    ends = solution.end_forces
+    member = list(cases.member_of)
+    run = (cases.x1 - cases.x0)[..., None, :]
+    direction = truss.direction[..., None, member, :]
+    along = cases.q[..., 0] * direction[..., 0] + cases.q[..., 1] * direction[..., 1]
+    across = cases.q[..., 1] * direction[..., 0] - cases.q[..., 0] * direction[..., 1]
+    count = len(member)
+    values = np.empty((*cases.q.shape[:-2], 5 * count))
+    moment0, moment1, load, axial0, axial1 = (values[..., i * count : (i + 1) * count] for i in range(5))
+    shear_step, moment_step = across * run, across * (run**2 / 2)
+    load[...] = across
+    ends = solution.end_forces[..., member, :]
+    axial0[...], shear0, moment0[...] = -ends[..., 0], ends[..., 1], -ends[..., 2]
+    axial1[...] = axial0 - along * run
+    moment1[...] = moment0 + shear0 * run + moment_step
     jumps = _jumps(truss, cases)
-    for s, k in enumerate(cases.member_of):
-        if s == 0 or cases.member_of[s - 1] != k:
-            axial0[..., s], shear0[..., s], moment0[..., s] = -ends[..., k, 0], ends[..., k, 1], -ends[..., k, 2]
-        else:
-            axial0[..., s] = axial0[..., s - 1] + axial_step[..., s - 1]
+    _, rest = first_segments(cases.member_of)
+    for s in sorted({*rest, *jumps}):
+        if s in rest:  # goes on where the segment before it ends
+            axial0[..., s], moment0[..., s] = axial1[..., s - 1], moment1[..., s - 1]
             shear0[..., s] = shear0[..., s - 1] + shear_step[..., s - 1]
-            moment0[..., s] = moment0[..., s - 1] + shear0[..., s - 1] * lengths[..., s - 1] + moment_step[..., s - 1]
         for case, axial, shear in jumps.get(s, []):
             axial0[..., case, s] += axial
             shear0[..., case, s] += shear
-    moment1 = moment0 + shear0 * lengths + moment_step
-    values = np.concatenate([moment0, moment1, np.broadcast_to(across, shape), axial0, axial0 + axial_step], axis=-1)
-    return UnitEffects(member_of=cases.member_of, members=truss.length.shape[-1], run=run, values=values)
+        axial1[..., s] = axial0[..., s] - (along * run)[..., s]
+        moment1[..., s] = moment0[..., s] + (shear0 * run + moment_step)[..., s]
+    return UnitEffects(member_of=cases.member_of, members=truss.length.shape[-1], run=run[..., 0, :], values=values)
 
 
 def _jumps(truss: Truss, cases: LoadCases) -> dict[int, list[tuple[int, Array, Array]]]:
@@ -91,27 +94,51 @@ def combined_extremes(effects: UnitEffects, factors: Array) -> Extremes:
     """Extremes along every member under the combinations `factors` (k, c).
 
     The moment of a segment is largest at an end or where its shear passes zero (the vertex of its parabola).
+    Worked in blocks of trusses that stay in the processor's cache, with the combinations last in memory.
     """
-    values = np.matmul(factors, effects.values)
-    count = len(effects.member_of)
-    m0, m1, w, n0, n1 = (values[..., i * count : (i + 1) * count] for i in range(5))
-    run = effects.run[..., None, :]
-    shear_mean = (m1 - m0) / np.where(run > 0, run, 1.0)
-    half = 0.5 * w * run
-    shear0 = shear_mean - half
-    shear = np.abs(shear_mean) + np.abs(half)
-    shear *= run > 0
-    inside = np.abs(half) > np.abs(shear_mean)  # the shear changes sign within the segment
-    vertex = np.where(inside, m0 - shear0**2 / (2 * np.where(inside, w, 1.0)), m0)
-    first = np.searchsorted(np.array(effects.member_of), np.arange(effects.members))
-    high, low = np.maximum, np.minimum
+    batch = effects.values.shape[:-2]
+    unit = effects.values.reshape(-1, *effects.values.shape[-2:])
+    run = np.broadcast_to(effects.run, (*batch, effects.run.shape[-1])).reshape(len(unit), -1)
+    out = np.empty((5, len(unit), effects.members, len(factors)))
+    step = max(1, BLOCK // (len(effects.member_of) * len(factors)))
+    for start in range(0, len(unit), step):
+        rows = slice(start, start + step)
+        _block_extremes(unit[rows], run[rows], effects.member_of, np.ascontiguousarray(factors.T), out[:, rows])
+    shape = (*batch, effects.members, len(factors))
     return Extremes(
-        axial_max=high.reduceat(high(n0, n1), first, axis=-1),
-        axial_min=low.reduceat(low(n0, n1), first, axis=-1),
-        moment_max=high.reduceat(high(high(m0, m1), vertex), first, axis=-1),
-        moment_min=low.reduceat(low(low(m0, m1), vertex), first, axis=-1),
-        shear=high.reduceat(shear, first, axis=-1),
+        **{f.name: np.swapaxes(array.reshape(shape), -1, -2) for f, array in zip(fields(Extremes), out, strict=True)}
     )
+
+
+def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors: Array, out: Array) -> None:
+    """Write the five extremes (5, b, m, k) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k)."""
+    count = len(member_of)
+    values = np.matmul(np.swapaxes(unit, 1, 2), factors)
+    m0, m1, load, n0, n1 = (values[:, i * count : (i + 1) * count] for i in range(5))
+    _over_members(np.maximum, np.maximum(n0, n1), member_of, out[0])
+    _over_members(np.minimum, np.minimum(n0, n1), member_of, out[1])
+    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > 0)[..., None]
+    shear_mean = (m1 - m0) * per_run
+    half = load * (run / 2)[..., None]
+    steady, change = np.abs(shear_mean), np.abs(half)
+    inside = change > steady  # the shear passes zero within the segment
+    shear_mean -= half  # now the shear at the start
+    shear_mean *= shear_mean
+    bulge = np.divide(shear_mean, load, out=np.zeros_like(load), where=inside)
+    bulge *= -0.5
+    bulge += m0
+    _over_members(np.maximum, np.maximum(np.maximum(m0, m1), bulge), member_of, out[2])
+    _over_members(np.minimum, np.minimum(np.minimum(m0, m1), bulge), member_of, out[3])
+    steady += change
+    _over_members(np.maximum, steady, member_of, out[4])
+
+
+def _over_members(ufunc: np.ufunc, values: Array, member_of: tuple[int, ...], out: Array) -> None:
+    """Extreme over the segments (b, s, k) of each member (b, m, k)."""
+    first, rest = first_segments(member_of)
+    out[...] = values[:, first] if rest else values
+    for s in rest:
+        ufunc(out[:, member_of[s]], values[:, s], out=out[:, member_of[s]])
 
 
 def mid_deflections(truss: Truss, cases: LoadCases, effects: UnitEffects, solution: Solution, ei: Array) -> Array:
@@ -120,28 +147,27 @@ def mid_deflections(truss: Truss, cases: LoadCases, effects: UnitEffects, soluti
     Mean of the end movements, and the bending of the member between its ends by virtual work: the integral of M times
     the moment of a unit force at the middle, over EI; exact by Simpson's rule on segments cut at the middle.
     """
-    topology = truss.topology
+    made = truss.topology
     count = len(effects.member_of)
-    member = np.array(effects.member_of)
-    blocks = [effects.values[..., i * count : (i + 1) * count] for i in range(3)]
-    length = truss.length[..., member]
-    bend = np.zeros(blocks[0].shape)
+    m0, m1, load = (effects.values[..., i * count : (i + 1) * count] for i in range(3))
+    w0, w1, w2 = (w[..., None, :] for w in _middle_weights(truss, cases))
+    bend = sum_segments(m0 * w0 + m1 * w1 + load * w2, effects.member_of, np.empty((*m0.shape[:-1], effects.members)))
+    ends = (solution.displacements[..., made.start, 1] + solution.displacements[..., made.end, 1]) / 2
+    return np.asarray(ends - bend * (truss.direction[..., 0] / ei)[..., None, :])
+
+
+def _middle_weights(truss: Truss, cases: LoadCases) -> tuple[Array, Array, Array]:
+    """Integrals over each segment (..., s) of a unit force's moment times the shapes of M: what M = m0 (1 - x/run) +
+    m1 x/run - w x (run - x)/2 gives per m0, m1 and w."""
+    length = truss.length[..., list(cases.member_of)]
+    run = cases.x1 - cases.x0
+    safe = np.where(run > 0, run, 1.0)
+    total = [np.zeros(run.shape) for _ in range(3)]
     for low, high in ((0.0 * length, length / 2), (length / 2, length)):
         a, b = np.clip(cases.x0, low, high), np.clip(cases.x1, low, high)
-        middle = (a + b) / 2
-        terms = [
-            weight * _moment_at(blocks, (x - cases.x0), effects.run) * (np.minimum(x, length - x) / 2)[..., None, :]
-            for weight, x in ((1, a), (4, middle), (1, b))
-        ]
-        bend += sum(terms) * ((b - a) / 6)[..., None, :]
-    first = np.searchsorted(member, np.arange(effects.members))
-    across = -np.add.reduceat(bend, first, axis=-1) / ei[..., None, :]
-    ends = (solution.displacements[..., topology.start, 1] + solution.displacements[..., topology.end, 1]) / 2
-    return np.asarray(ends + across * truss.direction[..., None, :, 0])
-
-
-def _moment_at(blocks: list[Array], x: Array, run: Array) -> Array:
-    """Moment of each segment at the distance x from its start."""
-    m0, m1, w = blocks
-    x, run = x[..., None, :], np.where(run > 0, run, 1.0)[..., None, :]
-    return np.asarray(m0 + (m1 - m0) * x / run - w * x * (run - x) / 2)
+        for weight, x in ((1, a), (4, (a + b) / 2), (1, b)):
+            unit = weight * np.minimum(x, length - x) / 2 * (b - a) / 6
+            here = x - cases.x0
+            for sum_, shape in zip(total, (1 - here / safe, here / safe, -here * (run - here) / 2), strict=True):
+                sum_ += unit * shape
+    return total[0], total[1], total[2]

@@ -1,7 +1,8 @@
 """Plane frame: one stiffness matrix per truss, every load case a right-hand side of it.
 
 Members are Bernoulli-Euler beams on their centre lines; moment-free ends are condensed into the element.
-Batch axes lead; `b` below stands for one flattened batch axis.
+Batch axes lead; `b` below stands for one flattened batch axis. Member-end values are (6, b, c, m) inside this module,
+[along, across, rotation] at the start and the end first, so that each of the six is one block of memory.
 """
 
 from dataclasses import dataclass, replace
@@ -12,11 +13,12 @@ from numpy.typing import NDArray
 
 from rooftruss.analysis.freedoms import DIRECTIONS, Freedoms, bending_coefficients, freedoms, shape_coefficients
 from rooftruss.errors import UnstableTrussError
-from rooftruss.loads.cases import LoadCases
+from rooftruss.loads.cases import LoadCases, MemberPoint, sum_segments
 from rooftruss.shapes.truss import Topology, Truss
 
 Array = NDArray[np.float64]
 SINGULAR = 1e-11  # smallest eigenvalue of the scaled stiffness below which the truss counts as a mechanism
+START, END = (0, 1, 2), (3, 4, 5)
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -38,24 +40,24 @@ def solve(truss: Truss, stiffness_axial: Array, stiffness_bending: Array, cases:
     stiffness_axial EA [N] and stiffness_bending EI [N m2] are (..., m).
     Raises UnstableTrussError that names a joint and a direction when the truss is a mechanism.
     """
-    batch = cases.q.shape[:-3]
-    number = freedoms(truss.topology)
-    length = _flat(truss.length, batch, 1)
-    direction = _flat(truss.direction, batch, 2)
+    made, batch = truss.topology, cases.q.shape[:-3]
+    number = freedoms(made)
+    length, direction = _flat(truss.length, batch, 1), _flat(truss.direction, batch, 2)
     ea, ei = _flat(stiffness_axial, batch, 1), _flat(stiffness_bending, batch, 1)
-    on_member = _equivalent_forces(truss.topology, cases, length, direction, batch)
+    nodal = _flat(cases.nodal, batch, 3)
+    on_member = _equivalent_forces(made, cases, length, direction, batch)
     load = _to_nodes(number, _rotate(on_member, direction, back=True))
-    load[..., number.of_node] += _flat(cases.nodal, batch, 3)
+    load[..., number.of_node] += nodal
     movement = np.zeros((*load.shape[:2], number.total + 1))
-    movement[..., : number.free] = _factor_and_solve(truss, number, _stiffness(truss.topology, ea, ei, length, direction), load)
-    local = _rotate(movement[..., number.of_member], direction, back=False)
-    forces = _end_forces(truss.topology, local, ea, ei, length) - on_member
+    movement[..., : number.free] = _factor_and_solve(made, _stiffness(made, ea, ei, length, direction), load)
+    at_ends = np.stack([movement[..., column] for column in number.of_member.T])
+    forces = _end_forces(made, _rotate(at_ends, direction, back=False), ea, ei, length)
+    forces -= on_member
+    reactions = _reactions(number, made, forces, direction, nodal)
     return Solution(
-        displacements=movement[..., number.of_node].reshape(*batch, -1, len(truss.topology.nodes), 2),
-        end_forces=forces.reshape(*batch, *forces.shape[1:]),
-        reactions=_reactions(number, truss.topology, forces, direction, _flat(cases.nodal, batch, 3)).reshape(
-            *batch, len(cases.heads), -1, 2
-        ),
+        displacements=movement[..., number.of_node].reshape(*batch, -1, len(made.nodes), 2),
+        end_forces=np.moveaxis(forces.reshape(6, *batch, *forces.shape[2:]), 0, -1),
+        reactions=reactions.reshape(*batch, *reactions.shape[1:]),
     )
 
 
@@ -68,57 +70,62 @@ def _flat(array: Array, batch: tuple[int, ...], own: int) -> Array:
 def _equivalent_forces(
     topology: Topology, cases: LoadCases, length: Array, direction: Array, batch: tuple[int, ...]
 ) -> Array:
-    """Forces (b, c, m, 6) in member axes that the member loads put on the ends: integral of load times shape function."""
-    moments_along, moments_across = _load_moments(cases, length, direction, batch)
-    a = shape_coefficients(topology)
-    across = np.matmul(moments_across[..., None, :], np.swapaxes(a, 1, 2))[..., 0, :]  # (b, c, m, 4)
-    out = np.empty((*across.shape[:-1], 6))
-    out[..., 0] = moments_along[..., 0] - moments_along[..., 1]
-    out[..., 3] = moments_along[..., 1]
-    out[..., [1, 2, 4, 5]] = across
-    out[..., [2, 5]] *= length[:, None, :, None]
-    return out
-
-
-def _load_moments(
-    cases: LoadCases, length: Array, direction: Array, batch: tuple[int, ...]
-) -> tuple[Array, Array]:
-    """Integrals of load times xi^k over each member, k = 0..1 along and 0..3 across it: (b, c, m, 2), (b, c, m, 4)."""
+    """Forces (6, b, c, m) that the member loads put on the ends: integrals of load times shape function."""
     member = np.array(cases.member_of)
     span = length[:, member]
     a, b = _flat(cases.x0, batch, 1) / span, _flat(cases.x1, batch, 1) / span
-    powers = np.stack([(b ** (k + 1) - a ** (k + 1)) * span / (k + 1) for k in range(4)], axis=-1)  # (b, s, 4)
-    q = _flat(cases.q, batch, 3)
-    cos, sin = direction[:, None, member, 0], direction[:, None, member, 1]
-    along = q[..., 0] * cos + q[..., 1] * sin
-    across = q[..., 1] * cos - q[..., 0] * sin
-    first = np.searchsorted(member, np.arange(length.shape[1]))
-    moments_along = np.add.reduceat(along[..., None] * powers[:, None, :, :2], first, axis=2)
-    moments_across = np.add.reduceat(across[..., None] * powers[:, None, :, :], first, axis=2)
-    for p in cases.points:
-        xi = _flat(p.at, batch, 0) / length[:, p.member]
-        c, s = direction[:, p.member, 0], direction[:, p.member, 1]
-        fx, fy = _flat(p.fx, batch, 0), _flat(p.fy, batch, 0)
-        power = np.stack([xi**k for k in range(4)], axis=-1)
-        moments_along[:, p.case, p.member, :] += (fx * c + fy * s)[:, None] * power[:, :2]
-        moments_across[:, p.case, p.member, :] += (fy * c - fx * s)[:, None] * power
-    return moments_along, moments_across
+    # integrals over the segment of xi^k, of which the shape functions are made
+    powers = np.stack([(b ** (k + 1) - a ** (k + 1)) * span / (k + 1) for k in range(4)])
+    weights = np.einsum("sik,kbs->ibs", shape_coefficients(topology)[member], powers)
+    weights[[1, 3]] *= span
+    q, direction_of = _flat(cases.q, batch, 3), direction[:, None, member]
+    along = q[..., 0] * direction_of[..., 0] + q[..., 1] * direction_of[..., 1]
+    across = q[..., 1] * direction_of[..., 0] - q[..., 0] * direction_of[..., 1]
+    out = np.empty((6, *q.shape[:2], length.shape[1]))
+    for row, load, weight in (
+        (0, along, powers[0] - powers[1]),
+        (1, across, weights[0]),
+        (2, across, weights[1]),
+        (3, along, powers[1]),
+        (4, across, weights[2]),
+        (5, across, weights[3]),
+    ):
+        sum_segments(load * weight[:, None, :], cases.member_of, out[row])
+    for point in cases.points:
+        _add_point(out, point, topology, length, direction, batch)
+    return out
+
+
+def _add_point(
+    out: Array, point: MemberPoint, topology: Topology, length: Array, direction: Array, batch: tuple[int, ...]
+) -> None:
+    """Add the end forces of a point load: its size times the shape functions at its place."""
+    k = point.member
+    cos, sin = direction[:, k, 0], direction[:, k, 1]
+    fx, fy = _flat(point.fx, batch, 0), _flat(point.fy, batch, 0)
+    xi = _flat(point.at, batch, 0) / length[:, k]
+    along, across = fx * cos + fy * sin, fy * cos - fx * sin
+    values = shape_coefficients(topology)[k] @ np.stack([xi**p for p in range(4)])
+    values[[1, 3]] *= length[:, k]
+    place = (slice(None), point.case, k)
+    for row, force in zip(range(6), (along * (1 - xi), *(across * values[:2]), along * xi, *(across * values[2:])), strict=True):
+        out[row][place] += force
 
 
 def _rotate(values: Array, direction: Array, *, back: bool) -> Array:
-    """Member-end values (b, c, m, 6) from global to member axes, or back."""
+    """Member-end values (6, b, c, m) from global to member axes, or back."""
     cos, sin = direction[:, None, :, 0], direction[:, None, :, 1] * (-1.0 if back else 1.0)
     out = np.empty_like(values)
-    for k in (0, 3):
-        out[..., k] = cos * values[..., k] + sin * values[..., k + 1]
-        out[..., k + 1] = cos * values[..., k + 1] - sin * values[..., k]
-        out[..., k + 2] = values[..., k + 2]
+    for x, y, turn in (START, END):
+        out[x] = cos * values[x] + sin * values[y]
+        out[y] = cos * values[y] - sin * values[x]
+        out[turn] = values[turn]
     return out
 
 
 def _to_nodes(number: Freedoms, at_ends: Array) -> Array:
     """Sum of member-end values over the movements (b, c, total + 1)."""
-    return at_ends.reshape(*at_ends.shape[:2], -1) @ number.incidence
+    return np.concatenate(list(at_ends), axis=-1) @ number.incidence
 
 
 def _stiffness(topology: Topology, ea: Array, ei: Array, length: Array, direction: Array) -> Array:
@@ -175,14 +182,14 @@ def _scatter(topology: Topology) -> tuple[NDArray[np.intp], ...]:
     return order, first, places // number.free, places % number.free
 
 
-def _factor_and_solve(truss: Truss, number: Freedoms, stiffness: Array, load: Array) -> Array:
+def _factor_and_solve(topology: Topology, stiffness: Array, load: Array) -> Array:
     """Movements (b, c, free) under loads (b, c, total + 1)."""
-    right = np.swapaxes(load[..., : number.free], 1, 2)
+    right = np.swapaxes(load[..., : stiffness.shape[-1]], 1, 2)
     try:
         found = np.linalg.solve(stiffness, right)
     except np.linalg.LinAlgError:
-        require_stable(truss.topology, stiffness)
-        raise UnstableTrussError("the truss is a mechanism; add a member or a support") from None
+        require_stable(topology, stiffness)
+        raise UnstableTrussError(f"{topology.shape}: the truss is a mechanism; add a member or a support") from None
     return np.swapaxes(found, 1, 2)
 
 
@@ -209,32 +216,34 @@ def require_stable(topology: Topology, stiffness: Array) -> None:
 def stiffness_matrix(truss: Truss, stiffness_axial: Array, stiffness_bending: Array) -> Array:
     """Stiffness of the free movements (..., free, free) of a batch, for stability checks and tests."""
     batch = np.broadcast_shapes(truss.length.shape[:-1], stiffness_axial.shape[:-1])
-    flat = [_flat(x, batch, own) for x, own in ((stiffness_axial, 1), (stiffness_bending, 1), (truss.length, 1), (truss.direction, 2))]
-    out = _stiffness(truss.topology, *flat)
+    parts = ((stiffness_axial, 1), (stiffness_bending, 1), (truss.length, 1), (truss.direction, 2))
+    out = _stiffness(truss.topology, *(_flat(values, batch, own) for values, own in parts))
     return out.reshape(*batch, *out.shape[1:])
 
 
 def _end_forces(topology: Topology, local: Array, ea: Array, ei: Array, length: Array) -> Array:
-    """Forces (b, c, m, 6) on the member ends from their movements in member axes."""
-    bending = bending_coefficients(topology)
+    """Forces (6, b, c, m) on the member ends from their movements in member axes."""
+    k = bending_coefficients(topology)
+    across, along = (ei / length**3)[:, None, :], (ea / length)[:, None, :]
+    span = length[:, None, :]
+    sway, turn0, turn1 = local[1] - local[4], local[2] * span, local[5] * span
     out = np.empty_like(local)
-    out[..., 3] = (ea / length)[:, None, :] * (local[..., 3] - local[..., 0])
-    out[..., 0] = -out[..., 3]
-    across = local[..., [1, 2, 4, 5]]
-    across[..., [1, 3]] *= length[:, None, :, None]
-    forces = np.matmul(across[..., None, :], bending)[..., 0, :] * (ei / length**3)[:, None, :, None]
-    forces[..., [1, 3]] *= length[:, None, :, None]
-    out[..., [1, 2, 4, 5]] = forces
+    out[3] = along * (local[3] - local[0])
+    out[0] = -out[3]
+    # a rigid sideways movement bends nothing, so the two deflections act by their difference alone
+    out[1] = (k[:, 0, 0] * sway + k[:, 0, 1] * turn0 + k[:, 0, 3] * turn1) * across
+    out[4] = -out[1]
+    out[2] = (k[:, 1, 0] * sway + k[:, 1, 1] * turn0 + k[:, 1, 3] * turn1) * (across * span)
+    out[5] = (k[:, 3, 0] * sway + k[:, 3, 1] * turn0 + k[:, 3, 3] * turn1) * (across * span)
     return out
 
 
 def _reactions(number: Freedoms, topology: Topology, forces: Array, direction: Array, nodal: Array) -> Array:
     """Forces of the supports on the truss (b, c, support, 2); zero in a direction that is not held."""
     total = _to_nodes(number, _rotate(forces, direction, back=True))
-    total[..., number.of_node] -= nodal
     nodes = [s.node for s in topology.supports]
     held = np.array([[s.horizontal, s.vertical] for s in topology.supports], dtype=float)
-    return total[..., number.of_node[nodes]] * held
+    return (total[..., number.of_node[nodes]] - nodal[..., nodes, :]) * held
 
 
 def pin_jointed(topology: Topology) -> Topology:

@@ -35,7 +35,7 @@ class Freedoms:
     free: int
     total: int
     label: tuple[tuple[int, int], ...]
-    incidence: Array  # 0/1 (6 m, total + 1): adds member-end values up to movements
+    incidence: Array  # 0/1 (6 m, total + 1): adds member-end values, the six of all members in turn, to movements
 
 
 @cache
@@ -55,7 +55,7 @@ def freedoms(topology: Topology) -> Freedoms:
     ]
     of_member = np.array(rows)
     incidence = np.zeros((of_member.size, none + 1))
-    incidence[np.arange(of_member.size), of_member.ravel()] = 1.0
+    incidence[np.arange(of_member.size), of_member.T.ravel()] = 1.0
     return Freedoms(
         of_member=of_member,
         of_node=np.array([[number[n, 0], number[n, 1]] for n in range(len(topology.nodes))]),

@@ -6,6 +6,7 @@ stand at the start of a segment. Which member a segment belongs to is fixed; its
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -203,6 +204,20 @@ def _member_point(truss: Truss, point: ChordPoint) -> MemberPoint:
     return MemberPoint(case=point.case, member=point.member, at=at, fx=np.zeros_like(at), fy=-point.force + 0 * at)
 
 
-def support_nodes(topology: Topology) -> list[int]:
-    """Nodes of the supports, in the order of the topology."""
-    return [s.node for s in topology.supports]
+def sum_segments(values: Array, member_of: Sequence[int], out: Array) -> Array:
+    """Sums of segment values (..., s) over each member, written to `out` (..., m).
+
+    Most members are one segment, so the first segments are copied at once and only the others are added one by one.
+    """
+    first, rest = first_segments(tuple(member_of))
+    out[...] = values[..., first]
+    for s in rest:
+        out[..., member_of[s]] += values[..., s]
+    return out
+
+
+@cache
+def first_segments(member_of: tuple[int, ...]) -> tuple[NDArray[np.intp], tuple[int, ...]]:
+    """Numbers of the first segment of each member, and of all other segments."""
+    first = np.searchsorted(np.array(member_of), np.arange(member_of[-1] + 1))
+    return first, tuple(s for s in range(len(member_of)) if s not in set(first.tolist()))
