@@ -49,6 +49,6 @@ def _placed(error: RooftrussError, job: Job, spec: TrussSpec) -> RooftrussError:
     return type(error)(f"{job.source} [[truss]] {spec.mark} {error}")
 
 
-def run_file(path: Path) -> Result:
-    """Read a job file and run it."""
-    return run_job(read_job(path))
+def run_file(path: Path, progress: Callable[[str], None] | None = None) -> Result:
+    """Read a job file and run it; see `run_job`."""
+    return run_job(read_job(path), progress)

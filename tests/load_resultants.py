@@ -4,7 +4,7 @@ from rooftruss.loads.roof import ActionCase, Roof, SurfaceLoad
 
 
 def force(load: SurfaceLoad, roof: Roof) -> tuple[float, float, float, float]:
-    """(Fx, Fy, x, y) of one surface load [N, m]: right and up are positive; y is the height of the slope over the heel."""
+    """(Fx, Fy, x, y) of one surface load [N, m], right and up positive; y is the height of the slope over the heel."""
     B, o = float(roof.bearing_span), float(roof.overhang)
     ends = {
         "left tail": (-o, 0.0),

@@ -11,6 +11,7 @@ from rooftruss.shapes.truss import Truss
 
 Array = NDArray[np.float64]
 BLOCK = 32_000  # segments x combinations worked on at a time: about 256 kB an array
+SLIVER = 1e-6  # [m] a shorter segment is two cuts a rounding apart; its step of moment over its length says nothing
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -117,7 +118,7 @@ def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors
     m0, m1, load, n0, n1 = (values[:, i * count : (i + 1) * count] for i in range(5))
     _over_members(np.maximum, np.maximum(n0, n1), member_of, out[0])
     _over_members(np.minimum, np.minimum(n0, n1), member_of, out[1])
-    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > 0)[..., None]
+    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > SLIVER)[..., None]
     shear_mean = (m1 - m0) * per_run
     half = load * (run / 2)[..., None]
     steady, change = np.abs(shear_mean), np.abs(half)

@@ -220,6 +220,13 @@ def run(family: Family, choice: Choice) -> Run:
     )
 
 
+def combinations_of(job: Job, spec: TrussSpec) -> Combinations:
+    """The combinations of one truss; its sizes do not matter for them."""
+    options = options_of(spec)
+    first = Choice(options=options, index={g: np.array(0) for g in GROUPS})
+    return run(unbatched(family_of(job, [spec])), first).combinations
+
+
 def case_heads(cases: LoadCases) -> list[CaseHead]:
     """What combinations need to know of the cases."""
     return [CaseHead(name=h.name, short=h.short, action=h.action, pattern=h.pattern) for h in cases.heads]

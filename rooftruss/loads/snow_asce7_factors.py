@@ -12,7 +12,7 @@ from rooftruss.units import FOOT, PCF, PSF
 
 Array = NDArray[np.float64]
 EDITIONS = ("7-16", "7-22")
-SAME = 1e-9  # relative room for a limit that the job states in another unit
+SAME = 1e-6  # relative room for a limit that the job states in another unit (definitions of the Btu differ by 1e-7)
 
 
 def rules(edition: str) -> Mapping[str, float]:

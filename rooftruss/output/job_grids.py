@@ -1,32 +1,28 @@
 """Grids of a whole job: the quote, combinations, cases, assumptions, cautions, and shapes side by side."""
 
-from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from collections.abc import Sequence
 from functools import cache
 
-from rooftruss.analysis.combinations import Combinations
 from rooftruss.basis.job import Job
 from rooftruss.design.compare import Alternative
 from rooftruss.design.design import Design
 from rooftruss.design.stages import GROUPS
-from rooftruss.loads.roof import ActionCase, Value
 from rooftruss.output.cautions import CAUTIONS, MODEL_ASSUMPTIONS
-from rooftruss.output.schedule import Cell, Column, Grid, Measure
-from rooftruss.output.truss_grids import size_text, surfaces_grid
-
-ACTIONS = {"D": "dead", "L": "ceiling live", "Lr": "roof live", "S": "snow", "W": "wind"}
+from rooftruss.output.numbering import Numbering
+from rooftruss.output.schedule import Cell, Column, Grid
+from rooftruss.output.truss_grids import size_text
 
 
 def quote_grid(designs: Sequence[Design]) -> Grid:
     """One row per truss of the job: what it is, sizes, timber, reactions, worst ratio and result."""
     columns = (
         Column("Truss"),
-        Column("Quan-tity", "count"),
+        Column("Quantity", "count"),
         Column("Shape"),
         Column("Span", "length"),
         Column("Pitch", "pitch"),
         Column("Spacing", "size"),
-        Column("Over-hang", "size"),
+        Column("Overhang", "size"),
         Column("Top chord"),
         Column("Bottom chord"),
         Column("Webs"),
@@ -112,54 +108,12 @@ def _compared(row: Alternative) -> tuple[Cell, ...]:
     )
 
 
-@dataclass(frozen=True, slots=True)
-class Shared:
-    """Trusses that have the same table, and the first of them to make it from."""
-
-    designs: tuple[Design, ...]
-
-    @property
-    def first(self) -> Design:
-        """The truss that stands for all."""
-        return self.designs[0]
-
-    @property
-    def marks(self) -> str:
-        """Marks of all."""
-        return ", ".join(d.spec.mark for d in self.designs)
-
-
-def _shared(keys: Sequence[object], designs: Sequence[Design]) -> list[Shared]:
-    groups: dict[object, list[Design]] = {}
-    for key, design in zip(keys, designs, strict=True):
-        groups.setdefault(key, []).append(design)
-    return [Shared(tuple(group)) for group in groups.values()]
-
-
-def sharing_combinations(designs: Sequence[Design]) -> list[Shared]:
-    """Trusses grouped by equal cases and combinations."""
-    runs = [d.run for d in designs]
-    keys = [(r.cases.names, r.combinations.names, r.combinations.factors.tobytes()) for r in runs]
-    return _shared(keys, designs)
-
-
-def sharing_cases(designs: Sequence[Design]) -> list[Shared]:
-    """Trusses grouped by equal cases, values included."""
-    return _shared([(_values_key(d), surfaces_grid(d).rows) for d in designs], designs)
-
-
-def _values_key(design: Design) -> tuple[object, ...]:
-    return tuple((h.name, tuple(map(_value_key, h.values))) for h in design.run.cases.heads)
-
-
-def _value_key(value: Value) -> tuple[object, ...]:
-    return (value.symbol, float(value.value), value.clause)
-
-
-def combinations_grid(combinations: Combinations, heads: Sequence[ActionCase]) -> Grid:
-    """Every combination: clause, name, limit state, load duration, and for each action its factor and its cases."""
-    actions = tuple(dict.fromkeys(h.action for h in heads))
-    timed = bool((combinations.time_effects == combinations.time_effects).any())  # NaN: the scheme has none
+def combinations_grid(numbering: Numbering, designs: Sequence[Design]) -> Grid:
+    """Every combination of the job: clause, name, limit state, load duration; for each action its factor and its cases."""
+    heads = {h.name: h.action for d in designs for h in d.run.cases.heads}
+    actions = tuple(dict.fromkeys(heads[name] for name in numbering.cases))
+    timed = any(line.time_effect == line.time_effect for line in numbering.lines)  # NaN: the scheme has none
+    parted = any(len(line.marks) < len(designs) for line in numbering.lines)
     columns = (
         Column("No.", "combination"),
         Column("Clause"),
@@ -168,88 +122,50 @@ def combinations_grid(combinations: Combinations, heads: Sequence[ActionCase]) -
         Column("Load duration"),
         *((Column("Time effect", "factor"),) if timed else ()),
         *(c for a in actions for c in (Column(f"{a} factor", "factor"), Column(f"{a} cases"))),
+        *((Column("Trusses"),) if parted else ()),
     )
-    place = {a: [k for k, h in enumerate(heads) if h.action == a] for a in actions}
     rows = []
-    for n, name in enumerate(combinations.names):
-        row = combinations.factors[n]
-        effect = float(combinations.time_effects[n])
+    for line in numbering.lines:
+        acting = [(numbering.cases[name], heads[name], factor) for name, factor in line.factors]
         rows.append(
             (
-                n,
-                combinations.clauses[n],
-                name.removeprefix("deflection, "),
-                "strength" if combinations.strength[n] else f"deflection, {combinations.kinds[n].replace('_', ' or ')}",
-                combinations.durations[n],
-                *((effect if effect == effect else None,) if timed else ()),
-                *(cell for a in actions for cell in _factors([(k, float(row[k])) for k in place[a] if row[k]])),
+                line.number,
+                line.clause,
+                line.name.removeprefix("deflection, "),
+                f"deflection, {line.kind.replace('_', ' or ')}" if line.kind else "strength",
+                line.duration,
+                *((line.time_effect if line.time_effect == line.time_effect else None,) if timed else ()),
+                *(cell for a in actions for cell in _factors([(n, f) for n, b, f in acting if b == a])),
+                *((", ".join(line.marks) if len(line.marks) < len(designs) else "all",) if parted else ()),
             )
         )
     return Grid("Combinations", columns, tuple(rows))
 
 
 def _factors(acting: list[tuple[int, float]]) -> tuple[Cell, Cell]:
-    """Factor of one action, and the numbers of the cases it multiplies; every factor by itself where they differ."""
+    """Factor of one action, and the numbers of the cases it multiplies; each with its own where they differ."""
     factors = {f for _, f in acting}
     if len(factors) > 1:
-        return "each", "; ".join(f"{k + 1}: {f:.4g}" for k, f in acting)
-    return (factors.pop(), ", ".join(str(k + 1) for k, _ in acting)) if acting else (None, None)
-
-
-def values_grid(design: Design) -> Grid:
-    """Intermediate values of the load cases; what all cases of an action share is listed once, ahead of them."""
-    columns = (
-        Column("Case"),
-        Column("Load case"),
-        Column("Symbol"),
-        Column("Value", "own"),
-        Column("Clause"),
-    )
-    heads = design.run.cases.heads
-    rows: list[tuple[Cell, ...]] = []
-    for action in dict.fromkeys(h.action for h in heads):
-        own = [(k, h) for k, h in enumerate(heads) if h.action == action and h.values]
-        common = _common([h for _, h in own])
-        listed = set(map(_value_key, common))
-        rows += _value_rows(f"all {action}", f"every case of {ACTIONS.get(action, action)} load", common)
-        for k, head in own:
-            rows += _value_rows(str(k + 1), head.name, [v for v in head.values if _value_key(v) not in listed])
-    return Grid("Values", columns, tuple(rows))
-
-
-def _common(heads: Sequence[ActionCase]) -> list[Value]:
-    """Values that all of several cases have."""
-    if len(heads) < 2:
-        return []
-    rest = [set(map(_value_key, h.values)) for h in heads[1:]]
-    return [v for v in heads[0].values if all(_value_key(v) in values for values in rest)]
-
-
-def _value_rows(number: str, name: str, values: Sequence[Value]) -> Iterator[tuple[Cell, ...]]:
-    for k, v in enumerate(values):
-        yield (number if k == 0 else None, name if k == 0 else None, v.symbol, Measure(float(v.value), v.kind), v.clause)
+        return None, "; ".join(f"{n} x {f:.4g}" for n, f in acting)
+    return (factors.pop(), ", ".join(str(n) for n, _ in acting)) if acting else (None, None)
 
 
 def assumptions_grid(job: Job, designs: Sequence[Design]) -> Grid:
     """What the job left open, what the timber standard notes, what is said of single trusses, and the model."""
-    noted = dict.fromkeys(note for d in designs for note in d.run.family.timber.notes)
     rows = [
         *((a.place, a.text) for a in job.assumptions),
-        *(("timber", note) for note in noted),
+        *((d.run.family.scheme.timber_standard, note) for d in designs for note in d.run.family.timber.notes),
         *((d.spec.mark, note) for d in designs for note in d.notes),
         *(("model", text) for text in MODEL_ASSUMPTIONS),
     ]
-    return Grid("Assumptions", (Column("About"), Column("Taken as")), tuple(rows))
+    about: dict[str, dict[str, None]] = {}  # the places of a sentence that is said of several, in order
+    for place, text in rows:
+        about.setdefault(text, {})[place] = None
+    joined = tuple((", ".join(places), text) for text, places in about.items())
+    return Grid("Assumptions", (Column("About"), Column("Taken as")), joined)
 
 
 @cache
 def cautions_grid() -> Grid:
     """The cautions, numbered."""
     return Grid("Cautions", (Column("No.", "count"), Column("Caution")), tuple(enumerate(CAUTIONS, 1)))
-
-
-def geometry_grid(design: Design) -> Grid:
-    """Panel points of a truss; x from the left bearing centre, y up from it."""
-    columns = (Column("Panel point"), Column("x", "length"), Column("y", "length"))
-    nodes = design.run.family.topology.nodes
-    return Grid("Panel points", columns, tuple((n, float(x), float(y)) for n, (x, y) in zip(nodes, design.run.truss.xy, strict=True)))

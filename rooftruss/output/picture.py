@@ -2,11 +2,14 @@
 
 from dataclasses import dataclass
 
+import numpy as np
+
 from rooftruss.design.design import Design
 from rooftruss.shapes.truss import Truss
 
 Point = tuple[float, float]
 MARK = 0.022  # size of a support mark, as a share of the width of the picture
+SUPPORT_DEPTH = 1.5  # marks below the panel point, with the line of a roller
 POSITION = {"top chord": "above", "tail": "above", "bottom chord": "below", "web": "on"}
 
 
@@ -39,16 +42,20 @@ class Picture:
 
 def picture_of(truss: Truss) -> Picture:
     """Elevation of an unbatched truss."""
-    x, y = truss.xy[:, 0], truss.xy[:, 1]
-    mark = MARK * float(x.max() - x.min())
-    groups = dict.fromkeys(m.group for m in truss.topology.members)
-    paths = [Path(name=g, strokes=_strokes(truss, g)) for g in groups]
+    x, y, members = truss.xy[:, 0], truss.xy[:, 1], truss.topology.members
+    paths = [Path(name=g, strokes=_strokes(truss, g)) for g in dict.fromkeys(m.group for m in members)]
+    supports = tuple(stroke for k in range(len(truss.topology.supports)) for stroke in _support(truss, k))
+    low = float(y.min()) - SUPPORT_DEPTH * _mark(truss)
     return Picture(
-        paths=(*paths, Path(name="support", strokes=tuple(s for k in range(len(truss.topology.supports)) for s in _support(truss, k, mark)))),
-        member_names=tuple(_member_name(truss, k) for k in range(len(truss.topology.members))),
+        paths=(*paths, Path(name="support", strokes=supports)),
+        member_names=tuple(_member_name(truss, k) for k in range(len(members))),
         panel_points=tuple(_panel_point(truss, k) for k in range(len(truss.topology.nodes))),
-        box=(float(x.min()), float(y.min()) - 1.5 * mark, float(x.max()), float(y.max())),
+        box=(float(x.min()), low, float(x.max()), float(y.max())),
     )
+
+
+def _mark(truss: Truss) -> float:
+    return MARK * float(np.ptp(truss.xy[:, 0]))
 
 
 def picture(design: Design) -> Picture:
@@ -72,10 +79,11 @@ def _strokes(truss: Truss, group: str) -> tuple[tuple[Point, ...], ...]:
     return tuple(tuple(_point(truss, n) for n in stroke) for stroke in strokes)
 
 
-def _support(truss: Truss, number: int, mark: float) -> list[tuple[Point, ...]]:
+def _support(truss: Truss, number: int) -> list[tuple[Point, ...]]:
     """Triangle under a bearing; a roller has a line below it."""
     support = truss.topology.supports[number]
     x, y = _point(truss, support.node)
+    mark = _mark(truss)
     half = 0.6 * mark
     triangle = ((x, y), (x - half, y - mark), (x + half, y - mark), (x, y))
     if support.horizontal:
@@ -90,14 +98,9 @@ def _member_name(truss: Truss, k: int) -> Label:
 
 
 def _panel_point(truss: Truss, node: int) -> Label:
-    """Letter above a point of the roof, below one of the bottom chord, beside a bearing."""
+    """Letter above a point of the roof, below one of the bottom chord, below the mark of a bearing."""
     x, y = _point(truss, node)
-    middle = float(truss.xy[:, 0].mean())
     roles = {m.role for m in truss.topology.members if node in (m.start, m.end)}
-    if node in {s.node for s in truss.topology.supports}:
-        position = "left" if x < middle else "right"
-    elif roles <= {"tail"}:
-        position = "below"
-    else:
-        position = "below" if "bottom chord" in roles else "above"
-    return Label(text=truss.topology.nodes[node], at=(x, y), position=position)
+    low = roles <= {"tail"} or "bottom chord" in roles
+    mark = SUPPORT_DEPTH * _mark(truss) if node in {s.node for s in truss.topology.supports} else 0.0
+    return Label(text=truss.topology.nodes[node], at=(x, y - mark), position="below" if low else "above")

@@ -1,7 +1,7 @@
 """Grids: what workbook, terminal and data frames show, as frozen tables of SI values, and how they are shown."""
 
 import math
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -31,12 +31,13 @@ SI_LABELS = {  # units of a frame that asks for "SI"
     "factor": "-",
 }
 MET = {True: "met", False: "NOT met"}
+BEYOND = "beyond range"  # shown for a value that is not finite
 NOTHING = "-"  # shown where no combination gives an effect
 
 
 @dataclass(frozen=True, slots=True)
 class Measure:
-    """A value with its own kind, for columns whose rows differ in unit."""
+    """A value with its own kind, for a column whose rows differ in unit; a "unit" column beside it names the unit."""
 
     value: float
     kind: str
@@ -49,8 +50,8 @@ Cell = float | int | str | bool | Measure | None
 class Column:
     """One column of a grid.
 
-    kind: a key of units.US (an SI value), or "text", "count" (whole number), "combination" (its number among all from
-    0, -1 where nothing acts), "pitch" (rise over run), "result" (whether the limit is met), "own" (a Measure).
+    kind: a key of units.US (an SI value), or "text", "count" (whole number), "combination" (its number from 1, 0 where
+    nothing acts), "pitch" (rise over run), "result" (whether the limit is met), "measure" (a Measure), "unit" (a kind).
     """
 
     heading: str
@@ -93,18 +94,15 @@ class ShownGrid:
 
 
 def shown_grid(grid: Grid, units: str) -> ShownGrid:
-    """The grid in the units "US", "metric" or "SI". An "own" column becomes two: value and unit.
+    """The grid in the units "US", "metric" or "SI".
 
     >>> grid = Grid("", (Column("Span", "length"), Column("Pitch", "pitch")), ((8.5344, 0.5),))
     >>> shown_grid(grid, "US").rows
     ((28.0, '6/12'),)
     """
-    pairs = [_column(column, units) for column in grid.columns]
-    columns = tuple(c for shown, _ in pairs for c in shown)
-    kinds = [kind for _, kind in pairs]
-    rows = tuple(
-        tuple(x for cell, kind in zip(row, kinds, strict=True) for x in _cells(cell, kind, units)) for row in grid.rows
-    )
+    columns = tuple(_column(column, units) for column in grid.columns)
+    turn = [_turned(column.kind, units) for column in grid.columns]
+    rows = tuple(tuple(f(cell) for f, cell in zip(turn, row, strict=True)) for row in grid.rows)
     return ShownGrid(grid.title, columns, rows)
 
 
@@ -115,49 +113,53 @@ def display(kind: str, units: str) -> Display:
     return SYSTEMS[units][kind]
 
 
-def _column(column: Column, units: str) -> tuple[tuple[ShownColumn, ...], Display | str]:
-    """The shown columns of a column, and what turns its cells into shown ones."""
+def _column(column: Column, units: str) -> ShownColumn:
     heading, kind = column.heading, column.kind
-    if kind == "own":
-        return (ShownColumn(heading, "", "General"), ShownColumn("Unit", "", "")), kind
-    if kind in ("text", "result"):
-        return (ShownColumn(heading, "", ""),), kind
+    if kind in ("text", "result", "unit") or (kind == "pitch" and units == "US"):
+        return ShownColumn(heading, "", "")
     if kind in ("count", "combination"):
-        return (ShownColumn(heading, "", "0"),), kind
+        return ShownColumn(heading, "", "0")
+    if kind == "measure":
+        return ShownColumn(heading, "", "General")
     if kind == "pitch":
-        return ((ShownColumn(heading, "", "") if units == "US" else ShownColumn(heading, "deg", "0.0")),), kind
+        return ShownColumn(heading, "deg", "0.0")
     shown = display(kind, units)
-    return (ShownColumn(heading, "" if shown.label == "-" else shown.label, shown.number_format),), shown
+    return ShownColumn(heading, "" if shown.label == "-" else shown.label, shown.number_format)
 
 
-def _cells(cell: Cell, kind: Display | str, units: str) -> tuple[ShownCell, ...]:
-    if isinstance(kind, Display):
-        return (_number(cell, kind.size),)
-    if kind == "own":
-        return _own(cell, units)
-    if cell is None:
-        return (None,)
-    if kind == "result":
-        return (cell if isinstance(cell, str) else MET[bool(cell)],)
-    if kind == "combination" and isinstance(cell, int):
-        return (cell + 1 if cell >= 0 else NOTHING,)
-    if kind == "pitch" and isinstance(cell, float):
-        return (f"{12 * cell:.4g}/12" if units == "US" else math.degrees(math.atan(cell)),)
-    return (cell if isinstance(cell, int | float) else str(cell),)
+def _turned(kind: str, units: str) -> Callable[[Cell], ShownCell]:
+    """What turns the cells of a column of this kind into shown ones."""
+    special: dict[str, Callable[[Cell], ShownCell]] = {
+        "text": lambda cell: None if cell is None else str(cell),
+        "count": lambda cell: cell if isinstance(cell, int) else None,
+        "combination": lambda cell: cell if isinstance(cell, int) and cell > 0 else NOTHING if cell == 0 else None,
+        "result": lambda cell: MET[cell] if isinstance(cell, bool) else None,
+        "pitch": lambda cell: _pitch(cell, units) if isinstance(cell, float) else None,
+        "measure": lambda cell: _measure(cell, units) if isinstance(cell, Measure) else None,
+        "unit": lambda cell: _unit(cell, units) if isinstance(cell, str) else None,
+    }
+    if kind in special:
+        return special[kind]
+    size = display(kind, units).size
+    return lambda cell: _number(cell, size) if isinstance(cell, int | float) else None
 
 
-def _number(cell: Cell, size: float) -> ShownCell:
-    if isinstance(cell, int | float):
-        return cell / size if math.isfinite(cell) else "beyond range"
-    return None if cell is None else str(cell)
+def _number(value: float, size: float) -> ShownCell:
+    return value / size if math.isfinite(value) else BEYOND
 
 
-def _own(cell: Cell, units: str) -> tuple[ShownCell, ShownCell]:
-    if not isinstance(cell, Measure):
-        return (None if cell is None else str(cell), None)
-    shown = display(cell.kind, units)
-    value = _number(cell.value, shown.size)
-    return (float(f"{value:.5g}") if isinstance(value, int | float) else value, None if shown.label == "-" else shown.label)
+def _pitch(rise_over_run: float, units: str) -> ShownCell:
+    return f"{12 * rise_over_run:.4g}/12" if units == "US" else math.degrees(math.atan(rise_over_run))
+
+
+def _measure(cell: Measure, units: str) -> ShownCell:
+    value = _number(cell.value, display(cell.kind, units).size)
+    return float(f"{value:.5g}") if isinstance(value, int | float) else value
+
+
+def _unit(kind: str, units: str) -> str | None:
+    label = display(kind, units).label
+    return None if label == "-" else label
 
 
 def frame(grid: Grid, units: str = "SI") -> "pd.DataFrame":

@@ -10,7 +10,8 @@ from rooftruss.analysis.inspection import pin_jointed_axial, triangulation
 from rooftruss.design.design import LIMIT, Design
 from rooftruss.design.stages import GROUPS
 from rooftruss.loads.cases import LoadCases
-from rooftruss.loads.roof import ActionCase, SurfaceLoad
+from rooftruss.loads.roof import ActionCase
+from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid
 
 COMBINATION = Column("Comb.", "combination")
@@ -20,16 +21,17 @@ ACTS = {
     "normal": "square to the surface, towards it",
     "right": "to the right, per upright area",
 }
-BOTH = {
-    ("left tail", "left slope", "right slope", "right tail"): "whole roof",
-    ("left slope", "right slope"): "both slopes",
-    ("left tail", "right tail"): "both tails",
-}
 
 
-def governing(found: Peak, k: int) -> tuple[float, int]:
-    """Value and combination number of one entry of a peak."""
-    return float(found.value[k]), int(found.combination[k])
+class _Governing:
+    """Reads values and the numbers of their combinations from peaks."""
+
+    def __init__(self, design: Design, numbering: Numbering) -> None:
+        self.number = numbering.combinations_of(design)
+
+    def __call__(self, found: Peak, k: int) -> tuple[float, int]:
+        n = int(found.combination[k])
+        return float(found.value[k]), self.number[n] if n >= 0 else 0
 
 
 def idle_members(design: Design) -> frozenset[str]:
@@ -42,7 +44,7 @@ def idle_members(design: Design) -> frozenset[str]:
     return frozenset(names[k] for k in triangulation(run.family.topology).members if idle[k])
 
 
-def members_grid(design: Design, idle: Collection[str] = ()) -> Grid:
+def members_grid(design: Design, numbering: Numbering, idle: Collection[str] = ()) -> Grid:
     """Every member: size, governing effects with their combinations, and its worst check. `idle` are marked."""
     columns = (
         Column("Member"),
@@ -52,28 +54,30 @@ def members_grid(design: Design, idle: Collection[str] = ()) -> Grid:
         Column("Length", "length"),
         Column("Tension", "force"),
         COMBINATION,
-        Column("Com-pression", "force"),
+        Column("Compression", "force"),
         COMBINATION,
         Column("Bending moment", "moment"),
         COMBINATION,
         Column("Shear", "force"),
         COMBINATION,
-        Column("Utili-sation", "ratio"),
+        Column("Utilisation", "ratio"),
         COMBINATION,
         Column("Result", "result"),
         Column("Governing rule"),
         Column("Clause"),
-        Column("Axial force"),
+        Column("Zero-force member"),
     )
-    return Grid("Members", columns, tuple(_member(design, k, idle) for k in range(len(design.run.members.names))))
+    governing = _Governing(design, numbering)
+    rows = tuple(_member(design, k, governing, idle) for k in range(len(design.run.members.names)))
+    return Grid("Members", columns, rows)
 
 
-def _member(design: Design, k: int, idle: Collection[str]) -> tuple[Cell, ...]:
+def _member(design: Design, k: int, governing: _Governing, idle: Collection[str]) -> tuple[Cell, ...]:
     made, outcome, effects = design.run.family.topology.members[k], design.outcome, design.outcome.envelope
     option = design.sizes[made.group]
     value, combination = governing(outcome.utilisation, k)
     rule = design.run.checks.rules[int(outcome.rule[k])]
-    acting = combination >= 0
+    acting = combination > 0
     return (
         made.name,
         made.role,
@@ -89,7 +93,7 @@ def _member(design: Design, k: int, idle: Collection[str]) -> tuple[Cell, ...]:
         value <= LIMIT,
         rule.name if acting else None,
         rule.clause if acting else None,
-        "always 0" if made.name in idle else None,
+        "yes" if made.name in idle else None,
     )
 
 
@@ -102,7 +106,7 @@ def size_text(name: str, plies: int) -> str:
     return name if plies == 1 else f"{plies} ply {name}"
 
 
-def reactions_grid(design: Design) -> Grid:
+def reactions_grid(design: Design, numbering: Numbering) -> Grid:
     """Support forces on the bearings, and the timber across the grain above them."""
     columns = (
         Column("Panel point"),
@@ -112,14 +116,14 @@ def reactions_grid(design: Design) -> Grid:
         COMBINATION,
         Column("Uplift", "force"),
         COMBINATION,
-        Column("Side-ways", "force"),
+        Column("Sideways", "force"),
         COMBINATION,
-        Column("Utili-sation", "ratio"),
+        Column("Utilisation", "ratio"),
         COMBINATION,
         Column("Result", "result"),
         Column("Rule"),
     )
-    run, found = design.run, design.outcome
+    run, found, governing = design.run, design.outcome, _Governing(design, numbering)
     rows = []
     for k, support in enumerate(run.family.topology.supports):
         value, combination = governing(found.bearing, k)
@@ -140,19 +144,19 @@ def reactions_grid(design: Design) -> Grid:
     return Grid("Reactions and bearings", columns, tuple(rows))
 
 
-def deflections_grid(design: Design) -> Grid:
+def deflections_grid(design: Design, numbering: Numbering) -> Grid:
     """Deflection nearest to its limit at every place, up and right positive."""
     columns = (
         Column("Place"),
         Column("Direction"),
-        Column("Deflec-tion", "deflection"),
+        Column("Deflection", "deflection"),
         Column("Limit", "deflection"),
         Column("Share of limit", "ratio"),
         COMBINATION,
         Column("Result", "result"),
         Column("Service combination"),
     )
-    found = design.outcome.deflection
+    found, number = design.outcome.deflection, numbering.combinations_of(design)
     rows = tuple(
         (
             p.name if p.kind == "node" else f"mid {p.name}",
@@ -160,7 +164,7 @@ def deflections_grid(design: Design) -> Grid:
             float(found.value[k]),
             float(found.limit[k]),
             float(found.ratio[k]),
-            int(found.combination[k]),
+            number[int(found.combination[k])],
             bool(found.ratio[k] <= LIMIT),
             design.combination(int(found.combination[k])).removeprefix("deflection, "),
         )
@@ -169,7 +173,7 @@ def deflections_grid(design: Design) -> Grid:
     return Grid("Deflections", columns, rows)
 
 
-def loading_grid(design: Design) -> Grid:
+def loading_grid(design: Design, numbering: Numbering) -> Grid:
     """One row per load case: range of its pressures and its whole force on the truss."""
     columns = (
         Column("Case", "count"),
@@ -185,7 +189,16 @@ def loading_grid(design: Design) -> Grid:
     cases = design.run.cases
     right, down = _totals(design, cases)
     rows = tuple(
-        (k + 1, head.name, head.action, *_range(head), float(down[k]), float(right[k]), _how(head, design), case_clause(head))
+        (
+            numbering.cases[head.name],
+            head.name,
+            head.action,
+            *_range(head),
+            float(down[k]),
+            float(right[k]),
+            _how(head, design),
+            head.values[-1].clause if head.values else "job",  # the last value is the load itself
+        )
         for k, head in enumerate(cases.heads)
     )
     return Grid("Loading", columns, rows)
@@ -218,60 +231,16 @@ def _how(head: ActionCase, design: Design) -> str:
     return "; ".join(dict.fromkeys(ACTS[load.kind] for load in head.loads))
 
 
-def case_clause(head: ActionCase) -> str:
-    """Clause of the last value of a case, the one that the load itself comes from."""
-    return head.values[-1].clause if head.values else "job"
-
-
-def surfaces_grid(design: Design) -> Grid:
-    """Every uniform load of every case on the roof surfaces; surfaces that carry the same are listed together."""
-    columns = (
-        Column("Case", "count"),
-        Column("Load case"),
-        Column("Surface"),
-        Column("How it acts"),
-        Column("Pressure", "pressure"),
-        Column("From x", "length"),
-        Column("To x", "length"),
-    )
-    rows: list[tuple[Cell, ...]] = []
-    for k, head in enumerate(design.run.cases.heads):
-        for surfaces, load in _alike(head):
-            if load.surface != "self-weight":
-                place = (None if x is None else float(x) for x in (load.x_from, load.x_to))
-                rows.append((k + 1, head.name, surfaces, ACTS[load.kind], float(load.pressure), *place))
-    for point in design.spec.loads.points:
-        row = [k for k, head in enumerate(design.run.cases.heads) if not head.loads and head.action == point.action]
-        text = f"point load {point.note}".strip()
-        centre = point.position - design.spec.bearing / 2
-        rows.append((row[0] + 1, text, f"{point.chord} chord", "down, see the loading of the truss", None, centre, centre))
-    return Grid("Loads on the surfaces", columns, tuple(rows))
-
-
-def _alike(head: ActionCase) -> list[tuple[str, SurfaceLoad]]:
-    """Loads of a case with the words for all surfaces that carry the same, in the order of the case."""
-    groups: dict[tuple[object, ...], list[SurfaceLoad]] = {}
-    for load in head.loads:
-        reach = tuple(None if x is None else float(x) for x in (load.x_from, load.x_to))
-        groups.setdefault((load.kind, float(load.pressure), *reach), []).append(load)
-    return [(_surfaces(tuple(load.surface for load in loads)), loads[0]) for loads in groups.values()]
-
-
-def _surfaces(names: tuple[str, ...]) -> str:
-    order = ("left tail", "left slope", "right slope", "right tail", "ceiling", "self-weight")
-    ordered = tuple(sorted(names, key=order.index))
-    return BOTH.get(ordered, ", ".join(ordered))
-
-
-def named_combinations_grid(design: Design) -> Grid:
+def named_combinations_grid(design: Design, numbering: Numbering) -> Grid:
     """The combinations that the other grids of the truss name by number."""
     outcome, combinations = design.outcome, design.run.combinations
     effects, reactions = outcome.envelope, outcome.reactions
     peaks = (effects.tension, effects.compression, effects.moment, effects.shear, outcome.utilisation, outcome.bearing)
     peaks += (reactions.down, reactions.uplift, reactions.horizontal)
     used = {int(n) for p in peaks for n in p.combination} | {int(n) for n in outcome.deflection.combination}
+    number = numbering.combinations_of(design)
     rows = tuple(
-        (n, combinations.names[n].removeprefix("deflection, "), combinations.clauses[n], combinations.durations[n])
+        (number[n], combinations.names[n].removeprefix("deflection, "), combinations.clauses[n], combinations.durations[n])
         for n in sorted(used - {-1})
     )
     columns = (Column("Comb.", "combination"), Column("Combination"), Column("Clause"), Column("Load duration"))

@@ -57,7 +57,9 @@ def effective_beam_length(l_u: ArrayLike, h: ArrayLike, *, ratio: float, additio
     return np.where(length > 0, ratio * length + addition * _array(h), 0.0)
 
 
-def critical_bending_stress(l_ef: ArrayLike, b: ArrayLike, h: ArrayLike, *, E_0_05: ArrayLike, G_05: ArrayLike) -> Array:
+def critical_bending_stress(
+    l_ef: ArrayLike, b: ArrayLike, h: ArrayLike, *, E_0_05: ArrayLike, G_05: ArrayLike
+) -> Array:
     """Critical bending stress sigma_m,crit [Pa] of a rectangle; EN 1995-1-1, 6.3.3(2). inf where l_ef = 0.
 
     Solid softwood (G_05 not a number): eq. (6.32). Otherwise eq. (6.31), I_tor = h b^3 / 3 (1 - 0.63 b/h).

@@ -1,6 +1,7 @@
 """Numbers of EN 1995-1-1 and its national annexes, from tables/timber."""
 
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import cast
 
@@ -120,7 +121,7 @@ def lasting_share(action: str) -> float:
     return _number(read_table("timber/lasting_share_en1990").where(action=action), "psi_2")
 
 
-def strengths(row: dict[str, Cell]) -> dict[str, float]:
+def strengths(row: Mapping[str, Cell]) -> dict[str, float]:
     """Characteristic values of a grade row [Pa, kg/m3]. Raises JobError for one that is missing or not above zero."""
     found = {}
     for key in STRENGTHS:
@@ -131,8 +132,8 @@ def strengths(row: dict[str, Cell]) -> dict[str, float]:
     return found
 
 
-def _number(row: object, key: str) -> float:
-    return cast("dict[str, float]", row)[key]
+def _number(row: Mapping[str, Cell], key: str) -> float:
+    return cast(float, row[key])
 
 
 def _table(name: str) -> Table:

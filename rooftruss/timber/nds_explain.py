@@ -19,7 +19,7 @@ LETTERS = {"Fb": "F_b", "Ft": "F_t", "Fv": "F_v", "Fc_perp": "F_c_perp", "Fc": "
 FACTORS = {  # letter -> clause, text
     "C_M": ("4.3.3", "wet service factor"),
     "C_t": ("4.3.4, Table 2.3.3", "temperature factor"),
-    "C_F": ("4.3.6, Supplement Table 4A", "size factor (1 where values go by width, or for machine rated lumber)"),
+    "C_F": ("4.3.6, Supplement Tables 4A and 4B", "size factor (1 for machine rated lumber)"),
     "C_i": ("4.3.8, Table 4.3.8", "incising factor"),
     "K_F": ("Table N1", "format conversion factor"),
     "phi": ("Table N2", "resistance factor"),
@@ -249,15 +249,18 @@ def _lateral_values(case: _Case, sign: str, l_u: float, lateral: Lateral) -> Ite
 def _ratios(case: _Case, r: Resistances) -> Iterator[tuple[int | None, Step]]:
     """Every rule that applies, in the order of nds_check.RULES: (rule, its left side or ratio).
 
-    The margin to the Euler stress carries no rule: f_c/F_c' is never below it, since C_P F_c* <= F_cE.
+    Stresses carry no rule, nor does the margin to the Euler stress: f_c/F_c' is never below it (C_P F_c* <= F_cE).
     """
     n, area = case.member, _at(r.area, case.member)
     column = limit("column slenderness", edition=case.edition)
     f_t, f_c = case.tension / area, case.compression / area
-    yield _ratio(case, rules.TENSION, "f_t/F_t'", f_t / _at(r.F_t, n), _shown("f_t", f_t))
+    if case.tension or not (case.compression or case.moment or case.shear):
+        yield None, _stress("f_t", f_t, f"{case.code} 3.8.1", "T/A")
+        yield _ratio(case, rules.TENSION, "f_t/F_t'", f_t / _at(r.F_t, n), "tension alone")
     if case.compression:
         F_c = _at(_stability(case, r).F_c, n)
-        yield _ratio(case, rules.COMPRESSION, "f_c/F_c'", f_c / F_c, _shown("f_c", f_c))
+        yield None, _stress("f_c", f_c, f"{case.code} 3.6.3", "P/A")
+        yield _ratio(case, rules.COMPRESSION, "f_c/F_c'", f_c / F_c, "compression alone")
         slender = _at(r.slenderness, n) / column
         yield _ratio(
             case, rules.SLENDER_COLUMN, f"(l_e/d)/{column:g}", slender, "the larger slenderness over its limit"
@@ -268,7 +271,8 @@ def _ratios(case: _Case, r: Resistances) -> Iterator[tuple[int | None, Step]]:
         yield from _interaction_ratios(case, r)
     if case.shear:
         f_v = float(nds.shear_stress(case.shear, area))
-        yield _ratio(case, rules.SHEAR, "f_v/F_v'", f_v / _at(r.F_v, n), _shown("f_v", f_v))
+        yield None, _stress("f_v", f_v, f"{case.code} eq. 3.4-2", "1.5 V/A")
+        yield _ratio(case, rules.SHEAR, "f_v/F_v'", f_v / _at(r.F_v, n), "shear")
 
 
 def _signs(case: _Case, r: Resistances) -> Iterator[tuple[str, float, Lateral]]:
@@ -278,18 +282,19 @@ def _signs(case: _Case, r: Resistances) -> Iterator[tuple[str, float, Lateral]]:
             yield sign, moment / _at(r.modulus, case.member), lateral
 
 
-def _bending_ratios(case: _Case, r: Resistances) -> Iterator[tuple[int, Step]]:
+def _bending_ratios(case: _Case, r: Resistances) -> Iterator[tuple[int | None, Step]]:
     n, area = case.member, _at(r.area, case.member)
     beam = limit("bending slenderness", edition=case.edition)
     f_relief = case.relief / area
     for sign, f_b, lateral in _signs(case, r):
         F_b = _at(lateral.F_b, n)
+        yield None, _stress(f"f_b{sign}", f_b, f"{case.code} eq. 3.3-1", "M/S")
         if case.tension:
             value = float(nds.bending_less_tension(f_b, f_relief, F_b))
-            text = f"{_shown('f_b', f_b)}, smallest f_t {f_relief / 1e6:.4g} N/mm2"
+            text = "bending less the smallest tension along the member, F_b** = F_b'"
             yield _ratio(case, rules.BENDING_LESS_TENSION, f"(f_b{sign} - f_t)/F_b**", value, text)
         else:
-            yield _ratio(case, rules.BENDING, f"f_b{sign}/F_b'", f_b / F_b, _shown("f_b", f_b))
+            yield _ratio(case, rules.BENDING, f"f_b{sign}/F_b'", f_b / F_b, "bending alone")
     for sign, _, lateral in _signs(case, r):
         text = "slenderness ratio over its limit"
         yield _ratio(case, rules.SLENDER_BEAM, f"R_B{sign}/{beam:g}", _at(lateral.R_B, n) / beam, text)
@@ -343,7 +348,3 @@ def _finite(symbol: str, value: float, clause: str, text: str) -> Iterator[Step]
     """A stress that is infinite (and left out) where the member is held throughout."""
     if np.isfinite(value):
         yield _stress(symbol, value, clause, text)
-
-
-def _shown(symbol: str, stress: float) -> str:
-    return f"{symbol} = {stress / 1e6:.4g} N/mm2"

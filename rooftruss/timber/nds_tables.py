@@ -171,9 +171,11 @@ def effective_bending_length(l_u: ArrayLike, depth: ArrayLike, *, loading: str, 
     rows = [row for row in table(edition, "bending length").rows if row["loading"] == loading]
     if not rows:
         raise JobError(f"loading {loading!r} is not in NDS Table 3.3.3")
-    ratio = l_u / depth
     lengths = [_number(row, "on_length") * l_u + _number(row, "on_depth") * depth for row in rows]
-    return np.asarray(np.select([ratio < _number(row, "ratio_up_to") for row in rows[:-1]], lengths[:-1], lengths[-1]))
+    length = lengths[-1]
+    for row, shorter in zip(rows[-2::-1], lengths[-2::-1], strict=True):
+        length = np.where(l_u / depth < _number(row, "ratio_up_to"), shorter, length)
+    return length
 
 
 def _first_that_reaches(rows: list[Mapping[str, Cell]], breadth: float, depth: float, what: str) -> Mapping[str, Cell]:

@@ -86,7 +86,7 @@ def test_exposure_coefficient_of_7_16_table():
 
 def test_no_exposure_coefficient_over_the_gradient_height():
     with pytest.raises(
-        OutOfScopeError, match="ASCE 7-16, Table 26.10-1: no K_z over the gradient height of exposure D"
+        OutOfScopeError, match=r"ASCE 7-16, Table 26.10-1: no K_z over the gradient height of exposure D"
     ):
         exposure_coefficient("7-16", 701 * FOOT, "D")
 

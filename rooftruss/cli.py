@@ -1,0 +1,294 @@
+"""Command line: arguments, exit codes, and nothing else. Data go to stdout, all else to stderr.
+
+Exit code 0: done; 1: done, and some truss does not meet a check; 2: the input is wrong.
+"""
+
+import argparse
+import sys
+from collections.abc import Callable, Sequence
+from pathlib import Path
+from typing import NoReturn
+
+from rooftruss import __version__
+from rooftruss.errors import JobError, OutputError, RooftrussError, nearest
+
+DONE, NOT_MET, WRONG_INPUT = 0, 1, 2
+LIKE_KEYS = (  # options of `size` that stand for keys of [[truss]]: key, example
+    ("shape", "fink"),
+    ("span", '"28 ft"'),
+    ("pitch", "6/12"),
+    ("spacing", '"24 in"'),
+    ("overhang", '"16 in"'),
+    ("bearing", '"3.5 in"'),
+    ("heel_height", '"10 in"'),
+    ("bottom_pitch", "3/12"),
+    ("panels", "6"),
+    ("plies", "2"),
+    ("quantity", "12"),
+)
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run one command. Returns the exit code; every foreseeable mistake is one message on stderr."""
+    parser = _parser()
+    given = parser.parse_args(arguments)
+    try:
+        return int(given.run(given))
+    except RooftrussError as error:
+        print(error, file=sys.stderr)
+        return WRONG_INPUT
+    except BrokenPipeError:  # the reader of stdout (head, less) has gone
+        sys.stderr.close()
+        return DONE
+    except KeyboardInterrupt:
+        print("stopped", file=sys.stderr)
+        return WRONG_INPUT
+
+
+class _Parser(argparse.ArgumentParser):
+    """Arguments with messages in our manner: an unknown command names the nearest."""
+
+    def error(self, message: str) -> NoReturn:
+        if "invalid choice" in message and self.prog == "rooftruss":
+            word = message.split("'")[1]
+            message = f"there is no command {word!r}; {nearest(word, COMMANDS)}"
+        self.exit(WRONG_INPUT, f"{self.prog}: {message}\n{self.format_usage()}")
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = _Parser(prog="rooftruss", description="Roof trusses from an enquiry to a quote workbook.")
+    parser.add_argument("--version", action="version", version=f"rooftruss {__version__}")
+    commands = parser.add_subparsers(dest="command", required=True, metavar="command", parser_class=_Parser)
+    for name, (text, add, run) in COMMANDS.items():
+        command = commands.add_parser(name, help=text, description=text)
+        add(command)
+        command.set_defaults(run=run)
+    return parser
+
+
+def _job_argument(command: argparse.ArgumentParser) -> None:
+    command.add_argument("job", type=Path, help="job file (TOML)")
+
+
+def _quote_arguments(command: argparse.ArgumentParser) -> None:
+    _job_argument(command)
+    command.add_argument("-o", "--output", type=Path, help="workbook to write; default: the job's name with .xlsx, here")
+
+
+def _quote(given: argparse.Namespace) -> int:
+    from rooftruss.output.terminal import print_cautions, print_quote, progress
+    from rooftruss.output.workbook.book import write_workbook
+    from rooftruss.run import run_file
+
+    path = given.output or Path(given.job.name).with_suffix(".xlsx")
+    if path.suffix.lower() != ".xlsx":
+        raise OutputError(f"{path}: a workbook needs a name that ends in .xlsx")
+    if path.exists() and path.resolve() == given.job.resolve():
+        raise OutputError(f"{path} is the job file itself; give the workbook another name")
+    result = run_file(given.job, progress)
+    write_workbook(result.job, result.designs, path)
+    print_quote(result.job, result.designs)
+    print(f"written: {path}", file=sys.stderr)
+    print_cautions()
+    return DONE if result.passes else NOT_MET
+
+
+def _size_arguments(command: argparse.ArgumentParser) -> None:
+    command.add_argument("--like", required=True, type=Path, metavar="JOB", help="job file for everything not given here")
+    command.add_argument("--mark", help="truss of the job to start from; default: the first")
+    for key, example in LIKE_KEYS:
+        command.add_argument(f"--{key.replace('_', '-')}", dest=key, metavar=example.strip('"'), help=f"for example {example}")
+
+
+def _size(given: argparse.Namespace) -> int:
+    from rooftruss.basis.jobform import read_job, with_overrides
+    from rooftruss.output.terminal import print_cautions, print_design
+    from rooftruss.run import run_job
+
+    changes = {key: getattr(given, key) for key, _ in LIKE_KEYS}
+    job = with_overrides(read_job(given.like), given.mark, changes)
+    result = run_job(job)
+    for design in result.designs:
+        print_design(job, design)
+    print_cautions()
+    return DONE if result.passes else NOT_MET
+
+
+def _compare_arguments(command: argparse.ArgumentParser) -> None:
+    _job_argument(command)
+    command.add_argument("--mark", help="truss whose roof is compared; default: the first")
+
+
+def _compare(given: argparse.Namespace) -> int:
+    from rooftruss.basis.jobform import read_job, with_overrides
+    from rooftruss.design.compare import compare_shapes
+    from rooftruss.output.terminal import print_cautions, print_comparison
+
+    job = with_overrides(read_job(given.job), given.mark, {})
+    rows = compare_shapes(job, job.trusses[0])
+    print_comparison(job, rows)
+    print_cautions()
+    return DONE if any(row.design and row.design.passes for row in rows) else NOT_MET
+
+
+def _envelope_arguments(command: argparse.ArgumentParser) -> None:
+    _job_argument(command)
+    command.add_argument("--json", metavar="FILE", help="result file to write ('-' is stdout), in place of the tables")
+
+
+def _envelope(given: argparse.Namespace) -> int:
+    from rooftruss.output.terminal import print_cautions, print_envelope, progress
+    from rooftruss.run import run_file
+
+    result = run_file(given.job, progress)
+    if given.json:
+        from rooftruss.output.result import write_result
+
+        write_result(result.job, result.designs, given.json)
+    else:
+        for design in result.designs:
+            print_envelope(result.job, design)
+    print_cautions()
+    return DONE if result.passes else NOT_MET
+
+
+def _explain_arguments(command: argparse.ArgumentParser) -> None:
+    _job_argument(command)
+    command.add_argument("mark", help="truss, for example T1")
+    command.add_argument("member", help="member or bearing, for example 'top 1' or 'bearing A'")
+    command.add_argument("--combination", metavar="N", help="number or name of a combination; default: the governing one")
+
+
+def _explain(given: argparse.Namespace) -> int:
+    from rooftruss.output.explain_grids import explanation
+    from rooftruss.output.terminal import print_cautions, print_grid
+
+    job, design = _design(given.job, given.mark)
+    heading, grid = explanation(design, given.member, given.combination)
+    print(heading)
+    print_grid(grid, job.units)
+    print_cautions()
+    return DONE
+
+
+def _design(path: Path, mark: str):  # type: ignore[no-untyped-def]
+    """The job and the design of one truss of it."""
+    from rooftruss.basis.jobform import read_job
+    from rooftruss.run import design_truss
+
+    job = read_job(path)
+    found = [spec for spec in job.trusses if spec.mark == mark]
+    if not found:
+        raise JobError(f"{job.source}: there is no truss {mark!r}; {nearest(mark, [s.mark for s in job.trusses])}")
+    return job, design_truss(job, found[0])
+
+
+def _no_arguments(command: argparse.ArgumentParser) -> None:
+    pass
+
+
+def _shapes(given: argparse.Namespace) -> int:
+    from rooftruss.output.catalogue_grids import shapes_grid
+
+    return _print(shapes_grid())
+
+
+def _schemes_arguments(command: argparse.ArgumentParser) -> None:
+    command.add_argument("name", nargs="?", help="one scheme, to see its combinations")
+    command.add_argument("--job", type=Path, help="job file: also count the combinations the scheme makes for each truss")
+
+
+def _schemes(given: argparse.Namespace) -> int:
+    from rooftruss.basis.schemes import load_scheme
+    from rooftruss.output.catalogue_grids import scheme_grid, schemes_grid
+
+    if given.name is None:
+        return _print(schemes_grid())
+    folder = given.job.parent if given.job else Path()
+    _print(scheme_grid(load_scheme(given.name, folder)))
+    return _count_combinations(given.job, given.name) if given.job else DONE
+
+
+def _count_combinations(path: Path, scheme: str) -> int:
+    from dataclasses import replace
+
+    from rooftruss.basis.jobform import read_job
+    from rooftruss.design.stages import combinations_of
+
+    job = replace(read_job(path), scheme=scheme)
+    for spec in job.trusses:
+        made = combinations_of(job, spec)
+        strength = int(made.strength.sum())
+        print(f"{job.source} {spec.mark}: {strength} strength and {len(made.names) - strength} deflection combinations")
+    return DONE
+
+
+def _grades_arguments(command: argparse.ArgumentParser) -> None:
+    command.add_argument("words", nargs="*", help="only grades whose name or species holds these words")
+    _units_argument(command)
+
+
+def _units_argument(command: argparse.ArgumentParser) -> None:
+    command.add_argument("--units", choices=("US", "metric"), default="US", help="units of the values (default: US)")
+
+
+def _grades(given: argparse.Namespace) -> int:
+    from rooftruss.basis.grades import grades
+    from rooftruss.output.catalogue_grids import grades_grid
+
+    words = [w.lower() for w in given.words]
+    found = [g for g in grades() if all(w in f"{g.name} {g.species} {g.family}".lower() for w in words)]
+    if not found:
+        raise JobError(f"no grade holds {' '.join(given.words)!r}; `rooftruss grades` lists them all")
+    for family in dict.fromkeys(g.family for g in found):
+        _print(grades_grid([g for g in found if g.family == family]), given.units)
+    return DONE
+
+
+def _sections(given: argparse.Namespace) -> int:
+    from rooftruss.basis.sections import sections
+    from rooftruss.output.catalogue_grids import sections_grid
+
+    return _print(sections_grid(sections()), given.units)
+
+
+def _print(grid, units: str = "US") -> int:  # type: ignore[no-untyped-def]
+    from rooftruss.output.terminal import print_grid
+
+    print_grid(grid, units)
+    return DONE
+
+
+def _new_arguments(command: argparse.ArgumentParser) -> None:
+    command.add_argument("file", type=Path, help="job form to write (.toml); an existing file is left as it is")
+
+
+def _new(given: argparse.Namespace) -> int:
+    from rooftruss.basis.newjob import new_job_text
+
+    if given.file.suffix.lower() != ".toml":
+        raise OutputError(f"{given.file}: a job form needs a name that ends in .toml")
+    try:
+        with given.file.open("x", encoding="utf-8") as file:
+            file.write(new_job_text())
+    except FileExistsError:
+        raise OutputError(f"{given.file} exists already; choose another name") from None
+    except OSError as error:
+        raise OutputError(f"{given.file} cannot be written: {error.strerror}") from None
+    print(f"written: {given.file}; fill it in, then: rooftruss quote {given.file}", file=sys.stderr)
+    return DONE
+
+
+Command = tuple[str, Callable[[argparse.ArgumentParser], None], Callable[[argparse.Namespace], int]]
+COMMANDS: dict[str, Command] = {
+    "quote": ("size every truss of a job and write the workbook", _quote_arguments, _quote),
+    "size": ("size one truss, everything not given taken from a job", _size_arguments, _size),
+    "compare": ("every shape of the catalogue for one roof", _compare_arguments, _compare),
+    "envelope": ("governing effects of every member, or the result file", _envelope_arguments, _envelope),
+    "explain": ("the check of one member, clause by clause", _explain_arguments, _explain),
+    "shapes": ("the shapes of the catalogue", _no_arguments, _shapes),
+    "schemes": ("the combination schemes, or the combinations of one", _schemes_arguments, _schemes),
+    "grades": ("the grades and their reference values", _grades_arguments, _grades),
+    "sections": ("the sections and their properties", _units_argument, _sections),
+    "new": ("a fresh job form", _new_arguments, _new),
+}

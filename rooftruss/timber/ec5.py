@@ -1,0 +1,182 @@
+"""Timber by EN 1995-1-1:2004+A1:2008+A2:2014, solid and glued laminated softwood."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.basis.grades import Grade
+from rooftruss.basis.sections import Section
+from rooftruss.errors import JobError
+from rooftruss.timber import ec5_tables as tables
+from rooftruss.timber.check import Array, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.ec5_check import check_members
+from rooftruss.timber.ec5_explain import explain_bearing, explain_member
+from rooftruss.timber.ec5_formulas import contact_length, final_factors, size_factor
+
+NAME = "EN 1995-1-1"
+SERVICE_CLASSES = (1, 2, 3)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Ec5:
+    """EN 1995-1-1 under the service conditions of a job."""
+
+    service_class: int
+    load_sharing: bool | None  # None: by the conditions of 6.6
+    national_choices: str
+
+    @property
+    def name(self) -> str:
+        """Name in the register."""
+        return NAME
+
+    @property
+    def notes(self) -> tuple[str, ...]:
+        """Choices that belong among the printed assumptions."""
+        return (
+            "the largest axial force and the largest moment of a member are taken together (EN 1995-1-1, 6.2.3, 6.3.2)",
+            "moment constant between lateral restraints, the least favourable row of EN 1995-1-1, Table 6.1",
+            "k_c,90 = 1.0 over the bearings: the load enters at the heel (EN 1995-1-1, 6.1.5)",
+            "effective length in the plane is the length between panel points (EN 1995-1-1, 9.2.1)",
+            f"gamma_M, k_cr and the limits of deflection: {self.national_choices} values (EN 1995-1-1, 2.4.1, 6.1.7, 7.2)",
+        )
+
+    def properties(self, grade: Grade, section: Section) -> dict[str, float]:
+        """Characteristic values and what depends on the size [Pa, -] of a grade; E is E_0,mean, density rho_mean.
+
+        Raises JobError for a grade of another family or without a needed value.
+        """
+        if grade.family != "EN":
+            raise JobError(f"grade {grade.name!r} is for {grade.family}, the scheme checks by {NAME}")
+        row = dict(grade.values_for(section))
+        found = tables.strengths(row)
+        product = tables.product(str(row.get("product", "")))
+        crack = tables.national(self.national_choices, product.name, self.service_class)
+        shape = {"size": product.size, "power": product.power, "most": product.most}
+        G_05 = row.get("G_05", np.nan)
+        return found | {
+            "E": found["E_0_mean"],
+            "density": found["rho_mean"],
+            "G_05": G_05 if isinstance(G_05, float) else np.nan,
+            "k_h,m": float(size_factor(section.depth, **shape)),
+            "k_h,t": float(size_factor(max(section.depth, section.breadth), **shape)),
+            "beta_c": product.beta_c,
+            "k_m": product.k_m,
+            "gamma_M": crack.gamma_M,
+            "k_cr": crack.factor(found["f_v_k"], section.depth),
+        }
+
+    def scale(self, members: Members, durations: Durations) -> tuple[Array, NDArray[np.intp]]:
+        """gamma_M/k_mod (..., d, m) of each distinct duration, and which of them each combination has (k,)."""
+        distinct, index = np.unique(np.array(durations.names, dtype=str), return_inverse=True)
+        factors = [tables.modification_factor(str(name), self.service_class) for name in distinct]
+        k_mod = np.array([factor for factor, _ in factors])
+        basic = np.array([applies for _, applies in factors])
+        gamma_M = members.properties["gamma_M"][..., None, :]
+        return np.where(basic[:, None], gamma_M, 1.0) / k_mod[:, None], index
+
+    def check(self, members: Members, demand: Demand, durations: Durations) -> Checks:
+        """Worst utilisation (..., k, m) of every member under every combination; EN 1995-1-1, chapter 6."""
+        return check_members(members, demand, *self.scale(members, durations))
+
+    def bearing(self, reaction: Array, members: Members, length: Array, durations: Durations) -> Array:
+        """Utilisation (..., k, s) across the grain; EN 1995-1-1, 6.1.5. Uplift gives 0."""
+        scale, index = self.scale(members, durations)
+        resistance = self._bearing_strength(members) * members.breadth * members.plies * self._contact(length)
+        return np.maximum(reaction, 0.0) * np.take(scale, index, axis=-2) / resistance[..., None, :]
+
+    def _bearing_strength(self, members: Members) -> Array:
+        return tables.bearing_rule()[1] * members.properties["f_c_90_k"]
+
+    def _contact(self, length: Array) -> Array:
+        return contact_length(length, addition=tables.bearing_rule()[0])
+
+    def explain(
+        self, members: Members, demand: Demand, durations: Durations, member: int, combination: int
+    ) -> tuple[Step, ...]:
+        """The check of one member of an unbatched truss, line by line; its last step is the utilisation of `check`."""
+        return explain_member(
+            members, demand, self._duration(members, durations, member, combination), member, combination
+        )
+
+    def explain_bearing(
+        self,
+        reaction: Array,
+        members: Members,
+        length: Array,
+        durations: Durations,
+        support: int,
+        combination: int,
+    ) -> tuple[Step, ...]:
+        """The bearing check of one support of an unbatched truss, line by line."""
+        bearing_length = float(np.broadcast_to(length, members.breadth.shape)[support])
+        duration = self._duration(members, durations, support, combination)
+        force = float(reaction[combination, support])
+        return explain_bearing(members, force, bearing_length, duration, support)
+
+    def _duration(
+        self, members: Members, durations: Durations, member: int, combination: int
+    ) -> tuple[str, int, float, float]:
+        """(name, service class, k_mod, gamma_M) for one member under one combination."""
+        name = durations.names[combination]
+        k_mod, basic = tables.modification_factor(name, self.service_class)
+        gamma_M = float(np.ravel(members.properties["gamma_M"])[member]) if basic else 1.0
+        return name, self.service_class, k_mod, gamma_M
+
+    def shares_load(self, *, role: str, sheathed: bool, quantity: int, spacing: float) -> bool:
+        """Whether k_sys applies; EN 1995-1-1, 6.6. The job may set it for all chords or for none; webs never share."""
+        if role == "web":
+            return False
+        if self.load_sharing is not None:
+            return self.load_sharing
+        _, least_number, spacing_up_to = tables.system_strength()
+        return sheathed and quantity >= least_number and spacing <= spacing_up_to * (1 + 1e-9)
+
+    def creep(self) -> Creep:
+        """Creep under lasting load, k_def; EN 1995-1-1, 3.1.4 and Table 3.2."""
+        k_def = tables.creep_factor(self.service_class)
+        text = f"k_def = {k_def:g}, service class {self.service_class}: what lasts deflects {1 + k_def:g} times as far"
+        return Creep(coefficient=k_def, clause="EN 1995-1-1 Table 3.2", text=text)
+
+    def service_factors(
+        self,
+        factors: Array,
+        *,
+        actions: tuple[str, ...],
+        kinds: tuple[str, ...],
+        lasting: Mapping[str, float] | None = None,
+    ) -> Array:
+        """Factors (k, c) of characteristic combinations, with creep in those of the kind "final"; 2.2.3(5).
+
+        lasting: psi_2 by action; without it the recommended ones for sites up to 1000 m and a loft of category A.
+        """
+        share = [tables.lasting_share(a) if lasting is None else lasting[a] for a in actions]
+        final = final_factors(factors, np.array(share, dtype=float), k_def=self.creep().coefficient)
+        return np.where(np.array([kind == "final" for kind in kinds])[:, None], final, factors)
+
+    def deflection_ratio(self, ceiling: str, kind: str) -> float:
+        """Length over the largest deflection [-], kinds "instantaneous" and "final"; EN 1995-1-1, Table 7.2."""
+        return tables.deflection_ratio(ceiling, kind)
+
+
+def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
+    """EN 1995-1-1 with the keys service_class (1, 2, 3), load_sharing ("auto", true, false) and national_choices.
+
+    The last two may be left out: "auto", "recommended". Other keys of [timber] are not the standard's. Raises JobError
+    naming the key that is missing or wrong, OutOfScopeError for a country whose values are not at hand.
+    """
+    service_class = options.get("service_class")
+    if isinstance(service_class, bool) or service_class not in SERVICE_CLASSES:
+        raise JobError(f"[timber] service_class: {service_class!r} must be 1, 2 or 3 ({name}, 2.3.1.3)")
+    sharing = options.get("load_sharing", "auto")
+    if sharing != "auto" and not isinstance(sharing, bool):
+        raise JobError(f"[timber] load_sharing: {sharing!r} must be 'auto', true or false")
+    country = str(options.get("national_choices", "recommended"))
+    tables.national(country, "solid timber", int(service_class))
+    return Ec5(
+        service_class=int(service_class),
+        load_sharing=None if sharing == "auto" else sharing,
+        national_choices=country,
+    )

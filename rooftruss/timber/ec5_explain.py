@@ -1,0 +1,270 @@
+"""One check by EN 1995-1-1 line by line: enough for a checking engineer without the program.
+
+It evaluates the published formulas in their own letters, independently of the inner loop of ec5_check, and ends in
+the same utilisation.
+"""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+
+from rooftruss.timber import ec5_check as rules
+from rooftruss.timber import ec5_formulas as ec5
+from rooftruss.timber.check import Array, Demand, Members, Step
+from rooftruss.timber.ec5_resistance import Lateral, Resistances, resistances
+from rooftruss.timber.ec5_tables import bearing_rule
+
+CODE = "EN 1995-1-1"
+Duration = tuple[str, int, float, float]  # name, service class, k_mod, gamma_M
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Case:
+    """One member under one combination: demands [N, N m], section, and design strengths [Pa], all plain numbers."""
+
+    member: int
+    tension: float
+    compression: float
+    positive: float
+    negative: float
+    shear: float
+    k_mod: float
+    gamma_M: float
+    r: Resistances
+
+    @property
+    def moment(self) -> float:
+        return max(self.positive, self.negative)
+
+    def of(self, values: Array) -> float:
+        """Number of this member in an array (m,)."""
+        return _at(values, self.member)
+
+    def design(self, strength: Array) -> float:
+        """Design strength of a characteristic one that already holds k_sys."""
+        return float(ec5.design_strength(self.of(strength), k_mod=self.k_mod, gamma_M=self.gamma_M, k_sys=1.0))
+
+
+def explain_member(
+    members: Members, demand: Demand, duration: Duration, member: int, combination: int
+) -> tuple[Step, ...]:
+    """Every demand, factor, design strength and ratio of one member of an unbatched truss, and its utilisation."""
+    r = resistances(members)
+    least_force = rules.NEGLIGIBLE * _at(r.area * r.f_c, member)
+    least_moment = rules.NEGLIGIBLE * _at(r.modulus * r.f_m, member)
+
+    def given(values: Array, least: float = 0.0) -> float:
+        value = float(values[combination, member])
+        return value if value > least else 0.0
+
+    case = _Case(
+        member=member,
+        tension=given(demand.tension, least_force),
+        compression=given(demand.compression, least_force),
+        positive=given(demand.moment_positive, least_moment),
+        negative=given(demand.moment_negative, least_moment),
+        shear=given(demand.shear),
+        k_mod=duration[2],
+        gamma_M=duration[3],
+        r=r,
+    )
+    ratios = list(_ratios(case))
+    value, governing = max(((s.value, rules.RULES[k]) for k, s in ratios), key=lambda found: found[0])
+    last = Step(
+        symbol="utilisation",
+        value=value,
+        kind="factor",
+        clause=f"{CODE} {governing.clause}",
+        text=f"utilisation, governed by {governing.name}; 1.00 is the limit",
+    )
+    return (
+        *_sizes(case, members),
+        *_demands(case),
+        *_factors(duration),
+        *_values(case, members),
+        *(s for _, s in ratios),
+        last,
+    )
+
+
+def explain_bearing(
+    members: Members, force: float, length: float, duration: Duration, support: int
+) -> tuple[Step, ...]:
+    """Compression across the grain of the chord `support` of `members` on its wall plate; EN 1995-1-1, 6.1.5."""
+    clause = f"{CODE} 6.1.5"
+    addition, k_c_90 = bearing_rule()
+    breadth = _at(members.breadth * members.plies, support)
+    l_ef = float(ec5.contact_length(length, addition=addition))
+    f_k = _at(members.properties["f_c_90_k"], support)
+    f_d = float(ec5.design_strength(f_k, k_mod=duration[2], gamma_M=duration[3], k_sys=1.0))
+    sigma = max(force, 0.0) / (breadth * l_ef)
+    text = f"of l = {length * 1e3:.0f} mm, longer by {addition * 1e3:.0f} mm on the side away from the end"
+    return (
+        Step(symbol="F_c,90,d", value=force, kind="force", clause="analysis", text="reaction, upwards on the truss"),
+        Step(symbol="l_ef", value=l_ef, kind="size", clause=f"{clause}(1)", text=text),
+        Step(symbol="b", value=breadth, kind="size", clause="job", text="breadth of all plies"),
+        *_factors(duration),
+        _stress("f_c,90,k", f_k, "grade", "characteristic strength across the grain"),
+        _stress("f_c,90,d", f_d, f"{CODE} eq. (2.14)", "k_mod f_c,90,k / gamma_M"),
+        _factor("k_c,90", k_c_90, f"{clause}(2)", "the load enters at the heel"),
+        _stress("sigma_c,90,d", sigma, f"{clause}, eq. (6.4)", "F_c,90,d / (b l_ef)"),
+        _factor("utilisation", sigma / (k_c_90 * f_d), f"{clause}, eq. (6.3)", "sigma_c,90,d / (k_c,90 f_c,90,d)"),
+    )
+
+
+def _sizes(case: _Case, members: Members) -> Iterator[Step]:
+    for symbol, values, kind, text in (
+        ("b", members.breadth, "size", "breadth of one ply"),
+        ("h", members.depth, "size", "depth"),
+        ("plies", members.plies, "ratio", "plies"),
+        ("l_ef,y", members.le_strong, "length", "effective length in the plane of the truss"),
+        ("l_ef,z", members.le_weak, "length", "effective length across the plane, 0 where held throughout"),
+    ):
+        yield Step(symbol=symbol, value=case.of(values), kind=kind, clause="job", text=text)
+    yield Step(symbol="A", value=case.of(case.r.area), kind="area", clause="b h", text="area of all plies")
+    yield Step(
+        symbol="W_y", value=case.of(case.r.modulus), kind="section modulus", clause="b h^2/6", text="of all plies"
+    )
+
+
+def _demands(case: _Case) -> Iterator[Step]:
+    for symbol, value, kind, text in (
+        ("N_t,d", case.tension, "force", "largest tension"),
+        ("N_c,d", case.compression, "force", "largest compression"),
+        ("M_y,d+", case.positive, "moment", "largest sagging moment, upper edge compressed"),
+        ("M_y,d-", case.negative, "moment", "largest hogging moment, lower edge compressed"),
+        ("V_d", case.shear, "force", "largest shear"),
+    ):
+        yield Step(symbol=symbol, value=value, kind=kind, clause="analysis", text=text)
+
+
+def _factors(duration: Duration) -> Iterator[Step]:
+    name, service_class, k_mod, gamma_M = duration
+    yield _factor("k_mod", k_mod, f"{CODE} Table 3.1", f"shortest load: {name}; service class {service_class}")
+    yield _factor("gamma_M", gamma_M, f"{CODE} Table 2.3", "partial factor of the material")
+
+
+def _values(case: _Case, members: Members) -> Iterator[Step]:
+    """Strengths and stability factors of what this member has to carry."""
+    p, r = members.properties, case.r
+    yield _factor("k_sys", case.of(r.k_sys), f"{CODE} 6.6", "system strength, 1 without load sharing")
+    if case.tension:
+        yield _stress("f_t,0,k", case.of(p["f_t_0_k"]), "grade", "characteristic tensile strength")
+        yield _factor("k_h,t", case.of(p["k_h,t"]), f"{CODE} 3.2(3), 3.3(3)", "size factor of the larger side")
+        yield _stress("f_t,0,d", case.design(r.f_t), f"{CODE} eq. (2.14)", "k_sys k_h k_mod f_t,0,k / gamma_M")
+    if case.compression:
+        yield from _column_values(case, members)
+    if case.moment:
+        yield _stress("f_m,k", case.of(p["f_m_k"]), "grade", "characteristic bending strength")
+        yield _factor("k_h,m", case.of(p["k_h,m"]), f"{CODE} 3.2(3), 3.3(3)", "size factor of the depth")
+        yield _stress("f_m,d", case.design(r.f_m), f"{CODE} eq. (2.14)", "k_sys k_h k_mod f_m,k / gamma_M")
+        for sign, moment, lateral in _signs(case):
+            if moment:
+                yield from _lateral_values(
+                    case, sign, members.lu_positive if sign == "+" else members.lu_negative, lateral
+                )
+    if case.shear:
+        yield _stress("f_v,k", case.of(p["f_v_k"]), "grade", "characteristic shear strength")
+        yield _factor("k_cr", case.of(r.k_cr), f"{CODE} 6.1.7(2)", "cracks, b_ef = k_cr b")
+        yield _stress("f_v,d", case.design(r.f_v), f"{CODE} eq. (2.14)", "k_sys k_mod f_v,k / gamma_M")
+
+
+def _column_values(case: _Case, members: Members) -> Iterator[Step]:
+    p, r = members.properties, case.r
+    yield _stress("f_c,0,k", case.of(p["f_c_0_k"]), "grade", "characteristic compressive strength")
+    yield _stress("f_c,0,d", case.design(r.f_c), f"{CODE} eq. (2.14)", "k_sys k_mod f_c,0,k / gamma_M")
+    yield _stress("E_0,05", case.of(p["E_0_05"]), "grade", "fifth percentile of the modulus")
+    yield _factor("beta_c", case.of(p["beta_c"]), f"{CODE} eq. (6.29)", "straightness")
+    for axis, slender, k_c, eq, plane in (
+        ("y", r.lambda_rel_y, r.k_c_y, ("6.21", "6.25"), "in the plane of the truss"),
+        ("z", r.lambda_rel_z, r.k_c_z, ("6.22", "6.26"), "across it, one ply"),
+    ):
+        yield _factor(f"lambda_rel,{axis}", case.of(slender), f"{CODE} eq. ({eq[0]})", f"relative slenderness {plane}")
+        yield _factor(f"k_c,{axis}", case.of(k_c), f"{CODE} eq. ({eq[1]})", "instability factor")
+
+
+def _lateral_values(case: _Case, sign: str, l_u: Array, lateral: Lateral) -> Iterator[Step]:
+    edge = "upper" if sign == "+" else "lower"
+    text = f"distance between restraints of the {edge} edge, 0 where held throughout"
+    yield Step(symbol=f"l{sign}", value=case.of(l_u), kind="length", clause="job", text=text)
+    if case.of(l_u):
+        length = case.of(lateral.l_ef)
+        yield Step(
+            symbol=f"l_ef{sign}", value=length, kind="length", clause=f"{CODE} Table 6.1", text="effective length"
+        )
+        critical = case.of(lateral.sigma_m_crit)
+        yield _stress(f"sigma_m,crit{sign}", critical, f"{CODE} eq. (6.31), (6.32)", "critical bending stress")
+        yield _factor(
+            f"lambda_rel,m{sign}", case.of(lateral.lambda_rel_m), f"{CODE} eq. (6.30)", "relative slenderness"
+        )
+    yield _factor(f"k_crit{sign}", case.of(lateral.k_crit), f"{CODE} eq. (6.34)", "lateral torsional buckling")
+
+
+def _signs(case: _Case) -> tuple[tuple[str, float, Lateral], ...]:
+    return (("+", case.positive, case.r.positive), ("-", case.negative, case.r.negative))
+
+
+def _ratios(case: _Case) -> Iterator[tuple[int, Step]]:
+    """Every rule that applies, in the order of ec5_check.RULES: (rule, left side)."""
+    r, area = case.r, case.of(case.r.area)
+    sigma_t, sigma_c, sigma_m = case.tension / area, case.compression / area, case.moment / case.of(r.modulus)
+    t, m = sigma_t / case.design(r.f_t), sigma_m / case.design(r.f_m)
+    yield _ratio(rules.TENSION, "sigma_t,0,d/f_t,0,d", t, _shown("sigma_t,0,d", sigma_t))
+    if case.compression:
+        c = sigma_c / case.design(r.f_c)
+        yield _ratio(rules.COMPRESSION, "sigma_c,0,d/f_c,0,d", c, _shown("sigma_c,0,d", sigma_c))
+    if case.moment:
+        yield _ratio(rules.BENDING, "sigma_m,y,d/f_m,y,d", m, _shown("sigma_m,y,d", sigma_m))
+        for sign, moment, lateral in _signs(case):
+            value = moment / (case.of(r.modulus) * case.of(lateral.k_crit) * case.design(r.f_m))
+            if moment:
+                yield _ratio(rules.TORSION, f"sigma_m,d{sign}/(k_crit f_m,d)", value, "with its own k_crit")
+    if case.moment and case.tension:
+        value = float(ec5.bending_and_tension(t, m))
+        yield _ratio(rules.BENDING_TENSION, "sigma_t/f_t + sigma_m,y/f_m,y", value, "left side of eq. (6.17)")
+    if case.compression:
+        yield from _compression_ratios(case, c, m)
+    if case.shear:
+        tau = float(ec5.shear_stress(case.shear, area, 1.0, k_cr=case.of(r.k_cr)))
+        yield _ratio(rules.SHEAR, "tau_d/f_v,d", tau / case.design(r.f_v), _shown("tau_d", tau))
+
+
+def _compression_ratios(case: _Case, c: float, m: float) -> Iterator[tuple[int, Step]]:
+    """6.2.4 or 6.3.2, and 6.3.3(6), from c = sigma_c/f_c and m = sigma_m,y/f_m,y."""
+    r, k_c_y, k_c_z = case.r, case.of(case.r.k_c_y), case.of(case.r.k_c_z)
+    if case.of(r.stocky):
+        value = float(ec5.bending_and_compression(c, m))
+        yield _ratio(rules.BENDING_COMPRESSION, "(sigma_c/f_c)^2 + sigma_m,y/f_m,y", value, "left side of eq. (6.19)")
+    else:
+        value = float(ec5.column_in_plane(c, k_c_y, m))
+        yield _ratio(rules.IN_PLANE, "sigma_c/(k_c,y f_c) + sigma_m,y/f_m,y", value, "left side of eq. (6.23)")
+        value = float(ec5.column_across(c, k_c_z, m, k_m=case.of(r.k_m)))
+        yield _ratio(rules.ACROSS, "sigma_c/(k_c,z f_c) + k_m sigma_m,y/f_m,y", value, "left side of eq. (6.24)")
+    if case.moment:
+        torsion = max(moment / (case.of(r.modulus) * case.of(v.k_crit)) for _, moment, v in _signs(case))
+        value = float(ec5.torsion_and_compression(c, k_c_z, torsion / case.design(r.f_m), 1.0))
+        symbol = "(sigma_m,d/(k_crit f_m,d))^2 + sigma_c,0,d/(k_c,z f_c,0,d)"
+        yield _ratio(rules.TORSION_COMPRESSION, symbol, value, "left side of eq. (6.35), the worse sign of the moment")
+
+
+def _ratio(rule: int, symbol: str, value: float, text: str) -> tuple[int, Step]:
+    return rule, _factor(symbol, value, f"{CODE} {rules.RULES[rule].clause}", text)
+
+
+def _stress(symbol: str, value: float, clause: str, text: str) -> Step:
+    return Step(symbol=symbol, value=value, kind="stress", clause=clause, text=text)
+
+
+def _factor(symbol: str, value: float, clause: str, text: str) -> Step:
+    return Step(symbol=symbol, value=value, kind="factor", clause=clause, text=text)
+
+
+def _shown(symbol: str, stress: float) -> str:
+    return f"{symbol} = {stress / 1e6:.4g} N/mm2"
+
+
+def _at(values: Array, member: int) -> float:
+    """Number of one member in an array (m,) or (1,)."""
+    last = np.ravel(values)
+    return float(last[member if last.size > 1 else 0])
