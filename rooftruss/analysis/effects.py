@@ -100,19 +100,17 @@ def combined_extremes(effects: UnitEffects, factors: Array) -> Extremes:
     batch = effects.values.shape[:-2]
     unit = effects.values.reshape(-1, *effects.values.shape[-2:])
     run = np.broadcast_to(effects.run, (*batch, effects.run.shape[-1])).reshape(len(unit), -1)
-    out = np.empty((5, len(unit), effects.members, len(factors)))
+    out = np.empty((5, len(unit), len(factors), effects.members))
     step = max(1, BLOCK // (len(effects.member_of) * len(factors)))
     for start in range(0, len(unit), step):
         rows = slice(start, start + step)
         _block_extremes(unit[rows], run[rows], effects.member_of, np.ascontiguousarray(factors.T), out[:, rows])
-    shape = (*batch, effects.members, len(factors))
-    return Extremes(
-        **{f.name: np.swapaxes(array.reshape(shape), -1, -2) for f, array in zip(fields(Extremes), out, strict=True)}
-    )
+    shape = (*batch, len(factors), effects.members)
+    return Extremes(**{f.name: array.reshape(shape) for f, array in zip(fields(Extremes), out, strict=True)})
 
 
 def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors: Array, out: Array) -> None:
-    """Write the five extremes (5, b, m, k) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k)."""
+    """Write the five extremes (5, b, k, m) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k)."""
     count = len(member_of)
     values = np.matmul(np.swapaxes(unit, 1, 2), factors)
     m0, m1, load, n0, n1 = (values[:, i * count : (i + 1) * count] for i in range(5))
@@ -135,11 +133,13 @@ def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors
 
 
 def _over_members(ufunc: np.ufunc, values: Array, member_of: tuple[int, ...], out: Array) -> None:
-    """Extreme over the segments (b, s, k) of each member (b, m, k)."""
+    """Extreme over the segments (b, s, k) of each member, written the other way round (b, k, m)."""
     first, rest = first_segments(member_of)
-    out[...] = values[:, first] if rest else values
-    for s in rest:
-        ufunc(out[:, member_of[s]], values[:, s], out=out[:, member_of[s]])
+    if rest:
+        for s in reversed(rest):  # from the last segment back to the first, which gathers all of its member
+            ufunc(values[:, s - 1], values[:, s], out=values[:, s - 1])
+        values = values[:, first]
+    out[...] = np.swapaxes(values, 1, 2)
 
 
 def mid_deflections(truss: Truss, cases: LoadCases, effects: UnitEffects, solution: Solution, ei: Array) -> Array:

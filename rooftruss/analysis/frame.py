@@ -53,7 +53,7 @@ def solve(truss: Truss, stiffness_axial: Array, stiffness_bending: Array, cases:
     at_ends = np.stack([movement[..., column] for column in number.of_member.T])
     forces = _end_forces(made, _rotate(at_ends, direction, back=False), ea, ei, length)
     forces -= on_member
-    reactions = _reactions(number, made, forces, direction, nodal)
+    reactions = _reactions(made, forces, direction, nodal)
     return Solution(
         displacements=movement[..., number.of_node].reshape(*batch, -1, len(made.nodes), 2),
         end_forces=np.moveaxis(forces.reshape(6, *batch, *forces.shape[2:]), 0, -1),
@@ -125,7 +125,11 @@ def _rotate(values: Array, direction: Array, *, back: bool) -> Array:
 
 def _to_nodes(number: Freedoms, at_ends: Array) -> Array:
     """Sum of member-end values over the movements (b, c, total + 1)."""
-    return np.concatenate(list(at_ends), axis=-1) @ number.incidence
+    sums = np.zeros((number.total + 1, *at_ends.shape[1:3]))
+    for member, movements in enumerate(number.of_member):
+        for row, movement in enumerate(movements):
+            sums[movement] += at_ends[row, ..., member]
+    return np.moveaxis(sums, 0, -1)
 
 
 def _stiffness(topology: Topology, ea: Array, ei: Array, length: Array, direction: Array) -> Array:
@@ -238,12 +242,19 @@ def _end_forces(topology: Topology, local: Array, ea: Array, ei: Array, length: 
     return out
 
 
-def _reactions(number: Freedoms, topology: Topology, forces: Array, direction: Array, nodal: Array) -> Array:
+def _reactions(topology: Topology, forces: Array, direction: Array, nodal: Array) -> Array:
     """Forces of the supports on the truss (b, c, support, 2); zero in a direction that is not held."""
-    total = _to_nodes(number, _rotate(forces, direction, back=True))
-    nodes = [s.node for s in topology.supports]
-    held = np.array([[s.horizontal, s.vertical] for s in topology.supports], dtype=float)
-    return (total[..., number.of_node[nodes]] - nodal[..., nodes, :]) * held
+    out = np.empty((*forces.shape[1:3], len(topology.supports), 2))
+    for k, support in enumerate(topology.supports):
+        out[..., k, :] = -nodal[..., support.node, :]
+        for member, ends in enumerate(topology.members):
+            for node, (x, y, _) in ((ends.start, START), (ends.end, END)):
+                if node == support.node:
+                    cos, sin = direction[:, None, member, 0], direction[:, None, member, 1]
+                    out[..., k, 0] += cos * forces[x, ..., member] - sin * forces[y, ..., member]
+                    out[..., k, 1] += sin * forces[x, ..., member] + cos * forces[y, ..., member]
+        out[..., k, :] *= (support.horizontal, support.vertical)
+    return out
 
 
 def pin_jointed(topology: Topology) -> Topology:

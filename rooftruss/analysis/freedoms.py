@@ -35,7 +35,6 @@ class Freedoms:
     free: int
     total: int
     label: tuple[tuple[int, int], ...]
-    incidence: Array  # 0/1 (6 m, total + 1): adds member-end values, the six of all members in turn, to movements
 
 
 @cache
@@ -53,16 +52,12 @@ def freedoms(topology: Topology) -> Freedoms:
         + [number[m.end, 0], number[m.end, 1], none if m.pinned_end else number[m.end, 2]]
         for m in topology.members
     ]
-    of_member = np.array(rows)
-    incidence = np.zeros((of_member.size, none + 1))
-    incidence[np.arange(of_member.size), of_member.T.ravel()] = 1.0
     return Freedoms(
-        of_member=of_member,
+        of_member=np.array(rows),
         of_node=np.array([[number[n, 0], number[n, 1]] for n in range(len(topology.nodes))]),
         free=len(label) - len(held),
         total=none,
         label=tuple(label),
-        incidence=incidence,
     )
 
 

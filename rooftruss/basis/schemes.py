@@ -106,7 +106,6 @@ def schemes() -> list[str]:
     return sorted(path.stem for path in (data_folder("tables") / "schemes").glob("*.toml"))
 
 
-@cache
 def load_scheme(name: str, base_folder: Path = Path()) -> Scheme:
     """Scheme by its name in tables/schemes, or by the path (ending in .toml) of a file of the user's own.
 
@@ -117,6 +116,11 @@ def load_scheme(name: str, base_folder: Path = Path()) -> Scheme:
         return _read(base_folder / name)
     if name not in schemes():
         raise JobError(f"there is no scheme {name!r}; {nearest(name, schemes())}, or the path of a .toml file")
+    return _shipped(name)
+
+
+@cache
+def _shipped(name: str) -> Scheme:
     return _read(data_folder("tables") / "schemes" / f"{name}.toml")
 
 

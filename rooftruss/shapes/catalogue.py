@@ -33,10 +33,16 @@ def panel_count(shape: Shape, slope_length: float, asked: int | None) -> int:
             offered = ", ".join(map(str, shape.panel_counts))
             raise JobError(f"panels: {asked} top-chord panels; {shape.name} trusses are built with {offered}")
         return asked
-    rule = read_table("shapes/panel_length").where(quantity="top chord panel")
-    longest = cast(float, rule["longest"]) * (1 + cast(float, rule["tolerance"]))
+    longest = longest_panel()
     enough = [n for n in shape.panel_counts if slope_length / (n / 2) <= longest]
     return enough[0] if enough else shape.panel_counts[-1]
+
+
+@cache
+def longest_panel() -> float:
+    """Longest top-chord panel that the default panel count may give [m]."""
+    rule = read_table("shapes/panel_length").where(quantity="top chord panel")
+    return cast(float, rule["longest"]) * (1 + cast(float, rule["tolerance"]))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -2,6 +2,7 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from math import hypot
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,7 +12,6 @@ from rooftruss.errors import JobError
 from rooftruss.shapes.catalogue import Layout, find_shape, panel_count, place
 from rooftruss.shapes.outline import Outline
 from rooftruss.shapes.truss import Truss
-from rooftruss.shapes.webbing import Webbing
 
 Array = NDArray[np.float64]
 LEAST_HEEL = 0.05  # a raised heel lower than this leaves no room for its post [m]; below, the chords meet directly
@@ -74,19 +74,19 @@ def layout_of(spec: TrussSpec) -> Layout:
     """Panel count, tails, heel and splices of one truss. Raises JobError naming the key that does not fit."""
     shape = find_shape(spec.shape)
     run = (spec.span - spec.bearing) / 2
-    slope = float(np.hypot(1.0, spec.pitch))
+    slope = hypot(1.0, spec.pitch)
     panels = panel_count(shape, run * slope, spec.panels)
-    webbing = shape.webbing(panels)
+    top, bottom = shape.panel_points(panels)
     tail = spec.overhang + spec.bearing / 2 if spec.overhang > 0 else 0.0
     stock = spec.timber.longest_stock
-    bottom_slope = float(np.hypot(1.0, bottom_pitch_of(spec)))
+    bottom_slope = hypot(1.0, bottom_pitch_of(spec))
     return Layout(
         shape=shape.name,
         panels=panels,
         tails=spec.overhang > 0,
         raised_heel=spec.heel_height is not None,
-        top_splices=_top_splices(webbing, 2 * run, slope, tail, stock),
-        bottom_splices=_bottom_splices(webbing, 2 * run, bottom_slope, stock, split=shape.sloping_bottom),
+        top_splices=_top_splices(top, 2 * run, slope, tail, stock),
+        bottom_splices=_bottom_splices(bottom, 2 * run, bottom_slope, stock, split=shape.sloping_bottom),
     )
 
 
@@ -110,19 +110,21 @@ def _greedy(places: Sequence[float], stock: float) -> list[int]:
     return cuts
 
 
-def _top_splices(webbing: Webbing, span: float, slope: float, tail: float, stock: float) -> tuple[int, ...]:
+def _top_splices(points: Sequence[float], span: float, slope: float, tail: float, stock: float) -> tuple[int, ...]:
     """Panel points of the top chord that are splices, the same on both slopes; counted from the peak down."""
-    peak = (len(webbing.top) - 1) // 2
-    places = [(0.5 - float(f)) * span * slope for f in reversed(webbing.top[: peak + 1])]
+    peak = (len(points) - 1) // 2
+    if (span / 2 + tail) * slope <= stock:
+        return ()
+    places = [(0.5 - f) * span * slope for f in reversed(points[: peak + 1])]
     places[-1] += tail * slope
     left = [peak - cut for cut in _greedy(places, stock)]
     return tuple(sorted(left + [2 * peak - k for k in left]))
 
 
-def _bottom_splices(webbing: Webbing, span: float, slope: float, stock: float, *, split: bool) -> tuple[int, ...]:
+def _bottom_splices(points: Sequence[float], span: float, slope: float, stock: float, *, split: bool) -> tuple[int, ...]:
     """Panel points of the bottom chord that are splices, symmetric; the fewest that the stock allows."""
-    last = len(webbing.bottom) - 1
-    places = [float(f) * span * slope for f in webbing.bottom]
+    last = len(points) - 1
+    places = [f * span * slope for f in points]
     if not split and places[-1] <= stock + 1e-9:
         return ()
     found: list[tuple[int, ...]] = []

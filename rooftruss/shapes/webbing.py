@@ -3,6 +3,7 @@
 from collections.abc import Callable
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import cache
 
 Point = tuple[str, int]  # ("top", 2): panel point 2 of the top chord from the left; the heels are bottom 0 and the last
 
@@ -70,6 +71,16 @@ class Shape:
     panel_counts: tuple[int, ...]  # numbers of top-chord panels it can have, fewest first
     webbing: Callable[[int], Webbing]
     sloping_bottom: bool = False
+
+    def panel_points(self, panels: int) -> tuple[tuple[float, ...], tuple[float, ...]]:
+        """Places of the panel points of the top and the bottom chord, in shares of the span."""
+        return _floats(self.webbing, panels)
+
+
+@cache
+def _floats(webbing: Callable[[int], Webbing], panels: int) -> tuple[tuple[float, ...], tuple[float, ...]]:
+    made = webbing(panels)
+    return tuple(map(float, made.top)), tuple(map(float, made.bottom))
 
 
 SHAPES = {

@@ -40,7 +40,7 @@ class Ec5:
             "moment constant between lateral restraints, the least favourable row of EN 1995-1-1, Table 6.1",
             "k_c,90 = 1.0 over the bearings: the load enters at the heel (EN 1995-1-1, 6.1.5)",
             "effective length in the plane is the length between panel points (EN 1995-1-1, 9.2.1)",
-            f"gamma_M, k_cr and the limits of deflection: {self.national_choices} values (EN 1995-1-1, 2.4.1, 6.1.7, 7.2)",
+            f"gamma_M and k_cr: {self.national_choices} values (EN 1995-1-1, 2.4.1 and 6.1.7)",
         )
 
     def properties(self, grade: Grade, section: Section) -> dict[str, float]:
@@ -170,13 +170,18 @@ def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
     service_class = options.get("service_class")
     if isinstance(service_class, bool) or service_class not in SERVICE_CLASSES:
         raise JobError(f"[timber] service_class: {service_class!r} must be 1, 2 or 3 ({name}, 2.3.1.3)")
-    sharing = options.get("load_sharing", "auto")
-    if sharing != "auto" and not isinstance(sharing, bool):
-        raise JobError(f"[timber] load_sharing: {sharing!r} must be 'auto', true or false")
     country = str(options.get("national_choices", "recommended"))
     tables.national(country, "solid timber", int(service_class))
     return Ec5(
         service_class=int(service_class),
-        load_sharing=None if sharing == "auto" else sharing,
+        load_sharing=_sharing(options.get("load_sharing", "auto")),
         national_choices=country,
     )
+
+
+def _sharing(given: object) -> bool | None:
+    if given == "auto":
+        return None
+    if not isinstance(given, bool):
+        raise JobError(f"[timber] load_sharing: {given!r} must be 'auto', true or false")
+    return given

@@ -64,7 +64,7 @@ class _Worst:
 
 
 def check_members(members: Members, demand: Demand, scale: Array, index: NDArray[np.intp]) -> Checks:
-    """Worst utilisation (..., k, m). scale (..., d, m): gamma_M/k_mod per distinct duration; index (k,): which of them."""
+    """Worst utilisation (..., k, m) for gamma_M/k_mod (..., d, m) of the distinct durations; index (k,) picks one."""
     shape = demand.tension.shape
     unit = _unit_ratios(resistances(members), scale, shape[:-2])
     utilisation, rule = np.zeros(shape), np.zeros(shape, np.int8)

@@ -46,9 +46,9 @@ def column_factor(lambda_rel: ArrayLike, *, beta_c: ArrayLike) -> Array:
 
 
 def effective_beam_length(l_u: ArrayLike, h: ArrayLike, *, ratio: float, addition: float) -> Array:
-    """Effective length l_ef [m] for lateral torsion, `addition` times h longer for load on the compressed edge; Table 6.1.
+    """Effective length l_ef [m] for lateral torsional buckling; EN 1995-1-1, Table 6.1.
 
-    0 where the compressed edge is held throughout (l_u = 0).
+    `addition` times h longer than ratio l_u for load on the compressed edge. 0 where that edge is held throughout.
 
     >>> float(effective_beam_length(3.0, 0.195, ratio=0.9, addition=2.0).round(3))
     3.09

@@ -60,15 +60,29 @@ def test_a_howe_truss_under_an_apex_load_works_only_in_its_chords():
     assert ("bottom 1", "bottom 2") in found.collinear
 
 
-UPRIGHT = "Joint A: only this joint is held sideways and "
+UNLOADED = "and no load acts on the joint, so"
+SIDEWAYS = "Joint A: only this joint is held sideways and"
 RULES = [  # on a square of two posts, beam, sill and brace
-    ({"C": (0, -1)}, "corner", "Joint D: BD and CD meet at an angle and no load acts on the joint, so BD carries nothing."),
-    ({"C": (0, -1)}, "lone member", "Joint D (nothing in BD): CD is alone and no load acts on the joint, so CD carries nothing."),
+    ({"C": (0, -1)}, "corner", f"Joint D: BD and CD meet at an angle {UNLOADED} BD carries nothing."),
+    ({"C": (0, -1)}, "lone member", f"Joint D (nothing in BD): CD is alone {UNLOADED} CD carries nothing."),
     ({"D": (0, -1)}, "load in line", "Joint D: BD and the load lie in one line, so CD carries nothing."),
-    ({"D": (1, 0)}, "reaction in line", "Joint B: BD and the vertical reaction lie in one line and no load acts on the joint, so AB carries nothing."),
-    ({"D": (0, -1)}, "balance of the whole", UPRIGHT + "no load acts sideways, so its horizontal reaction is zero."),
-    ({"C": (1, -1), "D": (-1, 0)}, "balance of the whole", UPRIGHT + "the sideways loads cancel out, so its horizontal reaction is zero."),
-]  # fmt: skip
+    (
+        {"C": (0, -1)},
+        "reaction in line",
+        "Joint A (nothing in the horizontal reaction): "
+        f"AC and the vertical reaction lie in one line {UNLOADED} AB carries nothing.",
+    ),
+    (
+        {"D": (0, -1)},
+        "balance of the whole",
+        f"{SIDEWAYS} no load acts sideways, so its horizontal reaction is zero.",
+    ),
+    (
+        {"C": (1, -1), "D": (-1, 0)},
+        "balance of the whole",
+        f"{SIDEWAYS} the sideways loads cancel out, so its horizontal reaction is zero.",
+    ),
+]
 SQUARE = framed(
     {"A": (0.0, 0.0), "B": (4.0, 0.0), "C": (0.0, 3.0), "D": (4.0, 3.0)},
     [("AB", "A", "B"), ("AC", "A", "C"), ("BD", "B", "D"), ("CD", "C", "D"), ("BC", "B", "C")],

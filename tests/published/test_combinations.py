@@ -223,11 +223,12 @@ def test_cases_of_one_action_exclude_each_other():
     assert np.all((found.factors[:, roof] > 0).sum(axis=1) <= 1)  # roof live load or snow
 
 
-def test_dead_load_that_resists_is_the_least():
-    found = combine(GABLE, load_scheme("asce7-22-asd"), {})
+@pytest.mark.parametrize(("scheme", "factor"), [(n, 0.6 if n.endswith("asd") else 0.9) for n in PRINTED])
+def test_dead_load_that_resists_is_the_least(scheme, factor):
+    found = combine(GABLE, load_scheme(scheme), {})
+    assert f"{factor}D(least)" in found.names
     for name, row in zip(found.names, found.factors, strict=True):
-        least = name.startswith("0.6D")
-        expected = (0, 0.6, 0.6) if least else (row[0], 0, row[0])
+        expected = (0, factor, factor) if name.startswith(f"{factor}D") else (row[0], 0, row[0])
         assert tuple(row[:3]) == expected
     alike = combine([*DEAD, head("W", "a")], load_scheme("asce7-22-asd"), {})
     assert "0.6D + 0.6W(a)" in alike.names
@@ -241,6 +242,8 @@ def test_point_loads_join_every_alternative_of_their_action():
     factors = dict(zip(found.names, found.factors.tolist(), strict=True))
     assert factors["D + L"] == [1, 0, 0, 0, 0, 1, 1]  # a point load without an area load of its action
     assert factors["0.6D"] == [0.6, 0, 0, 0, 0, 0, 0.6]
+    only_a_point = combine([*DEAD, head("S", "points", "with")], load_scheme("asce7-16-asd"), {})
+    assert "D + 0.75S" in only_a_point.names  # it accompanies too, though it is no balanced snow
 
 
 def test_durations_follow_the_shortest_load():
@@ -358,6 +361,13 @@ def test_a_scheme_file_of_the_users_own(tmp_path):
     assert found.factors.tolist() == [[1.35, 0.0], [1.35, 0.75]]
     with pytest.raises(JobError, match=r"no scheme file other\.toml; give its path from the folder of the job file"):
         load_scheme("other.toml", tmp_path)
+
+
+def test_equal_factors_keep_the_smaller_time_effect(tmp_path):
+    more = OWN + '\ntime_effect = 1.0\n[[strength]]\nclause = "2"\nexpression = "1.35G"\ntime_effect = 0.6\n'
+    (tmp_path / "two.toml").write_text(more, "utf-8")
+    found = combine(DEAD, load_scheme("two.toml", tmp_path), {})
+    assert (found.names, found.clauses, found.time_effects.tolist()) == (("1.35G",), ("2",), [0.6])
 
 
 @pytest.mark.parametrize(

@@ -208,15 +208,13 @@ def test_beyond_the_euler_stress_the_check_fails_under_the_guard():
 
 
 def test_stability_across_the_plane_can_govern():
-    # NDS 2018 eq. 3.9-4: a slender chord with an unheld edge, light bending
-    chord = {"grade": "DF-L SS", "size": "2x6", "le_strong": 20, "le_weak": 70, "lu_positive": 70}
-    F_cE2, shown = (
-        0.822 * 690e3 / (70 / 1.5) ** 2,
-        steps(nds(), chord, {"N": -1400, "M": 7000}, durations("ten minutes")),
-    )
-    F_bE = 1.2 * 690e3 / ((1.63 * 70 + 3 * 5.5) * 5.5 / 1.5**2)
-    expected = 1400 / 8.25 / F_cE2 + (7000 / 7.5625 / F_bE) ** 2
-    assert shown["f_c/F_cE2 + (f_b+/F_bE)^2"] == pytest.approx(expected, rel=1e-4)
+    # By hand, NDS 2018 eq. 3.9-4: DF-L SS 2x8, 51 in across the plane, upper edge unheld for 206.6 in, wind
+    chord = {"grade": "DF-L SS", "size": "2x8", "le_strong": 20, "le_weak": 51, "lu_positive": 206.6}
+    row, lasting = {"N": -3600, "M": 1748}, durations("ten minutes")
+    F_cE2, F_bE = 0.822 * 690e3 / (51 / 1.5) ** 2, 1.2 * 690e3 / (1.84 * 206.6 * 7.25 / 1.5**2)
+    expected = 3600 / 10.875 / F_cE2 + (1748 / (1.5 * 7.25**2 / 6) / F_bE) ** 2
+    assert worst(nds(), chord, [row], lasting) == [(pytest.approx(expected, rel=1e-6), "3.9.2, eq. 3.9-4")]
+    assert steps(nds(), chord, row, lasting)["f_c/F_cE2 + (f_b+/F_bE)^2"] == pytest.approx(expected, rel=1e-6)
 
 
 def test_plies_carry_together_but_buckle_alone():

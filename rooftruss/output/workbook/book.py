@@ -5,10 +5,11 @@ from pathlib import Path
 
 from rooftruss.basis.job import Job
 from rooftruss.design.design import Design
+from rooftruss.output.numbering import numbering_of
 from rooftruss.output.workbook import pages
 from rooftruss.output.workbook.chart import PointSheet
 from rooftruss.output.workbook.saving import save
-from rooftruss.output.workbook.sheet import Page, sheet_name
+from rooftruss.output.workbook.sheet import Page, for_print, sheet_name
 from rooftruss.output.workbook.styles import Looks, plain
 
 FIRST, LAST = ("Quote",), ("Combinations", "Cases", "Geometry", "Assumptions", "Cautions")
@@ -26,15 +27,15 @@ def write_workbook(job: Job, designs: Sequence[Design], path: str | Path) -> Non
     for design in designs:
         marks.append(sheet_name(design.spec.mark, [*names, *marks]))
     page = {name: Page(book.create_sheet(name), looks, job.units) for name in (*FIRST, *marks, *LAST)}
+    numbering = numbering_of(designs)
     points = PointSheet(page["Geometry"])
-    points.page.line("Geometry", "title", 24)
-    points.page.line("Points of the drawings, on centre lines; x from the middle of the left bearing, y up from it.")
+    pages.points_page(points.page, job)
     pages.quote_page(page["Quote"], job, designs)
     for mark, design in zip(marks, designs, strict=True):
-        pages.truss_page(page[mark], points, job, design)
-    pages.combinations_page(page["Combinations"], job, designs)
-    pages.cases_page(page["Cases"], job, designs)
-    pages.points_page(points.page.sheet, job)
+        pages.truss_page(page[mark], points, job, design, numbering)
+    for_print(points.page, job, landscape=False, repeat="1:2", freeze="A3")
+    pages.combinations_page(page["Combinations"], job, designs, numbering)
+    pages.cases_page(page["Cases"], job, designs, numbering)
     pages.assumptions_page(page["Assumptions"], job, designs)
     pages.cautions_page(page["Cautions"], job)
     book.properties.title, book.properties.creator = plain(job.title), "rooftruss"

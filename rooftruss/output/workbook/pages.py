@@ -1,21 +1,13 @@
 """The sheets of the quote workbook, each written by one function."""
 
 from collections.abc import Sequence
-from typing import TYPE_CHECKING
 
 from rooftruss.basis.job import Job
 from rooftruss.design.design import Design
 from rooftruss.output.cautions import SHORT_CAUTIONS
-from rooftruss.output.job_grids import (
-    Shared,
-    assumptions_grid,
-    cautions_grid,
-    combinations_grid,
-    quote_grid,
-    sharing_cases,
-    sharing_combinations,
-    values_grid,
-)
+from rooftruss.output.case_grids import cases_grids
+from rooftruss.output.job_grids import assumptions_grid, cautions_grid, combinations_grid, quote_grid
+from rooftruss.output.numbering import Numbering
 from rooftruss.output.picture import picture
 from rooftruss.output.schedule import Grid, shown_grid
 from rooftruss.output.truss_grids import (
@@ -25,21 +17,22 @@ from rooftruss.output.truss_grids import (
     members_grid,
     named_combinations_grid,
     reactions_grid,
-    surfaces_grid,
 )
 from rooftruss.output.workbook.chart import PointSheet, elevation, frame_of
 from rooftruss.output.workbook.sheet import Page, for_print
 from rooftruss.units import shown
 
-if TYPE_CHECKING:
-    from openpyxl.worksheet.worksheet import Worksheet
-
-QUOTE_WIDTHS = (8, 6, 11, 7.5, 7, 8, 7, 15, 15, 15, 8, 8, 9, 9, 9, 9, 7, 14)
-TRUSS_WIDTHS = (12, 13, 10, 17, 9, 9, 6, 9, 6, 9, 6, 9, 6, 7, 6, 9, 33, 13, 9)
+QUOTE_WIDTHS = (8, 9, 12, 8, 7, 8.5, 9.5, 16, 16, 16, 8, 9, 9, 9, 9, 9, 8, 16)
+TRUSS_WIDTHS = (13, 14, 9, 17, 9, 9, 7, 12.5, 7, 9.5, 7, 9, 7, 11, 7, 11, 33, 22, 11)
 REACTION_SLOTS = (1, 2, 5, 6, 7, 8, 9, 10, 11, 14, 15, 16, 17)
 DEFLECTION_SLOTS = (1, 2, 6, 8, 14, 15, 16, 17)
-LOADING_SLOTS = (1, 2, 5, 6, 8, 10, 12, 14, 18)
+LOADING_SLOTS = (1, 2, 5, 6, 8, 10, 12, 14, 17)
 NAMED_SLOTS = (1, 2, 12, 17)
+FAILURES_SHOWN = 3  # of each truss on the quote
+SIGNS = (
+    "Tension, bending with tension in the lower edge, and movement up or to the right are positive. "
+    "Comb. is the number on the sheet Combinations, a dash where nothing acts."
+)
 TALLEST_DRAWING = 9.5  # cm, so that drawing and members stand on one page
 ROW_HEIGHT = 15 / 72 * 2.54  # cm, of a row as the spreadsheet makes it
 
@@ -57,18 +50,25 @@ def quote_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
     page.grid(grid, title="", wrap=(7, 8, 9, 17))
     page.row -= 1
     _totals(page, grid)
-    failed = [(d.spec.mark, text) for d in designs for text in d.failures]
-    if failed:
-        page.line("Not met", "section", 18)
-        for mark, text in failed[:12]:
-            page.paragraph(f"{mark}: {text}", len(QUOTE_WIDTHS), 170, "strong")
-        if len(failed) > 12:
-            page.line(f"and {len(failed) - 12} more, on the sheets of the trusses", "note")
-        page.row += 1
+    _not_met(page, designs)
     page.line("Before you use this quote", "section", 18)
     for text in SHORT_CAUTIONS:
         page.line(text, "strong")
-    for_print(page.sheet, job, landscape=True, freeze="B7")
+    for_print(page, job, landscape=True, freeze="B7")
+
+
+def _not_met(page: Page, designs: Sequence[Design]) -> None:
+    """The worst failures of each truss that has some."""
+    failed = [d for d in designs if not d.passes]
+    if not failed:
+        return
+    page.line("Not met", "section", 18)
+    for design in failed:
+        for text in (*design.notes, *design.failures[:FAILURES_SHOWN]):
+            page.line(f"{design.spec.mark}: {text}", "plain")
+        if len(design.failures) > FAILURES_SHOWN:
+            page.line(f"{design.spec.mark}: and {len(design.failures) - FAILURES_SHOWN} more, see its sheet", "plain")
+    page.row += 1
 
 
 def _totals(page: Page, grid: Grid) -> None:
@@ -82,22 +82,22 @@ def _totals(page: Page, grid: Grid) -> None:
     page.row += 2
 
 
-def truss_page(page: Page, points: PointSheet, job: Job, design: Design) -> None:
+def truss_page(page: Page, points: PointSheet, job: Job, design: Design, numbering: Numbering) -> None:
     """Everything about one truss: elevation, members, reactions, deflections, loading, combinations named."""
     page.widths(TRUSS_WIDTHS)
     page.line(f"Truss {design.spec.mark}", "title", 24)
     page.line(_facts(job, design), "strong")
-    page.line(_result(design), "strong" if design.passes else "fail")
+    page.paragraph(_result(design), "strong" if design.passes else "fail")
     _drawing(page, points, design)
-    page.grid(members_grid(design, idle_members(design)))
-    page.grid(reactions_grid(design), REACTION_SLOTS)
+    page.grid(members_grid(design, numbering, idle_members(design)))
+    page.grid(reactions_grid(design, numbering), REACTION_SLOTS)
     _break_before(page)
-    page.grid(deflections_grid(design), DEFLECTION_SLOTS)
-    page.grid(loading_grid(design), LOADING_SLOTS)
-    page.grid(named_combinations_grid(design), NAMED_SLOTS)
+    page.grid(deflections_grid(design, numbering), DEFLECTION_SLOTS)
+    page.grid(loading_grid(design, numbering), LOADING_SLOTS)
+    page.grid(named_combinations_grid(design, numbering), NAMED_SLOTS)
     page.row -= 1
-    page.line("Tension, bending with the lower edge in tension, and movement up or right are positive. Comb. is the number on the sheet Combinations.")
-    for_print(page.sheet, job, landscape=True, repeat="1:2", freeze="B3")
+    page.line(SIGNS)
+    for_print(page, job, landscape=True, repeat="1:2", freeze="B3")
 
 
 def _facts(job: Job, design: Design) -> str:
@@ -145,37 +145,29 @@ def _break_before(page: Page) -> None:
     page.sheet.row_breaks.append(Break(id=page.row - 1))
 
 
-def combinations_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
-    """All combinations, once for the trusses that share them."""
-    page.line("Combinations", "title", 24)
-    page.line("Cases are the numbers on the sheet Cases; a factor multiplies all cases beside it. Cases of one action exclude each other.")
-    groups = sharing_combinations(designs)
-    actions = 0
-    for group in groups:
-        grid = combinations_grid(group.first.run.combinations, group.first.run.cases.heads)
-        page.grid(grid, title=_heading(group, groups, "Combinations"))
-        actions = max(actions, sum(c.heading.endswith("factor") for c in grid.columns))
-        timed = any(c.heading == "Time effect" for c in grid.columns)
-    page.widths((5, 13, 56, 20, 14, *((8,) if groups and timed else ()), *(7.5, 9) * actions))
-    for_print(page.sheet, job, landscape=True, repeat="4:5" if len(groups) == 1 else "", freeze="A6" if len(groups) == 1 else "A3")
+def combinations_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbering) -> None:
+    """Every combination of the job once."""
+    grid = combinations_grid(numbering, designs)
+    wide = {"No.": 6, "Clause": 13, "Combination": 54, "Limit state": 22, "Load duration": 14, "Trusses": 14}
+    page.widths([wide.get(c.heading, 8 if c.kind == "factor" else 9) for c in grid.columns])
+    page.line(grid.title, "title", 24)
+    page.line("A factor multiplies the cases beside it, numbered as on the sheet Cases. Cases of one action exclude each other.")
+    page.row += 1
+    page.grid(grid, title="", long=True)
+    for_print(page, job, landscape=True, repeat="4:5", freeze="A6")
 
 
-def _heading(group: Shared, groups: Sequence[Shared], what: str) -> str:
-    return f"{what} of all trusses" if len(groups) == 1 else f"{what} of {group.marks}"
-
-
-def cases_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
-    """All load cases: the loads on the surfaces, and the values they come from with their clauses."""
-    page.widths((7, 40, 20, 34, 12, 16, 12))
+def cases_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbering) -> None:
+    """All load cases: the values they come from with their clauses, and the loads on the surfaces."""
+    grids = cases_grids(designs, numbering)
+    abreast = max((len(g.columns) - 5 for g in grids), default=1)
+    page.widths((7, 40, 30, 8, *(11,) * abreast, 36))
     page.line("Cases", "title", 24)
-    page.line("x runs from the middle of the left bearing. Pressures are before any factor.")
-    groups = sharing_cases(designs)
-    for group in groups:
-        page.grid(surfaces_grid(group.first), title=_heading(group, groups, "Loads on the surfaces"))
-        values = values_grid(group.first)
-        if values.rows:
-            page.grid(values, (1, 2, 3, 5, 6, 4), title=_heading(group, groups, "Values behind them"))
-    for_print(page.sheet, job, landscape=False, repeat="1:2", freeze="A3")
+    page.line("Characteristic loads, before any factor. Pressure towards the surface, or down, is positive.")
+    page.row += 1
+    for grid in grids:
+        page.grid(grid, title="", long=True)
+    for_print(page, job, landscape=True, repeat="4:5", freeze="A6")
 
 
 def words_page(page: Page, job: Job, grid: Grid, first: float) -> None:
@@ -183,17 +175,13 @@ def words_page(page: Page, job: Job, grid: Grid, first: float) -> None:
     page.widths((first, 100 - first))
     page.line(grid.title, "title", 24)
     page.row += 1
-    start = page.row
     page.grid(grid, title="", wrap=(0, 1))
-    for k, row in enumerate(grid.rows):
-        lines = max(-(-len(str(row[1])) // int(98 - first)), -(-len(str(row[0])) // int(first)))
-        page.sheet.row_dimensions[start + 2 + k].height = 13.5 * lines + 3
-    for_print(page.sheet, job, landscape=False, repeat=f"{start}:{start + 1}", freeze=f"A{start + 2}")
+    for_print(page, job, landscape=False, repeat="3:4", freeze="A5")
 
 
 def assumptions_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
     """What the job left open and what was taken for it; the model."""
-    words_page(page, job, assumptions_grid(job, designs), 24)
+    words_page(page, job, assumptions_grid(job, designs), 26)
 
 
 def cautions_page(page: Page, job: Job) -> None:
@@ -201,6 +189,8 @@ def cautions_page(page: Page, job: Job) -> None:
     words_page(page, job, cautions_grid(), 6)
 
 
-def points_page(sheet: "Worksheet", job: Job) -> None:
-    """Print settings of the sheet that holds the points of the drawings."""
-    for_print(sheet, job, landscape=False)
+def points_page(page: Page, job: Job) -> None:
+    """Head of the sheet that holds the points of the drawings."""
+    page.widths((12, 9, 9, 3, 12, 9, 9, 3, 14, 9, 9))
+    page.line("Geometry", "title", 24)
+    page.line("Points of the drawings, on centre lines; x from the middle of the left bearing, y up from it.")

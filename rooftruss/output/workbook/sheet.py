@@ -38,14 +38,21 @@ class Page:
     def __init__(self, sheet: "Worksheet", looks: Looks, units: str) -> None:
         self.sheet, self.looks, self.units = sheet, looks, units
         self.row = 1
+        self._widths: tuple[float, ...] = ()
         sheet.sheet_view.showGridLines = False
 
     def widths(self, widths: Sequence[float]) -> None:
         """Widths of the columns from A on, in characters."""
         from openpyxl.utils import get_column_letter
 
+        self._widths = tuple(widths)
         for k, width in enumerate(widths, start=1):
             self.sheet.column_dimensions[get_column_letter(k)].width = width
+
+    @property
+    def columns(self) -> int:
+        """Number of columns that have a width, those that are printed."""
+        return len(self._widths)
 
     def put(self, column: int, value: ShownCell, look: str = "body", number_format: str = "", align: str = "") -> None:
         """Write one cell of the current row; text stays text whatever it looks like."""
@@ -66,19 +73,21 @@ class Page:
             self.sheet.row_dimensions[self.row].height = height
         self.row += 1
 
-    def paragraph(self, text: str, columns: int, characters: int, look: str = "body") -> None:
-        """Text over several lines in merged cells, as high as it needs."""
-        self.sheet.merge_cells(start_row=self.row, end_row=self.row, start_column=1, end_column=columns)
+    def paragraph(self, text: str, look: str = "body") -> None:
+        """Text over the whole width, on as many lines as it needs."""
+        last = len(self._widths)
+        self.sheet.merge_cells(start_row=self.row, end_row=self.row, start_column=1, end_column=last)
         self.put(1, text, look, align="wrap")
-        self.sheet.row_dimensions[self.row].height = LINE_HEIGHT * -(-len(text) // characters) + 2
+        self._height([(text, sum(self._widths))])
         self.row += 1
 
     def grid(
-        self, grid: Grid, slots: Sequence[int] = (), *, title: str | None = None, wrap: Sequence[int] = (), fails: Emphasis | None = None
+        self, grid: Grid, slots: Sequence[int] = (), *, title: str | None = None, wrap: Sequence[int] = (), long: bool = False
     ) -> None:
         """A grid with its title and headings; `slots` are the sheet columns of its columns, A on when left out.
 
-        wrap: columns (of the grid, from 0) whose text may take several lines. `fails` says which rows stand out.
+        wrap: columns (of the grid, from 0) whose text may take several lines. A long grid has a line under every fifth
+        row only, and its empty cells are not written.
         """
         shown = shown_grid(grid, self.units)
         slots = slots or range(1, len(shown.columns) + 1)
@@ -86,36 +95,47 @@ class Page:
         if heading:
             self.line(heading, "section", 18)
         self._headings(shown.columns, slots)
-        self._rows(shown, slots, set(wrap), fails or _not_met(shown.columns))
+        self._rows(shown, slots, set(wrap), long=long)
         self.row += 1
 
     def _headings(self, columns: Sequence[ShownColumn], slots: Sequence[int]) -> None:
         place = dict(zip(slots, columns, strict=True))
-        for look, height in (("head", 28), ("unit", 12)):
+        double = any(len(c.heading) > self._widths[slot - 1] for slot, c in place.items())
+        for look, height in (("head", 28 if double else 15), ("unit", 12)):
             for slot in range(1, max(slots) + 1):
                 column = place.get(slot)
                 text = "" if column is None else column.heading if look == "head" else column.unit
-                self.put(slot, text, look, align=_align(column) if column else "")
+                self.put(slot, text or None, look, align=_align(column, slot) if column else "")
             self.sheet.row_dimensions[self.row].height = height
             self.row += 1
 
-    def _rows(self, shown: ShownGrid, slots: Sequence[int], wrap: set[int], fails: Emphasis) -> None:
-        aligned = [_align(c) for c in shown.columns]
+    def _rows(self, shown: ShownGrid, slots: Sequence[int], wrap: set[int], *, long: bool) -> None:
+        aligned = ["wrap" if k in wrap else _align(c, slot) for k, (c, slot) in enumerate(zip(shown.columns, slots, strict=True))]
         formats = [c.number_format for c in shown.columns]
-        filled = set(slots)
-        empty = [slot for slot in range(1, max(slots) + 1) if slot not in filled]
-        for row in shown.rows:
-            look = "fail" if fails(row) else "body"
+        fails = _not_met(shown.columns)
+        gaps = sorted(set(range(1, max(slots) + 1)) - set(slots))
+        for n, row in enumerate(shown.rows, start=1):
+            look = "fail" if fails(row) else "data" if long and n % 5 else "body"
             for k, (slot, cell) in enumerate(zip(slots, row, strict=True)):
-                align = "wrap" if k in wrap else "right" if cell == NOTHING else aligned[k]
-                self.put(slot, cell, look, formats[k], align)
-            for slot in empty:
+                if cell is not None or look != "data":
+                    self.put(slot, cell, look, formats[k], "right" if cell == NOTHING else aligned[k])
+            for slot in gaps if look != "data" else ():
                 self.put(slot, None, look)
+            self._height([(str(row[k]), self._widths[slots[k] - 1]) for k in wrap])
             self.row += 1
 
+    def _height(self, texts: Sequence[tuple[str, float]]) -> None:
+        """Make the current row high enough for texts in columns of these widths."""
+        lines = max((-(-len(text) // max(int(width - 1), 1)) for text, width in texts), default=1)
+        if lines > 1:
+            self.sheet.row_dimensions[self.row].height = LINE_HEIGHT * lines + 1
 
-def _align(column: ShownColumn) -> str:
-    return "right" if column.number_format else "left"
+
+def _align(column: ShownColumn, slot: int) -> str:
+    """Numbers right, but numbers that are names (in the first column) left as text is."""
+    if column.number_format and not (slot == 1 and column.number_format == "0"):
+        return "right"
+    return "left" if slot == 1 else "inset"
 
 
 def _not_met(columns: Sequence[ShownColumn]) -> Emphasis:
@@ -124,31 +144,39 @@ def _not_met(columns: Sequence[ShownColumn]) -> Emphasis:
     return lambda row: any(str(row[k]).startswith("NOT") for k in at)
 
 
-def for_print(
-    sheet: "Worksheet", job: Job, *, landscape: bool, repeat: str = "", freeze: str = ""
-) -> None:
-    """Paper, margins, running lines, repeated rows ("1:3") and frozen panes ("B4") of a sheet."""
+def for_print(page: Page, job: Job, *, landscape: bool, repeat: str = "", freeze: str = "") -> None:
+    """Paper, margins, running lines, repeated rows ("1:3"), frozen panes ("B4"); all columns fit the width of a page."""
+    from openpyxl.utils import get_column_letter
     from openpyxl.worksheet.properties import PageSetupProperties
 
+    sheet = page.sheet
     sheet.page_setup.paperSize = sheet.PAPERSIZE_LETTER if job.units == "US" else sheet.PAPERSIZE_A4
     sheet.page_setup.orientation = "landscape" if landscape else "portrait"
     sheet.page_setup.fitToWidth, sheet.page_setup.fitToHeight = 1, 0
     sheet.sheet_properties.pageSetUpPr = PageSetupProperties(fitToPage=True)
     margins = sheet.page_margins
     margins.left = margins.right = 0.5
-    margins.top, margins.bottom, margins.header, margins.footer = 0.75, 0.7, 0.35, 0.35
+    margins.top, margins.bottom, margins.header, margins.footer = 0.7, 0.65, 0.35, 0.35
     sheet.print_options.horizontalCentered = True
-    sheet.oddHeader.left.text = running(f"{job.number}  {job.title}".strip())
-    sheet.oddHeader.right.text = running(job.client)
-    sheet.oddFooter.left.text = "&A"
-    sheet.oddFooter.center.text = "A first estimate. Read the sheet Cautions."
-    sheet.oddFooter.right.text = "Page &P of &N"
-    for part in (sheet.oddHeader.left, sheet.oddHeader.right, sheet.oddFooter.left, sheet.oddFooter.center, sheet.oddFooter.right):
-        part.size = 8
+    sheet.print_area = f"A1:{get_column_letter(page.columns)}{max(page.row - 1, 1)}"
+    _running_lines(sheet, job)
     if repeat:
         sheet.print_title_rows = repeat
     if freeze:
         sheet.freeze_panes = freeze
+
+
+def _running_lines(sheet: "Worksheet", job: Job) -> None:
+    above, below = sheet.oddHeader, sheet.oddFooter
+    texts = {
+        above.left: running(f"{job.number}  {job.title}".strip()),
+        above.right: running(job.client),
+        below.left: "&A",
+        below.center: "A first estimate. Read the sheet Cautions.",
+        below.right: "Page &P of &N",
+    }
+    for part, text in texts.items():
+        part.text, part.size = text, 8
 
 
 def running(text: str) -> str:

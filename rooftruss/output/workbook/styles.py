@@ -14,14 +14,14 @@ LONGEST = 32_000  # characters of a cell; the file format ends at 32 767
 
 
 class Looks:
-    """Styles of one workbook by look: "title", "section", "head", "unit", "body", "strong", "fail", "note", "total"."""
+    """Styles of one workbook by look: "title", "section", "head", "unit", "body", "data", "plain", "strong", "fail", "note", "total"."""
 
     def __init__(self, book: "Workbook") -> None:
         self._sheet = book.active
         self._made: dict[tuple[str, str, str, bool], Any] = {}
 
     def style(self, look: str, number_format: str = "", align: str = "", *, quoted: bool = False) -> Any:
-        """The style of a look; `align` "left", "right", "center" or "wrap" (left, over several lines).
+        """The style of a look; `align` "left", "inset" (left, clear of a number before it), "right" or "wrap" (inset, on several lines).
 
         quoted marks text that a spreadsheet would take for a formula when it is typed again.
         """
@@ -53,11 +53,11 @@ class Looks:
             "fail": Border(bottom=hair),
         }
         cell.border = lines.get(look, Border())
-        wrap = align == "wrap" or look == "head"
         cell.alignment = Alignment(
-            horizontal="left" if align == "wrap" else align or None,
+            horizontal="left" if align in ("wrap", "inset") else align or None,
+            indent=1 if align in ("wrap", "inset") else 0,
             vertical="bottom" if look in ("head", "unit") else "top",
-            wrap_text=wrap or None,
+            wrap_text=align == "wrap" or look == "head" or None,
         )
         if number_format:
             cell.number_format = number_format
