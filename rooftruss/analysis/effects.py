@@ -1,10 +1,12 @@
 """Effects of each case along the members, and their exact extremes under every combination."""
 
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, fields
 
 import numpy as np
 from numpy.typing import NDArray
 
+from rooftruss.analysis.envelope import Envelope, Peak, peak, signed_peak
 from rooftruss.analysis.frame import Solution
 from rooftruss.loads.cases import LoadCases, first_segments, sum_segments
 from rooftruss.shapes.truss import Truss
@@ -91,32 +93,89 @@ class Extremes:
     shear: Array
 
 
+@dataclass(frozen=True, kw_only=True)
+class Demands:
+    """What each member has to resist under each combination, arrays (..., k, m), none negative [N, N m].
+
+    tension_least is the smallest tension along a member that is in tension throughout, else 0.
+    """
+
+    tension: Array
+    compression: Array
+    moment_positive: Array
+    moment_negative: Array
+    shear: Array
+    tension_least: Array
+
+
 def combined_extremes(effects: UnitEffects, factors: Array) -> Extremes:
     """Extremes along every member under the combinations `factors` (k, c).
 
     The moment of a segment is largest at an end or where its shear passes zero (the vertex of its parabola).
-    Worked in blocks of trusses that stay in the processor's cache, with the combinations last in memory.
     """
-    batch = effects.values.shape[:-2]
-    unit = effects.values.reshape(-1, *effects.values.shape[-2:])
-    run = np.broadcast_to(effects.run, (*batch, effects.run.shape[-1])).reshape(len(unit), -1)
-    out = np.empty((5, len(unit), len(factors), effects.members))
-    step = max(1, BLOCK // (len(effects.member_of) * len(factors)))
-    for start in range(0, len(unit), step):
-        rows = slice(start, start + step)
-        _block_extremes(unit[rows], run[rows], effects.member_of, np.ascontiguousarray(factors.T), out[:, rows])
+    batch, count = effects.values.shape[:-2], int(np.prod(effects.values.shape[:-2]))
+    out = np.empty((5, count, len(factors), effects.members))
+    for rows, found in _blocks(effects, factors):
+        for target, values in zip(out, found, strict=True):
+            target[rows] = np.swapaxes(values, 1, 2)
     shape = (*batch, len(factors), effects.members)
     return Extremes(**{f.name: array.reshape(shape) for f, array in zip(fields(Extremes), out, strict=True)})
 
 
-def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors: Array, out: Array) -> None:
-    """Write the five extremes (5, b, k, m) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k)."""
+def demands_and_envelope(effects: UnitEffects, factors: Array) -> tuple[Demands, Envelope]:
+    """Demands on every member under the strength combinations `factors` (k, c), and their envelope.
+
+    The same extremes as `combined_extremes`, split by sign, with the envelope taken while they are at hand.
+    """
+    batch, count = effects.values.shape[:-2], int(np.prod(effects.values.shape[:-2]))
+    out = np.empty((6, count, len(factors), effects.members))
+    peaks: list[tuple[Peak, ...]] = []
+    for rows, (axial_max, axial_min, moment_max, moment_min, shear) in _blocks(effects, factors):
+        parts = (
+            np.maximum(axial_max, 0.0),
+            np.maximum(-axial_min, 0.0),
+            np.maximum(moment_max, 0.0),
+            np.maximum(-moment_min, 0.0),
+            shear,
+            np.maximum(axial_min, 0.0),
+        )
+        for target, values in zip(out, parts, strict=True):
+            target[rows] = np.swapaxes(values, 1, 2)
+        peaks.append((peak(parts[0], -1), peak(parts[1], -1), signed_peak(parts[2], parts[3], -1), peak(shear, -1)))
+    shape = (*batch, len(factors), effects.members)
+    demands = Demands(**{f.name: array.reshape(shape) for f, array in zip(fields(Demands), out, strict=True)})
+    joined = (_joined(parts, (*batch, effects.members)) for parts in zip(*peaks, strict=True))
+    return demands, Envelope(**{f.name: found for f, found in zip(fields(Envelope), joined, strict=True)})
+
+
+def _joined(parts: Sequence[Peak], shape: tuple[int, ...]) -> Peak:
+    """Peaks of blocks as one."""
+    return Peak(
+        value=np.concatenate([p.value for p in parts]).reshape(shape),
+        combination=np.concatenate([p.combination for p in parts]).reshape(shape),
+    )
+
+
+def _blocks(effects: UnitEffects, factors: Array) -> Iterator[tuple[slice, tuple[Array, ...]]]:
+    """Extremes (b, m, k) of blocks of trusses small enough for the processor's cache, combinations last in memory."""
+    batch = effects.values.shape[:-2]
+    unit = effects.values.reshape(-1, *effects.values.shape[-2:])
+    run = np.broadcast_to(effects.run, (*batch, effects.run.shape[-1])).reshape(len(unit), -1)
+    columns = np.ascontiguousarray(factors.T)
+    step = max(1, BLOCK // (len(effects.member_of) * len(factors)))
+    for start in range(0, len(unit), step):
+        rows = slice(start, start + step)
+        yield rows, _block_extremes(unit[rows], run[rows], effects.member_of, columns)
+
+
+def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors: Array) -> tuple[Array, ...]:
+    """The five extremes (b, m, k) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k)."""
     count = len(member_of)
     values = np.matmul(np.swapaxes(unit, 1, 2), factors)
     m0, m1, load, n0, n1 = (values[:, i * count : (i + 1) * count] for i in range(5))
-    _over_members(np.maximum, np.maximum(n0, n1), member_of, out[0])
-    _over_members(np.minimum, np.minimum(n0, n1), member_of, out[1])
-    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > SLIVER)[..., None]
+    axial_max = _over_members(np.maximum, np.maximum(n0, n1), member_of)
+    axial_min = _over_members(np.minimum, np.minimum(n0, n1, out=n0), member_of)
+    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > 0)[..., None]
     shear_mean = (m1 - m0) * per_run
     half = load * (run / 2)[..., None]
     steady, change = np.abs(shear_mean), np.abs(half)
@@ -126,20 +185,23 @@ def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors
     bulge = np.divide(shear_mean, load, out=np.zeros_like(load), where=inside)
     bulge *= -0.5
     bulge += m0
-    _over_members(np.maximum, np.maximum(np.maximum(m0, m1), bulge), member_of, out[2])
-    _over_members(np.minimum, np.minimum(np.minimum(m0, m1), bulge), member_of, out[3])
-    steady += change
-    _over_members(np.maximum, steady, member_of, out[4])
+    high = np.maximum(m0, m1)
+    low = np.minimum(m0, m1, out=m0)
+    return (
+        axial_max,
+        axial_min,
+        _over_members(np.maximum, np.maximum(high, bulge, out=high), member_of),
+        _over_members(np.minimum, np.minimum(low, bulge, out=low), member_of),
+        _over_members(np.maximum, np.add(steady, change, out=steady), member_of),
+    )
 
 
-def _over_members(ufunc: np.ufunc, values: Array, member_of: tuple[int, ...], out: Array) -> None:
-    """Extreme over the segments (b, s, k) of each member, written the other way round (b, k, m)."""
+def _over_members(ufunc: np.ufunc, values: Array, member_of: tuple[int, ...]) -> Array:
+    """Extreme over the segments (b, s, k) of each member (b, m, k); `values` is used up."""
     first, rest = first_segments(member_of)
-    if rest:
-        for s in reversed(rest):  # from the last segment back to the first, which gathers all of its member
-            ufunc(values[:, s - 1], values[:, s], out=values[:, s - 1])
-        values = values[:, first]
-    out[...] = np.swapaxes(values, 1, 2)
+    for s in reversed(rest):  # from the last segment back to the first, which gathers all of its member
+        ufunc(values[:, s - 1], values[:, s], out=values[:, s - 1])
+    return values[:, first] if rest else values
 
 
 def mid_deflections(truss: Truss, cases: LoadCases, effects: UnitEffects, solution: Solution, ei: Array) -> Array:

@@ -5,15 +5,17 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.analysis.effects import Extremes
-
 Array = NDArray[np.float64]
 Numbers = NDArray[np.intp]
+TIE = 1e-9  # values this close to the largest count as equal: the first combination is named, whatever the last digit
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Peak:
-    """A governing value (...,) and the number of its combination among all combinations; -1 where nothing acts."""
+    """A governing value (...,) and the number of its combination; -1 where nothing acts.
+
+    Strength combinations come first among all, so the number among them is the number among all.
+    """
 
     value: Array
     combination: Numbers
@@ -38,42 +40,29 @@ class ReactionEnvelope:
     horizontal: Peak
 
 
-def peak(values: Array, numbers: Numbers, axis: int) -> Peak:
-    """Largest value over the combinations on `axis`; `numbers` are the combinations' numbers among all.
-
-    The first of equal values is taken, so that a mirrored case does not win by the last digit's rounding.
-    """
-    top = values.max(axis=axis, keepdims=True)
-    near = values >= top - 1e-9 * np.abs(top)
-    first = near.argmax(axis=axis)
-    best = np.take_along_axis(values, np.expand_dims(first, axis), axis).squeeze(axis)
-    return Peak(value=best, combination=np.where(best > 0, numbers[first], -1))
+def peak(values: Array, axis: int) -> Peak:
+    """Largest of values that are not negative, over the combinations on `axis`."""
+    values = np.moveaxis(values, axis, -1)
+    top = values.max(axis=-1)
+    first = (values >= (top * (1 - TIE))[..., None]).argmax(axis=-1)
+    return Peak(value=top, combination=np.where(top > 0, first, -1))
 
 
-def signed_peak(values: Array, numbers: Numbers, axis: int) -> Peak:
-    """Like `peak` for the largest magnitude; the value keeps its sign."""
-    found = peak(np.abs(values), numbers, axis)
-    place = np.searchsorted(numbers, np.maximum(found.combination, numbers[0]))
-    value = np.take_along_axis(values, np.expand_dims(place, axis), axis).squeeze(axis)
-    return Peak(value=value, combination=found.combination)
-
-
-def envelope_of(extremes: Extremes, numbers: Numbers) -> Envelope:
-    """Envelope of the extremes (..., k, m) of the combinations `numbers` (k,), ascending."""
-    larger = np.abs(extremes.moment_max) >= np.abs(extremes.moment_min)
-    moment = np.where(larger, extremes.moment_max, extremes.moment_min)
-    return Envelope(
-        tension=peak(np.maximum(extremes.axial_max, 0.0), numbers, -2),
-        compression=peak(np.maximum(-extremes.axial_min, 0.0), numbers, -2),
-        moment=signed_peak(moment, numbers, -2),
-        shear=peak(extremes.shear, numbers, -2),
+def signed_peak(high: Array, low: Array, axis: int) -> Peak:
+    """Largest magnitude among `high` (positive parts) and `low` (magnitudes of the negative parts), with its sign."""
+    up, down = peak(high, axis), peak(low, axis)
+    rises = up.value >= down.value
+    return Peak(
+        value=np.where(rises, up.value, -down.value),
+        combination=np.where(rises, up.combination, down.combination),
     )
 
 
-def reaction_envelope(reactions: Array, numbers: Numbers) -> ReactionEnvelope:
+def reaction_envelope(reactions: Array) -> ReactionEnvelope:
     """Envelope of support forces (..., k, support, 2) on the truss [N], up positive."""
+    sideways, up = reactions[..., 0], reactions[..., 1]
     return ReactionEnvelope(
-        down=peak(np.maximum(reactions[..., 1], 0.0), numbers, -2),
-        uplift=peak(np.maximum(-reactions[..., 1], 0.0), numbers, -2),
-        horizontal=signed_peak(reactions[..., 0], numbers, -2),
+        down=peak(np.maximum(up, 0.0), -2),
+        uplift=peak(np.maximum(-up, 0.0), -2),
+        horizontal=signed_peak(np.maximum(sideways, 0.0), np.maximum(-sideways, 0.0), -2),
     )

@@ -188,6 +188,7 @@ def _scatter(topology: Topology) -> tuple[NDArray[np.intp], ...]:
 
 def _factor_and_solve(topology: Topology, stiffness: Array, load: Array) -> Array:
     """Movements (b, c, free) under loads (b, c, total + 1)."""
+    require_stable(topology, stiffness[:1])  # rounding hides a mechanism from the solver; one truss of a batch tells
     right = np.swapaxes(load[..., : stiffness.shape[-1]], 1, 2)
     try:
         found = np.linalg.solve(stiffness, right)

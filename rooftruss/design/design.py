@@ -6,7 +6,7 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.analysis.envelope import Envelope, Peak, ReactionEnvelope, envelope_of, peak, reaction_envelope
+from rooftruss.analysis.envelope import Envelope, Peak, ReactionEnvelope, peak, reaction_envelope
 from rooftruss.basis.job import TrussSpec
 from rooftruss.design.serviceability import Deflections, deflections
 from rooftruss.design.stages import GROUPS, Option, Run
@@ -42,17 +42,16 @@ class Outcome:
 
 def outcome_of(run: Run) -> Outcome:
     """Envelopes and governing checks of a run."""
-    numbers = np.flatnonzero(run.combinations.strength)
-    utilisation = peak(run.checks.utilisation, numbers, -2)
-    row = np.searchsorted(numbers, np.maximum(utilisation.combination, 0))
+    utilisation = peak(run.checks.utilisation, -2)
+    row = np.maximum(utilisation.combination, 0)
     rule = np.take_along_axis(run.checks.rule, row[..., None, :], -2).squeeze(-2)
     solid = run.members.breadth * run.members.depth * run.members.plies * run.members.length
     return Outcome(
-        envelope=envelope_of(run.extremes, numbers),
-        reactions=reaction_envelope(run.reactions, numbers),
+        envelope=run.envelope,
+        reactions=reaction_envelope(run.reactions),
         utilisation=utilisation,
         rule=rule,
-        bearing=peak(run.bearing, numbers, -2),
+        bearing=peak(run.bearing, -2),
         deflection=deflections(run),
         volume=solid.sum(axis=-1),
         mass=(solid * run.members.properties["density"]).sum(axis=-1),

@@ -5,7 +5,7 @@ truss. Everything that is a name (members, cases, combinations) is shared.
 """
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, fields, replace
 from functools import cached_property
 from pathlib import Path
 from typing import cast
@@ -14,7 +14,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.analysis.combinations import CaseHead, Combinations, combine
-from rooftruss.analysis.effects import Extremes, UnitEffects, combined_extremes, unit_effects
+from rooftruss.analysis.effects import UnitEffects, demands_and_envelope, unit_effects
+from rooftruss.analysis.envelope import Envelope
 from rooftruss.analysis.frame import Solution, solve
 from rooftruss.basis.grades import Grade, find_grade
 from rooftruss.basis.job import Job, Restraint, TrussSpec
@@ -108,8 +109,8 @@ class Run:
     stiffness_bending: Array
     solution: Solution
     effects: UnitEffects
-    extremes: Extremes  # strength combinations
-    demand: Demand
+    demand: Demand  # under the strength combinations
+    envelope: Envelope
     checks: Checks
     reactions: Array  # (..., strength combination, support, 2) [N], on the truss, up positive
     bearing: Array  # utilisation (..., strength combination, support)
@@ -192,8 +193,8 @@ def run(family: Family, choice: Choice) -> Run:
     effects = unit_effects(truss, cases, solution)
     strength = np.flatnonzero(combinations.strength)
     factors = combinations.factors[strength]
-    extremes = combined_extremes(effects, factors)
-    demand = demand_of(extremes)
+    demands, envelope = demands_and_envelope(effects, factors)
+    demand = Demand(**{f.name: getattr(demands, f.name) for f in fields(demands)})
     durations = durations_of(combinations)
     reactions = _combined_reactions(factors, solution.reactions)
     return Run(
@@ -207,8 +208,8 @@ def run(family: Family, choice: Choice) -> Run:
         stiffness_bending=ei,
         solution=solution,
         effects=effects,
-        extremes=extremes,
         demand=demand,
+        envelope=envelope,
         checks=family.timber.check(members, demand, durations),
         reactions=reactions,
         bearing=family.timber.bearing(
@@ -230,18 +231,6 @@ def combinations_of(job: Job, spec: TrussSpec) -> Combinations:
 def case_heads(cases: LoadCases) -> list[CaseHead]:
     """What combinations need to know of the cases."""
     return [CaseHead(name=h.name, short=h.short, action=h.action, pattern=h.pattern) for h in cases.heads]
-
-
-def demand_of(extremes: Extremes) -> Demand:
-    """Demands on each member: the extremes split by sign."""
-    return Demand(
-        tension=np.maximum(extremes.axial_max, 0.0),
-        compression=np.maximum(-extremes.axial_min, 0.0),
-        moment_positive=np.maximum(extremes.moment_max, 0.0),
-        moment_negative=np.maximum(-extremes.moment_min, 0.0),
-        shear=extremes.shear,
-        tension_least=np.maximum(extremes.axial_min, 0.0),
-    )
 
 
 def durations_of(combinations: Combinations) -> Durations:

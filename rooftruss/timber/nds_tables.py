@@ -43,6 +43,7 @@ def table(edition: str, rule: str) -> Table:
     return read_table(f"timber/{read_table('timber/nds_editions').where(edition=edition, rule=rule)['file']}")
 
 
+@cache
 def load_duration_factor(duration: str, *, edition: str) -> float:
     """C_D [-] for the shortest load of a combination; NDS 2.3.2, Table 2.3.2. Raises JobError for an unknown name.
 
