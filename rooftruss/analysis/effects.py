@@ -6,9 +6,9 @@ from dataclasses import dataclass, fields
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.analysis.envelope import Envelope, Peak, peak, signed_peak
+from rooftruss.analysis.envelope import Envelope, Peak, larger_of_signs, peak
 from rooftruss.analysis.frame import Solution
-from rooftruss.loads.cases import LoadCases, first_segments, sum_segments
+from rooftruss.loads.cases import LoadCases, first_segments, further_segments, sum_segments
 from rooftruss.shapes.truss import Truss
 
 Array = NDArray[np.float64]
@@ -43,8 +43,8 @@ def unit_effects(truss: Truss, cases: LoadCases, solution: Solution) -> UnitEffe
     moment0, moment1, load, axial0, axial1 = (values[..., i * count : (i + 1) * count] for i in range(5))
     shear_step, moment_step = across * run, across * (run**2 / 2)
     load[...] = across
-    ends = solution.end_forces[..., member, :]
-    axial0[...], shear0, moment0[...] = -ends[..., 0], ends[..., 1], -ends[..., 2]
+    at_start = (solution.end_forces[..., k][..., member] for k in range(3))
+    axial0[...], shear0, moment0[...] = (sign * force for sign, force in zip((-1, 1, -1), at_start, strict=True))
     axial1[...] = axial0 - along * run
     moment1[...] = moment0 + shear0 * run + moment_step
     jumps = _jumps(truss, cases)
@@ -129,31 +129,32 @@ def demands_and_envelope(effects: UnitEffects, factors: Array) -> tuple[Demands,
     """
     batch, count = effects.values.shape[:-2], int(np.prod(effects.values.shape[:-2]))
     out = np.empty((6, count, len(factors), effects.members))
-    peaks: list[tuple[Peak, ...]] = []
-    for rows, (axial_max, axial_min, moment_max, moment_min, shear) in _blocks(effects, factors):
-        parts = (
-            np.maximum(axial_max, 0.0),
-            np.maximum(-axial_min, 0.0),
-            np.maximum(moment_max, 0.0),
-            np.maximum(-moment_min, 0.0),
-            shear,
-            np.maximum(axial_min, 0.0),
-        )
-        for target, values in zip(out, parts, strict=True):
-            target[rows] = np.swapaxes(values, 1, 2)
-        peaks.append((peak(parts[0], -1), peak(parts[1], -1), signed_peak(parts[2], parts[3], -1), peak(shear, -1)))
+    peaks = []
+    for rows, found in _blocks(effects, factors):
+        parts = _split_by_sign(*found)
+        out[:, rows] = np.swapaxes(parts, 2, 3)
+        peaks.append(peak(parts[:5], -1))
+    value = np.concatenate([p.value for p in peaks], axis=1).reshape(5, *batch, effects.members)
+    number = np.concatenate([p.combination for p in peaks], axis=1).reshape(value.shape)
+    tension, compression, high, low, shear = (Peak(value=v, combination=n) for v, n in zip(value, number, strict=True))
     shape = (*batch, len(factors), effects.members)
     demands = Demands(**{f.name: array.reshape(shape) for f, array in zip(fields(Demands), out, strict=True)})
-    joined = (_joined(parts, (*batch, effects.members)) for parts in zip(*peaks, strict=True))
-    return demands, Envelope(**{f.name: found for f, found in zip(fields(Envelope), joined, strict=True)})
-
-
-def _joined(parts: Sequence[Peak], shape: tuple[int, ...]) -> Peak:
-    """Peaks of blocks as one."""
-    return Peak(
-        value=np.concatenate([p.value for p in parts]).reshape(shape),
-        combination=np.concatenate([p.combination for p in parts]).reshape(shape),
+    return demands, Envelope(
+        tension=tension, compression=compression, moment=larger_of_signs(high, low), shear=shear
     )
+
+
+def _split_by_sign(axial_max: Array, axial_min: Array, moment_max: Array, moment_min: Array, shear: Array) -> Array:
+    """The six fields of Demands (6, b, m, k) from the five extremes (b, m, k)."""
+    parts = np.empty((6, *shear.shape))
+    np.maximum(axial_max, 0.0, out=parts[0])
+    np.negative(axial_min, out=parts[1])
+    np.maximum(moment_max, 0.0, out=parts[2])
+    np.negative(moment_min, out=parts[3])
+    parts[4] = shear
+    np.maximum(axial_min, 0.0, out=parts[5])
+    np.maximum(parts[1:4:2], 0.0, out=parts[1:4:2])
+    return parts
 
 
 def _blocks(effects: UnitEffects, factors: Array) -> Iterator[tuple[slice, tuple[Array, ...]]]:
@@ -175,7 +176,7 @@ def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors
     m0, m1, load, n0, n1 = (values[:, i * count : (i + 1) * count] for i in range(5))
     axial_max = _over_members(np.maximum, np.maximum(n0, n1), member_of)
     axial_min = _over_members(np.minimum, np.minimum(n0, n1, out=n0), member_of)
-    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > 0)[..., None]
+    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > SLIVER)[..., None]
     shear_mean = (m1 - m0) * per_run
     half = load * (run / 2)[..., None]
     steady, change = np.abs(shear_mean), np.abs(half)
@@ -197,11 +198,14 @@ def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors
 
 
 def _over_members(ufunc: np.ufunc, values: Array, member_of: tuple[int, ...]) -> Array:
-    """Extreme over the segments (b, s, k) of each member (b, m, k); `values` is used up."""
-    first, rest = first_segments(member_of)
-    for s in reversed(rest):  # from the last segment back to the first, which gathers all of its member
-        ufunc(values[:, s - 1], values[:, s], out=values[:, s - 1])
-    return values[:, first] if rest else values
+    """Extreme over the segments (b, s, k) of each member (b, m, k)."""
+    first, _ = first_segments(member_of)
+    if len(first) == len(member_of):
+        return values
+    out = values[:, first]
+    for members, segments in further_segments(member_of):
+        out[:, members] = ufunc(out[:, members], values[:, segments])
+    return out
 
 
 def mid_deflections(truss: Truss, cases: LoadCases, effects: UnitEffects, solution: Solution, ei: Array) -> Array:

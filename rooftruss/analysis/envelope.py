@@ -42,19 +42,19 @@ class ReactionEnvelope:
 
 def peak(values: Array, axis: int) -> Peak:
     """Largest of values that are not negative, over the combinations on `axis`."""
-    values = np.moveaxis(values, axis, -1)
+    # with the combinations last in memory the search is several times faster than the copy costs
+    values = np.ascontiguousarray(np.moveaxis(values, axis, -1))
     top = values.max(axis=-1)
     first = (values >= (top * (1 - TIE))[..., None]).argmax(axis=-1)
     return Peak(value=top, combination=np.where(top > 0, first, -1))
 
 
-def signed_peak(high: Array, low: Array, axis: int) -> Peak:
-    """Largest magnitude among `high` (positive parts) and `low` (magnitudes of the negative parts), with its sign."""
-    up, down = peak(high, axis), peak(low, axis)
-    rises = up.value >= down.value
+def larger_of_signs(high: Peak, low: Peak) -> Peak:
+    """The larger of a positive and the magnitude of a negative peak, with its sign."""
+    rises = high.value >= low.value
     return Peak(
-        value=np.where(rises, up.value, -down.value),
-        combination=np.where(rises, up.combination, down.combination),
+        value=np.where(rises, high.value, -low.value),
+        combination=np.where(rises, high.combination, low.combination),
     )
 
 
@@ -64,5 +64,5 @@ def reaction_envelope(reactions: Array) -> ReactionEnvelope:
     return ReactionEnvelope(
         down=peak(np.maximum(up, 0.0), -2),
         uplift=peak(np.maximum(-up, 0.0), -2),
-        horizontal=signed_peak(np.maximum(sideways, 0.0), np.maximum(-sideways, 0.0), -2),
+        horizontal=larger_of_signs(peak(np.maximum(sideways, 0.0), -2), peak(np.maximum(-sideways, 0.0), -2)),
     )

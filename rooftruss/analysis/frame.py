@@ -108,7 +108,9 @@ def _add_point(
     values = shape_coefficients(topology)[k] @ np.stack([xi**p for p in range(4)])
     values[[1, 3]] *= length[:, k]
     place = (slice(None), point.case, k)
-    for row, force in zip(range(6), (along * (1 - xi), *(across * values[:2]), along * xi, *(across * values[2:])), strict=True):
+    for row, force in zip(
+        range(6), (along * (1 - xi), *(across * values[:2]), along * xi, *(across * values[2:])), strict=True
+    ):
         out[row][place] += force
 
 

@@ -89,8 +89,9 @@ def lay_on(
                 q[..., c, :, 1] -= self_weight[..., list(member_of)] * load.pressure
                 continue
             here = [s for s, surface in enumerate(surface_of) if surface == load.surface]
-            if here:
-                q[..., c, here, :] += _on_segments(truss, load, spacing, [member_of[s] for s in here], x0, x1, here)
+            if here:  # segments of one surface stand side by side, so a slice reaches them without a copy
+                part = slice(here[0], here[-1] + 1) if here[-1] - here[0] + 1 == len(here) else here
+                q[..., c, part, :] += _on_segments(truss, load, spacing, [member_of[s] for s in here], x0, x1, here)
             elif load.surface in TAIL_OF_HEEL:
                 _to_heel(truss, load, spacing, nodal[..., c, :, :])
     return LoadCases(
@@ -191,12 +192,22 @@ def _to_heel(truss: Truss, load: SurfaceLoad, spacing: Array, nodal: Array) -> N
     if not chord:
         return
     cos, sin = truss.direction[..., chord[0], 0], truss.direction[..., chord[0], 1]
-    length = truss.bearing / 2 / cos
+    length = truss.bearing / 2 / cos * _covered(truss, load, side)
     qx, qy = per_length(load.kind, np.asarray(load.pressure) * spacing, cos, sin)
     member = truss.topology.members[chord[0]]
     node = member.start if side == 0 else member.end
     nodal[..., node, 0] += qx * length
     nodal[..., node, 1] += qy * length
+
+
+def _covered(truss: Truss, load: SurfaceLoad, side: int) -> Array:
+    """Share of the outer half of a bearing that a stretch of load covers (...,)."""
+    end = np.zeros(()) if side == 0 else truss.end_xy[..., truss.topology.on("right slope")[-1], 0]
+    half = truss.bearing / 2
+    low, high = (end - half, end) if side == 0 else (end, end + half)
+    start = low if load.x_from is None else np.clip(load.x_from, low, high)
+    stop = high if load.x_to is None else np.clip(load.x_to, low, high)
+    return np.asarray(np.maximum(stop - start, 0.0) / half)
 
 
 def _member_point(truss: Truss, point: ChordPoint) -> MemberPoint:
@@ -209,10 +220,10 @@ def sum_segments(values: Array, member_of: Sequence[int], out: Array) -> Array:
 
     Most members are one segment, so the first segments are copied at once and only the others are added one by one.
     """
-    first, rest = first_segments(tuple(member_of))
+    first, _ = first_segments(tuple(member_of))
     out[...] = values[..., first]
-    for s in rest:
-        out[..., member_of[s]] += values[..., s]
+    for members, segments in further_segments(tuple(member_of)):
+        out[..., members] += values[..., segments]
     return out
 
 
@@ -221,3 +232,16 @@ def first_segments(member_of: tuple[int, ...]) -> tuple[NDArray[np.intp], tuple[
     """Numbers of the first segment of each member, and of all other segments."""
     first = np.searchsorted(np.array(member_of), np.arange(member_of[-1] + 1))
     return first, tuple(s for s in range(len(member_of)) if s not in set(first.tolist()))
+
+
+@cache
+def further_segments(member_of: tuple[int, ...]) -> tuple[tuple[list[int], list[int]], ...]:
+    """Second, third, ... segments: for each place in the row (members that have it, those segments)."""
+    places: dict[int, tuple[list[int], list[int]]] = {}
+    for s, member in enumerate(member_of):
+        place = s - member_of.index(member)
+        if place:
+            members, segments = places.setdefault(place, ([], []))
+            members.append(member)
+            segments.append(s)
+    return tuple(places[place] for place in sorted(places))

@@ -23,11 +23,12 @@ Found = dict[Quantity, float]
 
 @dataclass(frozen=True, slots=True)
 class _Cases:
-    """Everything known of the cases of trusses that are alike: case name -> quantities."""
+    """The cases of trusses that are alike: case name -> values of the standard, and case name -> loads."""
 
     marks: tuple[str, ...]
     action: Mapping[str, str]
-    found: Mapping[str, Found]
+    values: Mapping[str, Found]
+    loads: Mapping[str, Found]
 
 
 def cases_grids(designs: Sequence[Design], numbering: Numbering, abreast: int = 6) -> list[Grid]:
@@ -40,11 +41,11 @@ def _alike(designs: Sequence[Design]) -> list[_Cases]:
     groups: dict[object, _Cases] = {}
     for design in designs:
         heads = design.run.cases.heads
-        found = {h.name: {**_values(h), **_loads(h, design)} for h in heads}
-        key = tuple((name, tuple(quantities.items())) for name, quantities in found.items())
-        before = groups.get(key)
+        values, loads = {h.name: _values(h) for h in heads}, {h.name: _loads(h, design) for h in heads}
+        key = tuple(tuple(found[name].items()) for name in values for found in (values, loads))
+        before = groups.get((tuple(values), key))
         marks = (*(before.marks if before else ()), design.spec.mark)
-        groups[key] = _Cases(marks, {h.name: h.action for h in heads}, found)
+        groups[tuple(values), key] = _Cases(marks, {h.name: h.action for h in heads}, values, loads)
     return list(groups.values())
 
 
@@ -57,31 +58,34 @@ def _grid(groups: Sequence[_Cases], numbering: Numbering, *, named: bool) -> Gri
         *(Column(", ".join(g.marks) if named else "All trusses", "measure") for g in groups),
         Column("Clause, or how it acts"),
     )
-    names = [name for name in numbering.cases if any(name in g.found for g in groups)]
-    action = {name: g.action[name] for g in groups for name in g.found}
+    action = {name: a for g in groups for name, a in g.action.items()}
+    names = [name for name in numbering.cases if name in action]
     rows: list[tuple[Cell, ...]] = []
     for a in dict.fromkeys(action[name] for name in names):
         own = [name for name in names if action[name] == a]
-        shared = _shared(groups, own)
-        rows += _rows(f"all {a}", f"every case of {ACTIONS.get(a, a)} load", shared, [g.found[_first(g, own)] if _first(g, own) else {} for g in groups])
+        common = [_common([g.values[name] for name in own if name in g.values]) for g in groups]
+        shared = [q for q in dict.fromkeys(q for c in common for q in c) if _everywhere(q, groups, common, own)]
+        rows += _rows(f"all {a}", f"{ACTIONS.get(a, a)} load, where it enters", shared, common)
         for name in own:
-            found = [g.found.get(name, {}) for g in groups]
+            found = [{**g.values.get(name, {}), **g.loads.get(name, {})} for g in groups]
             rest = dict.fromkeys(q for f in found for q in f if q not in shared)
             rows += _rows(str(numbering.cases[name]), name, list(rest), found)
     return Grid("Cases", columns, tuple(rows))
 
 
-def _first(group: _Cases, names: Sequence[str]) -> str:
-    return next((name for name in names if group.found.get(name)), "")
+def _common(cases: Sequence[Found]) -> Found:
+    """Values that are the same in all cases of one truss that have them, and that most of the cases have."""
+    out: Found = {}
+    for q in dict.fromkeys(q for case in cases for q in case):
+        having = [case[q] for case in cases if q in case]
+        if 2 * len(having) > len(cases) > 1 and len(set(having)) == 1:
+            out[q] = having[0]
+    return out
 
 
-def _shared(groups: Sequence[_Cases], names: Sequence[str]) -> list[Quantity]:
-    """Quantities that all cases of one action have, with the same value in all cases of a truss."""
-    if len(names) < 2:
-        return []
-    lists = [[g.found[name] for name in names if g.found.get(name)] for g in groups]
-    first = next((cases[0] for cases in lists if cases), {})
-    return [q for q in first if all(q in f and f[q] == cases[0].get(q) for cases in lists for f in cases)]
+def _everywhere(q: Quantity, groups: Sequence[_Cases], common: Sequence[Found], names: Sequence[str]) -> bool:
+    """Whether a value can be listed once for all: it is common in every truss that has it."""
+    return all(q in c or not any(q in g.values.get(n, {}) for n in names) for g, c in zip(groups, common, strict=True))
 
 
 def _rows(number: str, name: str, quantities: Sequence[Quantity], found: Sequence[Found]) -> Iterator[tuple[Cell, ...]]:

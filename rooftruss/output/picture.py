@@ -10,7 +10,7 @@ from rooftruss.shapes.truss import Truss
 Point = tuple[float, float]
 MARK = 0.022  # size of a support mark, as a share of the width of the picture
 SUPPORT_DEPTH = 1.5  # marks below the panel point, with the line of a roller
-POSITION = {"top chord": "above", "tail": "above", "bottom chord": "below", "web": "on"}
+POSITION = {"bottom chord": "below", "web": "on"}
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -23,7 +23,7 @@ class Path:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Label:
-    """A word at a point; position says on which side of it: "above", "below", "left", "right", "on"."""
+    """A word at a point; position says on which side of it: "above", "below", "left", "right", "on"; "" hides it."""
 
     text: str
     at: Point
@@ -36,7 +36,8 @@ class Picture:
 
     paths: tuple[Path, ...]
     member_names: tuple[Label, ...]
-    panel_points: tuple[Label, ...]
+    panel_points: tuple[Label, ...]  # at their true places; the letters of bearings are hidden
+    bearings: tuple[Label, ...]  # letters of the bearings, below the marks
     box: tuple[float, float, float, float]
 
 
@@ -45,12 +46,16 @@ def picture_of(truss: Truss) -> Picture:
     x, y, members = truss.xy[:, 0], truss.xy[:, 1], truss.topology.members
     paths = [Path(name=g, strokes=_strokes(truss, g)) for g in dict.fromkeys(m.group for m in members)]
     supports = tuple(stroke for k in range(len(truss.topology.supports)) for stroke in _support(truss, k))
-    low = float(y.min()) - SUPPORT_DEPTH * _mark(truss)
+    bearings = [s.node for s in truss.topology.supports]
+    below = SUPPORT_DEPTH * _mark(truss)
     return Picture(
         paths=(*paths, Path(name="support", strokes=supports)),
         member_names=tuple(_member_name(truss, k) for k in range(len(members))),
         panel_points=tuple(_panel_point(truss, k) for k in range(len(truss.topology.nodes))),
-        box=(float(x.min()), low, float(x.max()), float(y.max())),
+        bearings=tuple(
+            Label(text=truss.topology.nodes[n], at=(float(x[n]), float(y[n]) - below), position="below") for n in bearings
+        ),
+        box=(float(x.min()), float(y.min()) - below, float(x.max()), float(y.max())),
     )
 
 
@@ -94,13 +99,16 @@ def _support(truss: Truss, number: int) -> list[tuple[Point, ...]]:
 def _member_name(truss: Truss, k: int) -> Label:
     member = truss.topology.members[k]
     (x0, y0), (x1, y1) = _point(truss, member.start), _point(truss, member.end)
-    return Label(text=member.name, at=((x0 + x1) / 2, (y0 + y1) / 2), position=POSITION.get(member.role, "on"))
+    uphill = "left" if y1 >= y0 else "right"  # the side on which a sloping line falls away from its name
+    return Label(
+        text=member.name, at=((x0 + x1) / 2, (y0 + y1) / 2), position=POSITION.get(member.role, uphill)
+    )
 
 
 def _panel_point(truss: Truss, node: int) -> Label:
-    """Letter above a point of the roof, below one of the bottom chord, below the mark of a bearing."""
-    x, y = _point(truss, node)
+    """Letter above a point of the roof, below one of the bottom chord or a tail end."""
     roles = {m.role for m in truss.topology.members if node in (m.start, m.end)}
     low = roles <= {"tail"} or "bottom chord" in roles
-    mark = SUPPORT_DEPTH * _mark(truss) if node in {s.node for s in truss.topology.supports} else 0.0
-    return Label(text=truss.topology.nodes[node], at=(x, y - mark), position="below" if low else "above")
+    resting = node in {s.node for s in truss.topology.supports}
+    position = "" if resting else "below" if low else "above"
+    return Label(text=truss.topology.nodes[node], at=_point(truss, node), position=position)

@@ -154,7 +154,7 @@ def _pitch(rise_over_run: float, units: str) -> ShownCell:
 
 def _measure(cell: Measure, units: str) -> ShownCell:
     value = _number(cell.value, display(cell.kind, units).size)
-    return float(f"{value:.5g}") if isinstance(value, int | float) else value
+    return float(f"{value:.4g}") if isinstance(value, int | float) else value
 
 
 def _unit(kind: str, units: str) -> str | None:

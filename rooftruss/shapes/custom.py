@@ -100,9 +100,7 @@ def _check_supports(supports: Sequence[Support], names: Sequence[str]) -> None:
             raise JobError(f"support at joint {name!r} is given {names.count(name)} times; join them in one row")
     held = sum(s.horizontal + s.vertical for s in supports)
     if held < 3:
-        raise JobError(
-            f"supports: {held} movements are held, at least 3 are needed (a pinned and a sliding bearing)"
-        )
+        raise JobError(f"supports: {held} movements are held, at least 3 are needed (a pinned and a sliding bearing)")
     if not any(s.horizontal for s in supports):
         raise JobError("supports: none holds the truss horizontally; pin one of them")
     if not any(s.vertical for s in supports):

@@ -14,7 +14,13 @@ LAYERS = [
 ]  # fmt: skip
 HEAVY = {"pandas", "scipy", "openpyxl", "rich"}
 MODULES = sorted(path for path in PACKAGE.rglob("*.py"))
-every = pytest.mark.parametrize("path", MODULES, ids=lambda path: path.relative_to(PACKAGE).as_posix())
+
+
+def named(path: Path) -> str:
+    return path.relative_to(PACKAGE).as_posix()
+
+
+every = pytest.mark.parametrize("path", MODULES, ids=named)
 
 
 def layer(path: Path) -> str:
@@ -71,11 +77,9 @@ def test_only_units_imports_pint(path):
     assert not found or path == PACKAGE / "units.py", f"{path.name}:{found} imports pint"
 
 
-@every
+@pytest.mark.parametrize("path", [path for path in MODULES if layer(path) != "output"], ids=named)
 def test_heavy_packages_wait_until_they_are_used(path):
-    """Only output/ may load them with the module."""
-    if layer(path) == "output":
-        pytest.skip("output writes data frames and workbooks")
+    """Only output/, which writes data frames and workbooks, may load them with the module."""
     for node in at_import_time(parsed(path)):
         names = [name for _, name in imports(node)] if isinstance(node, ast.Import | ast.ImportFrom) else []
         assert not HEAVY & {name.split(".")[0] for name in names}, f"{path.name}:{node.lineno} loads {names}"

@@ -3,7 +3,7 @@
 The points stand on a sheet of their own, so that the drawing can be checked and changed in the workbook.
 """
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cache
 from typing import TYPE_CHECKING, Any
@@ -106,7 +106,11 @@ def _series(chart: "ScatterChart", picture: Picture, points: PointSheet) -> None
     for name, stroke in rows:
         chart.series.append(_line(name, _part(x, at, len(stroke)), _part(y, at, len(stroke))))
         at += len(stroke)
-    lists = (("Panel point", picture.panel_points, 1, True), ("Member", picture.member_names, 5, False))
+    lists = (
+        ("Panel point", picture.panel_points, 1, True),
+        ("Member", picture.member_names, 5, False),
+        ("Bearing", picture.bearings, 13, True),
+    )
     for heading, labels, first, bold in lists:
         refs = points.column(heading, [(label.text, *label.at) for label in labels], first)
         chart.series.append(_labels(heading, labels, *refs, bold=bold))
@@ -132,7 +136,7 @@ def _line(name: str, x: Any, y: Any) -> "XYSeries":
     return series  # type: ignore[no-any-return]
 
 
-def _labels(heading: str, labels: Iterable[Label], x: Any, y: Any, *, bold: bool) -> "XYSeries":
+def _labels(heading: str, labels: Sequence[Label], x: Any, y: Any, *, bold: bool) -> "XYSeries":
     from openpyxl.chart import Series
     from openpyxl.chart.label import DataLabelList
     from openpyxl.chart.marker import Marker
@@ -142,7 +146,7 @@ def _labels(heading: str, labels: Iterable[Label], x: Any, y: Any, *, bold: bool
     series = Series(y, x, title=heading)
     series.marker, series.smooth = Marker(symbol="none"), False
     series.spPr = GraphicalProperties(ln=LineProperties(noFill=True))
-    made = [_word(k, label, bold) for k, label in enumerate(labels)]
+    made = [_word(k, label, bold) for k, label in enumerate(labels) if label.position]
     series.dLbls = DataLabelList(dLbl=made, **dict.fromkeys(SHOWN, False))
     return series  # type: ignore[no-any-return]
 

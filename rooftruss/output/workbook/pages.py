@@ -19,22 +19,23 @@ from rooftruss.output.truss_grids import (
     reactions_grid,
 )
 from rooftruss.output.workbook.chart import PointSheet, elevation, frame_of
-from rooftruss.output.workbook.sheet import Page, for_print
+from rooftruss.output.workbook.sheet import LINE_HEIGHT, Page, for_print
 from rooftruss.units import shown
 
-QUOTE_WIDTHS = (8, 9, 12, 8, 7, 8.5, 9.5, 16, 16, 16, 8, 9, 9, 9, 9, 9, 8, 16)
-TRUSS_WIDTHS = (13, 14, 9, 17, 9, 9, 7, 12.5, 7, 9.5, 7, 9, 7, 11, 7, 11, 33, 22, 11)
+QUOTE_WIDTHS = (7, 8.5, 10, 7, 7, 8, 9, 15, 15, 15, 8, 9, 8, 9, 8, 8, 7, 15)
+TRUSS_WIDTHS = (11.5, 12, 8, 14.5, 9, 10, 6, 12, 6, 9, 6, 9.5, 6, 10, 6, 9, 26, 16, 10)
 REACTION_SLOTS = (1, 2, 5, 6, 7, 8, 9, 10, 11, 14, 15, 16, 17)
 DEFLECTION_SLOTS = (1, 2, 6, 8, 14, 15, 16, 17)
 LOADING_SLOTS = (1, 2, 5, 6, 8, 10, 12, 14, 17)
 NAMED_SLOTS = (1, 2, 12, 17)
+HEAD_ROWS = 5  # title, headings, units and a free row of a grid
 FAILURES_SHOWN = 3  # of each truss on the quote
 SIGNS = (
     "Tension, bending with tension in the lower edge, and movement up or to the right are positive. "
     "Comb. is the number on the sheet Combinations, a dash where nothing acts."
 )
-TALLEST_DRAWING = 9.5  # cm, so that drawing and members stand on one page
-ROW_HEIGHT = 15 / 72 * 2.54  # cm, of a row as the spreadsheet makes it
+TALLEST_DRAWING = 11.0  # cm, so that drawing and members stand on one page
+ROW_HEIGHT = LINE_HEIGHT / 72 * 2.54  # cm, of a row as the spreadsheet makes it
 
 
 def quote_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
@@ -90,11 +91,14 @@ def truss_page(page: Page, points: PointSheet, job: Job, design: Design, numberi
     page.paragraph(_result(design), "strong" if design.passes else "fail")
     _drawing(page, points, design)
     page.grid(members_grid(design, numbering, idle_members(design)))
-    page.grid(reactions_grid(design, numbering), REACTION_SLOTS)
-    _break_before(page)
-    page.grid(deflections_grid(design, numbering), DEFLECTION_SLOTS)
-    page.grid(loading_grid(design, numbering), LOADING_SLOTS)
-    page.grid(named_combinations_grid(design, numbering), NAMED_SLOTS)
+    for grid, slots in (
+        (reactions_grid(design, numbering), REACTION_SLOTS),
+        (deflections_grid(design, numbering), DEFLECTION_SLOTS),
+        (loading_grid(design, numbering), LOADING_SLOTS),
+        (named_combinations_grid(design, numbering), NAMED_SLOTS),
+    ):
+        page.block(len(grid.rows) + HEAD_ROWS, repeated=2)
+        page.grid(grid, slots)
     page.row -= 1
     page.line(SIGNS)
     for_print(page, job, landscape=True, repeat="1:2", freeze="B3")
@@ -127,34 +131,23 @@ def _result(design: Design) -> str:
 
 def _drawing(page: Page, points: PointSheet, design: Design) -> None:
     drawn = picture(design)
-    frame = frame_of(drawn, _centimetres(TRUSS_WIDTHS), TALLEST_DRAWING)
+    frame = frame_of(drawn, page.width_cm, TALLEST_DRAWING)
     points.page.line(f"Truss {design.spec.mark}", "section", 18)
     chart = elevation(drawn, points, frame)
     page.sheet.add_chart(chart, f"A{page.row}")
     page.row += int(frame.height / ROW_HEIGHT) + 2
 
 
-def _centimetres(widths: Sequence[float]) -> float:
-    """Width of columns on screen: 7 pixels a character and 5 of margin, 96 pixels an inch."""
-    return sum(7 * w + 5 for w in widths) / 96 * 2.54
-
-
-def _break_before(page: Page) -> None:
-    from openpyxl.worksheet.pagebreak import Break
-
-    page.sheet.row_breaks.append(Break(id=page.row - 1))
-
-
 def combinations_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbering) -> None:
     """Every combination of the job once."""
     grid = combinations_grid(numbering, designs)
     wide = {"No.": 6, "Clause": 13, "Combination": 54, "Limit state": 22, "Load duration": 14, "Trusses": 14}
-    page.widths([wide.get(c.heading, 8 if c.kind == "factor" else 9) for c in grid.columns])
+    page.widths([wide.get(c.heading, 9) for c in grid.columns])
     page.line(grid.title, "title", 24)
     page.line("A factor multiplies the cases beside it, numbered as on the sheet Cases. Cases of one action exclude each other.")
     page.row += 1
-    page.grid(grid, title="", long=True)
-    for_print(page, job, landscape=True, repeat="4:5", freeze="A6")
+    page.grid(grid, title="", look="data")
+    for_print(page, job, landscape=True, repeat="4:4", freeze="A5")
 
 
 def cases_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbering) -> None:
@@ -166,8 +159,8 @@ def cases_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbe
     page.line("Characteristic loads, before any factor. Pressure towards the surface, or down, is positive.")
     page.row += 1
     for grid in grids:
-        page.grid(grid, title="", long=True)
-    for_print(page, job, landscape=True, repeat="4:5", freeze="A6")
+        page.grid(grid, title="", look="data")
+    for_print(page, job, landscape=True, repeat="4:4", freeze="A5")
 
 
 def words_page(page: Page, job: Job, grid: Grid, first: float) -> None:
@@ -175,8 +168,8 @@ def words_page(page: Page, job: Job, grid: Grid, first: float) -> None:
     page.widths((first, 100 - first))
     page.line(grid.title, "title", 24)
     page.row += 1
-    page.grid(grid, title="", wrap=(0, 1))
-    for_print(page, job, landscape=False, repeat="3:4", freeze="A5")
+    page.grid(grid, title="", wrap=(0, 1), look="words")
+    for_print(page, job, landscape=False, repeat="3:3", freeze="A4")
 
 
 def assumptions_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
@@ -191,6 +184,6 @@ def cautions_page(page: Page, job: Job) -> None:
 
 def points_page(page: Page, job: Job) -> None:
     """Head of the sheet that holds the points of the drawings."""
-    page.widths((12, 9, 9, 3, 12, 9, 9, 3, 14, 9, 9))
+    page.widths((12, 9, 9, 2, 12, 9, 9, 2, 14, 9, 9, 2, 9, 9, 9))
     page.line("Geometry", "title", 24)
     page.line("Points of the drawings, on centre lines; x from the middle of the left bearing, y up from it.")

@@ -10,7 +10,9 @@ from rooftruss.output.workbook.styles import Looks, looks_like_formula, plain
 if TYPE_CHECKING:
     from openpyxl.worksheet.worksheet import Worksheet
 
-LINE_HEIGHT = 13.5  # points, of a line of body text
+LINE_HEIGHT = 12.75  # points, of a row, and of each line in it
+PAPER = {"US": (8.5 * 72, 11 * 72), "metric": (210 / 25.4 * 72, 297 / 25.4 * 72)}  # letter, A4; points
+SIDE, ABOVE, BELOW = 0.5, 0.7, 0.65  # margins [in]
 Emphasis = Callable[[Sequence[ShownCell]], bool]
 FORBIDDEN = str.maketrans("", "", "[]:*?/\\")
 WIDEST_NAME = 31
@@ -39,7 +41,9 @@ class Page:
         self.sheet, self.looks, self.units = sheet, looks, units
         self.row = 1
         self._widths: tuple[float, ...] = ()
+        self._page_starts = [1]
         sheet.sheet_view.showGridLines = False
+        sheet.sheet_format.defaultRowHeight, sheet.sheet_format.customHeight = LINE_HEIGHT, True
 
     def widths(self, widths: Sequence[float]) -> None:
         """Widths of the columns from A on, in characters."""
@@ -73,6 +77,27 @@ class Page:
             self.sheet.row_dimensions[self.row].height = height
         self.row += 1
 
+    def block(self, rows: int, repeated: int) -> None:
+        """Begin a new landscape page where the next `rows` would not fit the rest of this one.
+
+        repeated: rows that every page begins with.
+        """
+        from openpyxl.worksheet.pagebreak import Break
+
+        depth, width = PAPER[self.units]
+        scale = min(1.0, (width - 2 * SIDE * 72) / (self.width_cm / 2.54 * 72))
+        room = (depth - (ABOVE + BELOW) * 72) / scale
+        first = self._page_starts[-1]
+        heights = [self.sheet.row_dimensions[r].height or LINE_HEIGHT for r in (*range(1, repeated + 1), *range(first, self.row))]
+        if self.row > first and sum(heights) + rows * LINE_HEIGHT > room:
+            self.sheet.row_breaks.append(Break(id=self.row - 1))
+            self._page_starts.append(self.row)
+
+    @property
+    def width_cm(self) -> float:
+        """Width of the columns on screen: 7 pixels a character and 5 of margin, 96 pixels an inch."""
+        return sum(7 * w + 5 for w in self._widths) / 96 * 2.54
+
     def paragraph(self, text: str, look: str = "body") -> None:
         """Text over the whole width, on as many lines as it needs."""
         last = len(self._widths)
@@ -82,12 +107,12 @@ class Page:
         self.row += 1
 
     def grid(
-        self, grid: Grid, slots: Sequence[int] = (), *, title: str | None = None, wrap: Sequence[int] = (), long: bool = False
+        self, grid: Grid, slots: Sequence[int] = (), *, title: str | None = None, wrap: Sequence[int] = (), look: str = "body"
     ) -> None:
         """A grid with its title and headings; `slots` are the sheet columns of its columns, A on when left out.
 
-        wrap: columns (of the grid, from 0) whose text may take several lines. A long grid has a line under every fifth
-        row only, and its empty cells are not written.
+        wrap: columns (of the grid, from 0) whose text may take several lines. look: "body", "words" for sentences, or
+        "data" for long grids, with a line under every fifth row only, whose empty cells are not written.
         """
         shown = shown_grid(grid, self.units)
         slots = slots or range(1, len(shown.columns) + 1)
@@ -95,27 +120,29 @@ class Page:
         if heading:
             self.line(heading, "section", 18)
         self._headings(shown.columns, slots)
-        self._rows(shown, slots, set(wrap), long=long)
+        self._rows(shown, slots, sorted(wrap), look)
         self.row += 1
 
     def _headings(self, columns: Sequence[ShownColumn], slots: Sequence[int]) -> None:
         place = dict(zip(slots, columns, strict=True))
         double = any(len(c.heading) > self._widths[slot - 1] for slot, c in place.items())
-        for look, height in (("head", 28 if double else 15), ("unit", 12)):
+        units = any(c.unit for c in columns)
+        lines = (("head" if units else "heads", 26 if double else 15), *((("unit", 11),) if units else ()))
+        for look, height in lines:
             for slot in range(1, max(slots) + 1):
                 column = place.get(slot)
-                text = "" if column is None else column.heading if look == "head" else column.unit
+                text = "" if column is None else column.unit if look == "unit" else column.heading
                 self.put(slot, text or None, look, align=_align(column, slot) if column else "")
             self.sheet.row_dimensions[self.row].height = height
             self.row += 1
 
-    def _rows(self, shown: ShownGrid, slots: Sequence[int], wrap: set[int], *, long: bool) -> None:
+    def _rows(self, shown: ShownGrid, slots: Sequence[int], wrap: Sequence[int], usual: str) -> None:
         aligned = ["wrap" if k in wrap else _align(c, slot) for k, (c, slot) in enumerate(zip(shown.columns, slots, strict=True))]
         formats = [c.number_format for c in shown.columns]
         fails = _not_met(shown.columns)
         gaps = sorted(set(range(1, max(slots) + 1)) - set(slots))
         for n, row in enumerate(shown.rows, start=1):
-            look = "fail" if fails(row) else "data" if long and n % 5 else "body"
+            look = "fail" if fails(row) else "body" if usual == "data" and n % 5 == 0 else usual
             for k, (slot, cell) in enumerate(zip(slots, row, strict=True)):
                 if cell is not None or look != "data":
                     self.put(slot, cell, look, formats[k], "right" if cell == NOTHING else aligned[k])
@@ -155,8 +182,8 @@ def for_print(page: Page, job: Job, *, landscape: bool, repeat: str = "", freeze
     sheet.page_setup.fitToWidth, sheet.page_setup.fitToHeight = 1, 0
     sheet.sheet_properties.pageSetUpPr = PageSetupProperties(fitToPage=True)
     margins = sheet.page_margins
-    margins.left = margins.right = 0.5
-    margins.top, margins.bottom, margins.header, margins.footer = 0.7, 0.65, 0.35, 0.35
+    margins.left = margins.right = SIDE
+    margins.top, margins.bottom, margins.header, margins.footer = ABOVE, BELOW, 0.35, 0.35
     sheet.print_options.horizontalCentered = True
     sheet.print_area = f"A1:{get_column_letter(page.columns)}{max(page.row - 1, 1)}"
     _running_lines(sheet, job)

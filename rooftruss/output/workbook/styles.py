@@ -7,14 +7,15 @@ if TYPE_CHECKING:
     from openpyxl import Workbook
 
 INK, LINE, HEAD, FAIL = "FF22303C", "FFC3CBD2", "FFE6EBEF", "FFF2C4BE"
-FONT = "Calibri"
+FONT = "Arial"  # fonts of the same widths stand in for it everywhere
 FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r", "'")
 CONTROL = re.compile(r"[\x00-\x08\x0b\x0c\x0e-\x1f\x7f\ud800-\udfff\ufffe\uffff]")
 LONGEST = 32_000  # characters of a cell; the file format ends at 32 767
 
 
 class Looks:
-    """Styles of one workbook by look: "title", "section", "head", "unit", "body", "data", "plain", "strong", "fail", "note", "total"."""
+    """Styles of one workbook by look: title, section, head (above units), heads (alone), unit, body, data, plain, words, strong, fail,
+    note, total."""
 
     def __init__(self, book: "Workbook") -> None:
         self._sheet = book.active
@@ -35,29 +36,29 @@ class Looks:
         from openpyxl.styles import Alignment, Border, Font, PatternFill, Side
 
         cell = Cell(self._sheet, row=1, column=1)
-        size = {"title": 15, "section": 11, "unit": 8, "note": 9}.get(look, 10)
-        bold = look in ("title", "section", "head", "strong", "fail", "total")
+        size = {"title": 14, "section": 11, "unit": 8, "note": 8}.get(look, 9)
+        bold = look in ("title", "section", "head", "heads", "strong", "fail", "total")
         cell.font = Font(name=FONT, size=size, bold=bold, italic=look == "note", color=INK)
-        if look in ("head", "unit"):
+        if look in ("head", "heads", "unit"):
             cell.fill = PatternFill("solid", fgColor=HEAD)
         if look == "fail":
             cell.fill = PatternFill("solid", fgColor=FAIL)
         thin, hair = Side(style="thin", color=INK), Side(style="hair", color=LINE)
         lines = {
-            "section": Border(),
             "head": Border(top=thin),
+            "heads": Border(top=thin, bottom=thin),
             "unit": Border(bottom=thin),
             "total": Border(top=thin, bottom=thin),
             "body": Border(bottom=hair),
-            "strong": Border(bottom=hair),
+            "words": Border(bottom=hair),
             "fail": Border(bottom=hair),
         }
         cell.border = lines.get(look, Border())
         cell.alignment = Alignment(
             horizontal="left" if align in ("wrap", "inset") else align or None,
             indent=1 if align in ("wrap", "inset") else 0,
-            vertical="bottom" if look in ("head", "unit") else "top",
-            wrap_text=align == "wrap" or look == "head" or None,
+            vertical={"head": "bottom", "heads": "bottom", "unit": "bottom", "words": "top"}.get(look, "center"),
+            wrap_text=align == "wrap" or look in ("head", "heads") or None,
         )
         if number_format:
             cell.number_format = number_format
