@@ -72,7 +72,9 @@ def _job_argument(command: argparse.ArgumentParser) -> None:
 
 def _quote_arguments(command: argparse.ArgumentParser) -> None:
     _job_argument(command)
-    command.add_argument("-o", "--output", type=Path, help="workbook to write; default: the job's name with .xlsx, here")
+    command.add_argument(
+        "-o", "--output", type=Path, help="workbook to write; default: the job's name with .xlsx, here"
+    )
 
 
 def _quote(given: argparse.Namespace) -> int:
@@ -94,10 +96,14 @@ def _quote(given: argparse.Namespace) -> int:
 
 
 def _size_arguments(command: argparse.ArgumentParser) -> None:
-    command.add_argument("--like", required=True, type=Path, metavar="JOB", help="job file for everything not given here")
+    command.add_argument(
+        "--like", required=True, type=Path, metavar="JOB", help="job file for everything not given here"
+    )
     command.add_argument("--mark", help="truss of the job to start from; default: the first")
     for key, example in LIKE_KEYS:
-        command.add_argument(f"--{key.replace('_', '-')}", dest=key, metavar=example.strip('"'), help=f"for example {example}")
+        command.add_argument(
+            f"--{key.replace('_', '-')}", dest=key, metavar=example.strip('"'), help=f"for example {example}"
+        )
 
 
 def _size(given: argparse.Namespace) -> int:
@@ -156,7 +162,9 @@ def _explain_arguments(command: argparse.ArgumentParser) -> None:
     _job_argument(command)
     command.add_argument("mark", help="truss, for example T1")
     command.add_argument("member", help="member or bearing, for example 'top 1' or 'bearing A'")
-    command.add_argument("--combination", metavar="N", help="number or name of a combination; default: the governing one")
+    command.add_argument(
+        "--combination", metavar="N", help="number or name of a combination; default: the governing one"
+    )
 
 
 def _explain(given: argparse.Namespace) -> int:
@@ -195,7 +203,9 @@ def _shapes(given: argparse.Namespace) -> int:
 
 def _schemes_arguments(command: argparse.ArgumentParser) -> None:
     command.add_argument("name", nargs="?", help="one scheme, to see its combinations")
-    command.add_argument("--job", type=Path, help="job file: also count the combinations the scheme makes for each truss")
+    command.add_argument(
+        "--job", type=Path, help="job file: also count the combinations the scheme makes for each truss"
+    )
 
 
 def _schemes(given: argparse.Namespace) -> int:

@@ -57,7 +57,8 @@ def magnitude(text: object, unit: str) -> float:
     if isinstance(text, bool) or not isinstance(text, int | float | str):
         raise JobError(f"{text!r} is not a quantity; write for example '{example}'")
     if isinstance(text, int | float):
-        raise JobError(f"{text!r} has no unit; write a quantity in quotes, for example '{text} {example.split(' ', 1)[1]}'")
+        unit_text = example.split(" ", 1)[1]
+        raise JobError(f"{text!r} has no unit; write a quantity in quotes, for example '{text} {unit_text}'")
     return _parsed(text, unit, example)
 
 
@@ -68,7 +69,7 @@ def _parsed(text: str, unit: str, example: str) -> float:
     if len(text) > 60:
         raise JobError(f"{text[:40]!r}... is too long for a quantity; write for example '{example}'")
     try:
-        quantity = registry().Quantity(text)
+        quantity: Any = registry().Quantity(text)
         if quantity.unitless and unit != "rad":
             raise JobError(f"{text!r} has no unit; write for example '{example}'")
         value = float(quantity.to(unit).magnitude)

@@ -1,6 +1,6 @@
 """Effects of each case along the members, and their exact extremes under every combination."""
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator
 from dataclasses import dataclass, fields
 
 import numpy as np
@@ -139,9 +139,7 @@ def demands_and_envelope(effects: UnitEffects, factors: Array) -> tuple[Demands,
     tension, compression, high, low, shear = (Peak(value=v, combination=n) for v, n in zip(value, number, strict=True))
     shape = (*batch, len(factors), effects.members)
     demands = Demands(**{f.name: array.reshape(shape) for f, array in zip(fields(Demands), out, strict=True)})
-    return demands, Envelope(
-        tension=tension, compression=compression, moment=larger_of_signs(high, low), shear=shear
-    )
+    return demands, Envelope(tension=tension, compression=compression, moment=larger_of_signs(high, low), shear=shear)
 
 
 def _split_by_sign(axial_max: Array, axial_min: Array, moment_max: Array, moment_min: Array, shear: Array) -> Array:

@@ -47,11 +47,11 @@ def freedoms(topology: Topology) -> Freedoms:
     label = [x for x in every if x not in held] + [x for x in every if x in held]
     number = {x: k for k, x in enumerate(label)}
     none = len(label)
-    rows = [
-        [number[m.start, 0], number[m.start, 1], none if m.pinned_start else number[m.start, 2]]
-        + [number[m.end, 0], number[m.end, 1], none if m.pinned_end else number[m.end, 2]]
-        for m in topology.members
-    ]
+
+    def at_end(node: int, pinned: bool) -> list[int]:
+        return [number[node, 0], number[node, 1], none if pinned else number[node, 2]]
+
+    rows = [[*at_end(m.start, m.pinned_start), *at_end(m.end, m.pinned_end)] for m in topology.members]
     return Freedoms(
         of_member=np.array(rows),
         of_node=np.array([[number[n, 0], number[n, 1]] for n in range(len(topology.nodes))]),
@@ -73,4 +73,4 @@ def bending_coefficients(topology: Topology) -> Array:
     a = shape_coefficients(topology)
     second = np.stack([2 * a[..., 2], 6 * a[..., 3]], axis=-1)  # N'' = second[0] + second[1] xi
     moments = np.array([[1, 1 / 2], [1 / 2, 1 / 3]])
-    return np.einsum("mip,pq,mjq->mij", second, moments, second)
+    return np.asarray(np.einsum("mip,pq,mjq->mij", second, moments, second))

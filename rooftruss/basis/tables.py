@@ -70,7 +70,9 @@ def read_table(name: str) -> Table:
         folder = path.parent
         known = sorted(p.stem for p in folder.glob("*.csv")) if folder.is_dir() else []
         raise TableError(f"there is no table {name}.csv; {nearest(path.stem, known)}")
-    lines = [(n, t) for n, t in enumerate(path.read_text("utf-8").splitlines(), 1) if t.strip() and not t.startswith("#")]
+    lines = [
+        (n, t) for n, t in enumerate(path.read_text("utf-8").splitlines(), 1) if t.strip() and not t.startswith("#")
+    ]
     records = list(csv.reader(text for _, text in lines))
     columns, units = records[0], records[1]
     if len(units) != len(columns) or "source" not in columns:

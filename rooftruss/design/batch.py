@@ -76,7 +76,9 @@ def check_many(
     called after every chunk. Raises JobError naming the truss whose input does not fit.
     """
     if len(sizes) not in (1, len(specs)):
-        raise JobError(f"sizes for {len(sizes)} trusses were given, {len(specs)} trusses; give one for each, or one for all")
+        raise JobError(
+            f"sizes for {len(sizes)} trusses were given, {len(specs)} trusses; give one for each, or one for all"
+        )
     chunks = list(_chunks(job, specs, list(sizes) * (len(specs) if len(sizes) == 1 else 1)))
     results = executor.map(_chunk_report, chunks) if executor else map(_chunk_report, chunks)
     parts: list[Report] = []
@@ -103,7 +105,13 @@ def _shared_key(job: Job, spec: TrussSpec) -> object:
     points = tuple((p.action, p.chord, p.note) for p in spec.loads.points)
     groups = tuple(sorted((g, t.restraint) for g, t in timber.groups.items()))
     alone = spec.mark if points else ""  # a point load may stand on another member in the next truss
-    return (layout_of(spec), groups, tuple(sorted((k, str(v)) for k, v in timber.options.items())), spec.quantity >= 3, alone)
+    return (
+        layout_of(spec),
+        groups,
+        tuple(sorted((k, str(v)) for k, v in timber.options.items())),
+        spec.quantity >= 3,
+        alone,
+    )
 
 
 def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Iterator[_Chunk]:

@@ -22,7 +22,7 @@ class Outcome:
     envelope: Envelope
     reactions: ReactionEnvelope
     utilisation: Peak  # (..., m)
-    rule: NDArray[np.intp]  # (..., m) number of the governing rule
+    rule: NDArray[np.int8]  # (..., m) number of the governing rule
     bearing: Peak  # (..., support)
     deflection: Deflections
     volume: Array  # timber of one truss (...,) [m3]
@@ -32,7 +32,7 @@ class Outcome:
     def worst(self) -> Array:
         """Largest of all utilisations and deflection ratios (...,)."""
         parts = (self.utilisation.value, self.bearing.value, self.deflection.ratio)
-        return np.max(np.stack([p.max(axis=-1) for p in parts]), axis=0)
+        return np.asarray(np.max(np.stack([p.max(axis=-1) for p in parts]), axis=0))
 
     @property
     def passes(self) -> NDArray[np.bool_]:
@@ -89,15 +89,14 @@ class Design:
 
     def _failed_members(self) -> list[tuple[float, str]]:
         out = []
+        found = self.outcome.utilisation
         for k, name in enumerate(self.run.members.names):
-            value = float(self.outcome.utilisation.value[k])
+            value = float(found.value[k])
             if value > LIMIT:
                 option = self.sizes[self.run.family.topology.groups[k]]
                 rule = self.run.checks.rules[int(self.outcome.rule[k])]
-                under = self.combination(int(self.outcome.utilisation.combination[k]))
-                out.append(
-                    (value, f"{name} ({option.section.name} {option.grade.name}): {value:.2f} in {rule.name} ({rule.clause}), {under}")
-                )
+                size, under = f"{option.section.name} {option.grade.name}", self.combination(int(found.combination[k]))
+                out.append((value, f"{name} ({size}): {value:.2f} in {rule.name} ({rule.clause}), {under}"))
         return out
 
     def _failed_bearings(self) -> list[tuple[float, str]]:
@@ -107,7 +106,8 @@ class Design:
             value = float(self.outcome.bearing.value[k])
             if value > LIMIT:
                 under = self.combination(int(self.outcome.bearing.combination[k]))
-                out.append((value, f"bearing at {made.nodes[support.node]}: {value:.2f} in compression across the grain, {under}"))
+                where = f"bearing at {made.nodes[support.node]}"
+                out.append((value, f"{where}: {value:.2f} in compression across the grain, {under}"))
         return out
 
     def _failed_deflections(self) -> list[tuple[float, str]]:

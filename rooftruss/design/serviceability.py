@@ -37,7 +37,9 @@ def places_of(run: Run) -> tuple[Place, ...]:
     """Panel points and tail ends, middles of chord members, and the sideways movement of each roller."""
     made = run.family.topology
     held = {s.node for s in made.supports if s.vertical}
-    nodes = [Place(name=n, kind="node", number=k, direction="vertical") for k, n in enumerate(made.nodes) if k not in held]
+    nodes = [
+        Place(name=n, kind="node", number=k, direction="vertical") for k, n in enumerate(made.nodes) if k not in held
+    ]
     chords = [
         Place(name=m.name, kind="member", number=k, direction="vertical")
         for k, m in enumerate(made.members)

@@ -73,7 +73,7 @@ class Family:
 
 @dataclass(frozen=True, kw_only=True)
 class Choice:
-    """What each group of each truss of a batch is made of: options of a group and the number of the one taken (...,)."""
+    """What the groups of the trusses of a batch are made of: options of a group, and the number of the one taken (...,)."""
 
     options: Mapping[str, tuple[Option, ...]]
     index: Mapping[str, NDArray[np.intp]]
@@ -161,7 +161,7 @@ def _placed(layout: Layout, size: Dimensions, specs: Sequence[TrussSpec]) -> tup
         member = member_at(cast(Truss, line).one(0), point.chord, float(x[0]))
         if member is None:
             raise JobError(
-                f"[[loads.point]] position: {point.position:.2f} m is outside the {point.chord} chord of {specs[0].mark}; "
+                f"[[loads.point]] position: {point.position:.2f} m is outside the {point.chord} chord; "
                 "measure from the outside of the left bearing"
             )
         force = np.array([s.loads.points[k].force for s in specs])
@@ -242,8 +242,9 @@ def durations_of(combinations: Combinations) -> Durations:
 
 
 def _combined_reactions(factors: Array, unit: Array) -> Array:
+    """Support forces (..., k, support, 2) under the combinations `factors` (k, c) of those of each case."""
     flat = unit.reshape(*unit.shape[:-2], -1)
-    return np.matmul(factors, flat).reshape(*unit.shape[:-3], factors.shape[0], *unit.shape[-2:])
+    return np.asarray(np.matmul(factors, flat)).reshape(*unit.shape[:-3], factors.shape[0], *unit.shape[-2:])
 
 
 def bearing_members(made: Topology) -> list[int]:
@@ -258,7 +259,17 @@ def bearing_members(made: Topology) -> list[int]:
 def take_members(members: Members, rows: Sequence[int]) -> Members:
     """Some of the members, in the order asked for; a member may be taken twice."""
     rows = list(rows)
-    arrays = ("breadth", "depth", "plies", "length", "le_strong", "le_weak", "lu_positive", "lu_negative", "load_sharing")
+    arrays = (
+        "breadth",
+        "depth",
+        "plies",
+        "length",
+        "le_strong",
+        "le_weak",
+        "lu_positive",
+        "lu_negative",
+        "load_sharing",
+    )
     return replace(
         members,
         names=tuple(members.names[k] for k in rows),
@@ -298,7 +309,10 @@ def load_sharing(family: Family, role: str, restraint: Restraint) -> bool:
     """Whether a member meets the timber standard's conditions for sharing load with its neighbours."""
     spec = family.spec
     return family.timber.shares_load(
-        role=role, sheathed=restraint.kind == "sheathed", quantity=spec.quantity, spacing=float(np.max(family.size.spacing))
+        role=role,
+        sheathed=restraint.kind == "sheathed",
+        quantity=spec.quantity,
+        spacing=float(np.max(family.size.spacing)),
     )
 
 

@@ -89,10 +89,14 @@ def action_cases(standard: str, roof: Roof, loads: AreaLoads, site: Site) -> lis
 
 def _point_cases(points: Sequence[PlacedPoint]) -> list[ActionCase]:
     """One case for the point loads of each action; of dead load they count where it adds, not where it resists."""
-    actions = sorted({p.action for p in points}, key="D L Lr S W".split().index)
+    actions = sorted({p.action for p in points}, key=["D", "L", "Lr", "S", "W"].index)
     return [
         ActionCase(
-            name=f"point loads, {action}", short="points", action=action, pattern="most" if action == "D" else "with", loads=()
+            name=f"point loads, {action}",
+            short="points",
+            action=action,
+            pattern="most" if action == "D" else "with",
+            loads=(),
         )
         for action in actions
     ]

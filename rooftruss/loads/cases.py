@@ -12,7 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.loads.roof import ActionCase, SurfaceLoad
-from rooftruss.shapes.truss import Topology, Truss
+from rooftruss.shapes.truss import Truss
 
 Array = NDArray[np.float64]
 TAIL_OF_HEEL = {"left tail": 0, "right tail": 1}  # surface -> number of the support below it
@@ -169,10 +169,10 @@ def _on_segments(
 def per_length(kind: str, line: Array, cos: Array, sin: Array) -> tuple[Array, Array]:
     """Horizontal and vertical load per member length of a load `line` [N/m] of one kind of SurfaceLoad.
 
-    >>> per_length("plan", 100.0, 0.8, 0.6)
-    (0.0, -80.0)
-    >>> per_length("normal", 100.0, 0.8, -0.6)
-    (-60.0, -80.0)
+    >>> [float(x) for x in per_length("plan", np.array(100.0), np.array(0.8), np.array(0.6))]
+    [0.0, -80.0]
+    >>> [float(x) for x in per_length("normal", np.array(100.0), np.array(0.8), np.array(-0.6))]
+    [-60.0, -80.0]
     """
     if kind == "plan":
         return 0.0 * line, -line * np.abs(cos)

@@ -27,7 +27,12 @@ def schemes_grid() -> Grid:
 def scheme_grid(scheme: Scheme) -> Grid:
     """The rows of one scheme as the standard prints them."""
     rows = tuple(
-        (row.clause, row.expression, row.kind.replace("_", " or ") or "strength", "least" if row.dead == "least" else "most")
+        (
+            row.clause,
+            row.expression,
+            row.kind.replace("_", " or ") or "strength",
+            "least" if row.dead == "least" else "most",
+        )
         for row in scheme.rows
     )
     columns = (Column("clause"), Column("combination"), Column("for"), Column("dead load taken"))

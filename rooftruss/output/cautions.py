@@ -7,7 +7,8 @@ CAUTIONS = (
     "timber they need are not in the numbers. They can call for larger members than those listed.",
     "Bracing is not designed. Restraint of the members across the truss is taken as the job says and has to be built "
     "so, together with the bracing that carries its forces and steadies the whole roof.",
-    "Handling, lifting, erection and temporary bracing are not looked at; an unbraced truss can fail under its own weight.",
+    "Handling, lifting, erection and temporary bracing are not looked at; an unbraced truss can fail under its own "
+    "weight.",
     "Anchors, walls, headers and foundations are not designed. The uplift and sideways reactions listed have to be "
     "held down and carried to the ground by others.",
     "Only the loads listed act. Drifts against higher walls or parapets, valleys, hips, sliding snow, ponding, solar "
@@ -36,9 +37,11 @@ MODEL_ASSUMPTIONS = (
     "Dead load acts on the slope length, snow and roof live load on plan, wind normal to the surface, ceiling loads on "
     "the bottom chord; each truss carries a strip as wide as the spacing.",
     "Without an overhang, the roof over the outer half of the bearing loads the heel joint.",
-    "Self-weight is the volume of the members on their centre lines times the density of their grade; connectors are left out.",
+    "Self-weight is the volume of the members on their centre lines times the density of their grade; connectors are "
+    "left out.",
     "The least dead load (where the job gives one) is used where dead load resists uplift.",
-    "All members of a group (top chord with tails, bottom chord, webs) have one size and grade; the worst of them governs.",
+    "All members of a group (top chord with tails, bottom chord, webs) have one size and grade; the worst of them "
+    "governs.",
     "The largest axial force and the largest moment of a member under one combination are taken in one place, wherever "
     "along the member they are.",
     "Cases of one action exclude each other within a combination; point loads join every case of their action.",

@@ -32,7 +32,9 @@ def explanation(design: Design, name: str, combination: str | None = None) -> tu
     row = run.strength.index(number)
     steps = run.family.timber.explain(run.members, run.demand, durations_of(run.combinations), member, row)
     option = design.sizes[run.family.topology.groups[member]]
-    return _heading(design, f"{name}, {option.section.name} {option.grade.name}", number, number == governing), _grid(steps)
+    return _heading(design, f"{name}, {option.section.name} {option.grade.name}", number, number == governing), _grid(
+        steps
+    )
 
 
 def _bearing(design: Design, node: str, combination: str | None) -> tuple[str, Grid]:
@@ -67,7 +69,9 @@ def _combination(design: Design, asked: str | None, governing: int) -> int:
     number = int(asked) - 1 if asked.isdecimal() else names.index(asked) if asked in names else -1
     if number not in strength:
         hint = nearest(asked, [names[k] for k in strength]) if not asked.isdecimal() else ""
-        hint = hint if hint.startswith("did you mean") else f"numbers 1 to {len(strength)}, listed by `rooftruss envelope`"
+        hint = (
+            hint if hint.startswith("did you mean") else f"numbers 1 to {len(strength)}, listed by `rooftruss envelope`"
+        )
         raise JobError(f"no strength combination {asked!r}; {hint}")
     return number
 

@@ -109,7 +109,7 @@ def _compared(row: Alternative) -> tuple[Cell, ...]:
 
 
 def combinations_grid(numbering: Numbering, designs: Sequence[Design]) -> Grid:
-    """Every combination of the job: clause, name, limit state, load duration; for each action its factor and its cases."""
+    """Every combination of the job: clause, name, limit state, duration; for each action its factor and its cases."""
     heads = {h.name: h.action for d in designs for h in d.run.cases.heads}
     actions = tuple(dict.fromkeys(heads[name] for name in numbering.cases))
     timed = any(line.time_effect == line.time_effect for line in numbering.lines)  # NaN: the scheme has none

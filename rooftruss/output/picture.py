@@ -9,8 +9,9 @@ from rooftruss.shapes.truss import Truss
 
 Point = tuple[float, float]
 MARK = 0.022  # size of a support mark, as a share of the width of the picture
+LIFT = 0.4  # marks between a sloping line and its name
+LEVEL = 0.05  # slope up to which a name stands straight below its line
 SUPPORT_DEPTH = 1.5  # marks below the panel point, with the line of a roller
-POSITION = {"bottom chord": "below", "web": "on"}
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -53,7 +54,8 @@ def picture_of(truss: Truss) -> Picture:
         member_names=tuple(_member_name(truss, k) for k in range(len(members))),
         panel_points=tuple(_panel_point(truss, k) for k in range(len(truss.topology.nodes))),
         bearings=tuple(
-            Label(text=truss.topology.nodes[n], at=(float(x[n]), float(y[n]) - below), position="below") for n in bearings
+            Label(text=truss.topology.nodes[n], at=(float(x[n]), float(y[n]) - below), position="below")
+            for n in bearings
         ),
         box=(float(x.min()), float(y.min()) - below, float(x.max()), float(y.max())),
     )
@@ -99,10 +101,16 @@ def _support(truss: Truss, number: int) -> list[tuple[Point, ...]]:
 def _member_name(truss: Truss, k: int) -> Label:
     member = truss.topology.members[k]
     (x0, y0), (x1, y1) = _point(truss, member.start), _point(truss, member.end)
-    uphill = "left" if y1 >= y0 else "right"  # the side on which a sloping line falls away from its name
-    return Label(
-        text=member.name, at=((x0 + x1) / 2, (y0 + y1) / 2), position=POSITION.get(member.role, uphill)
-    )
+    middle = ((x0 + x1) / 2, (y0 + y1) / 2)
+    level = abs(y1 - y0) < LEVEL * abs(x1 - x0)
+    if member.role == "web" or (member.role == "bottom chord" and level):
+        return Label(text=member.name, at=middle, position="on" if member.role == "web" else "below")
+    # Off a sloping line, above the roof and below the ceiling, to the side on which the line goes away from the name.
+    above = member.role != "bottom chord"
+    lift = LIFT * _mark(truss) * (1 if above else -1)
+    cos, sin = truss.direction[k]
+    at = (middle[0] - lift * float(sin), middle[1] + lift * float(cos))
+    return Label(text=member.name, at=at, position="left" if (y1 >= y0) == above else "right")
 
 
 def _panel_point(truss: Truss, node: int) -> Label:

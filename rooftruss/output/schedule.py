@@ -51,7 +51,8 @@ class Column:
     """One column of a grid.
 
     kind: a key of units.US (an SI value), or "text", "count" (whole number), "combination" (its number from 1, 0 where
-    nothing acts), "pitch" (rise over run), "result" (whether the limit is met), "measure" (a Measure), "unit" (a kind).
+    nothing acts), "pitch" (rise over run), "result" (whether the limit is met), "measure" (a Measure), "unit" (a kind
+    or a Measure), "own" (a Measure, shown as two columns: value and unit).
     """
 
     heading: str
@@ -100,10 +101,16 @@ def shown_grid(grid: Grid, units: str) -> ShownGrid:
     >>> shown_grid(grid, "US").rows
     ((28.0, '6/12'),)
     """
-    columns = tuple(_column(column, units) for column in grid.columns)
-    turn = [_turned(column.kind, units) for column in grid.columns]
-    rows = tuple(tuple(f(cell) for f, cell in zip(turn, row, strict=True)) for row in grid.rows)
+    places = [(at, part) for at, column in enumerate(grid.columns) for part in _parts(column)]
+    columns = tuple(_column(column, units) for _, column in places)
+    turn = [(at, _turned(column.kind, units)) for at, column in places]
+    rows = tuple(tuple(f(row[at]) for at, f in turn) for row in grid.rows)
     return ShownGrid(grid.title, columns, rows)
+
+
+def _parts(column: Column) -> tuple[Column, ...]:
+    """The columns that stand for a column."""
+    return (Column(column.heading, "measure"), Column("unit", "unit")) if column.kind == "own" else (column,)
 
 
 def display(kind: str, units: str) -> Display:
@@ -136,7 +143,7 @@ def _turned(kind: str, units: str) -> Callable[[Cell], ShownCell]:
         "result": lambda cell: MET[cell] if isinstance(cell, bool) else None,
         "pitch": lambda cell: _pitch(cell, units) if isinstance(cell, float) else None,
         "measure": lambda cell: _measure(cell, units) if isinstance(cell, Measure) else None,
-        "unit": lambda cell: _unit(cell, units) if isinstance(cell, str) else None,
+        "unit": lambda cell: _unit(cell.kind if isinstance(cell, Measure) else str(cell), units) if cell else None,
     }
     if kind in special:
         return special[kind]

@@ -235,12 +235,17 @@ def named_combinations_grid(design: Design, numbering: Numbering) -> Grid:
     """The combinations that the other grids of the truss name by number."""
     outcome, combinations = design.outcome, design.run.combinations
     effects, reactions = outcome.envelope, outcome.reactions
-    peaks = (effects.tension, effects.compression, effects.moment, effects.shear, outcome.utilisation, outcome.bearing)
-    peaks += (reactions.down, reactions.uplift, reactions.horizontal)
+    peaks = [effects.tension, effects.compression, effects.moment, effects.shear, outcome.utilisation, outcome.bearing]
+    peaks += [reactions.down, reactions.uplift, reactions.horizontal]
     used = {int(n) for p in peaks for n in p.combination} | {int(n) for n in outcome.deflection.combination}
     number = numbering.combinations_of(design)
     rows = tuple(
-        (number[n], combinations.names[n].removeprefix("deflection, "), combinations.clauses[n], combinations.durations[n])
+        (
+            number[n],
+            combinations.names[n].removeprefix("deflection, "),
+            combinations.clauses[n],
+            combinations.durations[n],
+        )
         for n in sorted(used - {-1})
     )
     columns = (Column("Comb.", "combination"), Column("Combination"), Column("Clause"), Column("Load duration"))

@@ -130,7 +130,10 @@ class _Builder:
     def _tails(self) -> list[Member]:
         if not self.layout.tails:
             return []
-        ends = [(self.nodes["tail", 0], self.nodes["top", 0]), (self.nodes["top", self.top_last], self.nodes["tail", 1])]
+        ends = [
+            (self.nodes["tail", 0], self.nodes["top", 0]),
+            (self.nodes["top", self.top_last], self.nodes["tail", 1]),
+        ]
         return [
             Member(
                 name=f"tail {k + 1}",
@@ -199,7 +202,9 @@ class _Builder:
 def place(layout: Layout, outline: Outline, bearing: float | np.ndarray) -> Truss:
     """The layout at the coordinates of an outline; batch axes of the outline lead."""
     builder = _Builder(layout)
-    shape = np.broadcast_shapes(*(np.shape(getattr(outline, f)) for f in ("span", "pitch", "bottom_pitch", "heel", "overhang")))
+    shape = np.broadcast_shapes(
+        *(np.shape(getattr(outline, f)) for f in ("span", "pitch", "bottom_pitch", "heel", "overhang"))
+    )
     made = topology(layout)
     xy = np.empty((*shape, len(made.nodes), 2))
     for (chord, k), number in builder.nodes.items():

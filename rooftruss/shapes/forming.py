@@ -49,7 +49,9 @@ def bottom_pitch_of(spec: TrussSpec) -> float:
     """
     if not find_shape(spec.shape).sloping_bottom:
         if spec.bottom_pitch:
-            raise JobError(f"bottom_pitch: a {spec.shape} truss has a level bottom chord; leave it out or use 'scissor'")
+            raise JobError(
+                f"bottom_pitch: a {spec.shape} truss has a level bottom chord; leave it out or use 'scissor'"
+            )
         return 0.0
     pitch = SCISSOR_SHARE * spec.pitch if spec.bottom_pitch is None else spec.bottom_pitch
     if not 0 < pitch < 0.9 * spec.pitch:
@@ -121,7 +123,9 @@ def _top_splices(points: Sequence[float], span: float, slope: float, tail: float
     return tuple(sorted(left + [2 * peak - k for k in left]))
 
 
-def _bottom_splices(points: Sequence[float], span: float, slope: float, stock: float, *, split: bool) -> tuple[int, ...]:
+def _bottom_splices(
+    points: Sequence[float], span: float, slope: float, stock: float, *, split: bool
+) -> tuple[int, ...]:
     """Panel points of the bottom chord that are splices, symmetric; the fewest that the stock allows."""
     last = len(points) - 1
     places = [f * span * slope for f in points]

@@ -107,4 +107,6 @@ class Truss:
 
     def one(self, index: int) -> "Truss":
         """The truss number `index` of a batch with one leading axis."""
-        return Truss(topology=self.topology, xy=self.xy[index], bearing=np.broadcast_to(self.bearing, self.xy.shape[:-2])[index])
+        return Truss(
+            topology=self.topology, xy=self.xy[index], bearing=np.broadcast_to(self.bearing, self.xy.shape[:-2])[index]
+        )

@@ -87,10 +87,16 @@ SHAPES = {
     shape.name: shape
     for shape in (
         Shape(name="king post", title="one centre post; short spans", panel_counts=(2,), webbing=king_post),
-        Shape(name="queen post", title="centre post and two struts; short spans", panel_counts=(4,), webbing=queen_post),
+        Shape(
+            name="queen post", title="centre post and two struts; short spans", panel_counts=(4,), webbing=queen_post
+        ),
         Shape(name="fink", title="W-shaped webs; few, short compression webs", panel_counts=(4, 6, 8), webbing=fink),
-        Shape(name="howe", title="verticals in tension, diagonals in compression", panel_counts=(4, 6, 8), webbing=howe),
-        Shape(name="pratt", title="verticals in compression, diagonals in tension", panel_counts=(4, 6, 8), webbing=pratt),
+        Shape(
+            name="howe", title="verticals in tension, diagonals in compression", panel_counts=(4, 6, 8), webbing=howe
+        ),
+        Shape(
+            name="pratt", title="verticals in compression, diagonals in tension", panel_counts=(4, 6, 8), webbing=pratt
+        ),
         Shape(
             name="scissor",
             title="sloping bottom chords for a raised ceiling, Howe webs",

@@ -16,12 +16,15 @@ FIRST, LAST = ("Quote",), ("Combinations", "Cases", "Geometry", "Assumptions", "
 
 
 def write_workbook(job: Job, designs: Sequence[Design], path: str | Path) -> None:
-    """Write the quote of a job as an .xlsx file. Raises OutputError; an existing file is kept unless the new one is whole."""
+    """Write the quote of a job as an .xlsx file; a file that is there stays unless the new one is whole.
+
+    Raises OutputError with the path and what to do.
+    """
     from openpyxl import Workbook
 
     book = Workbook()
     looks = Looks(book)
-    book.remove(book.active)
+    book.remove(book.worksheets[0])
     names = [*FIRST, *LAST]
     marks: list[str] = []
     for design in designs:

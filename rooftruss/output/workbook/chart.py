@@ -6,20 +6,21 @@ The points stand on a sheet of their own, so that the drawing can be checked and
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cache
-from typing import TYPE_CHECKING, Any
+from typing import Any
 
 from rooftruss.output.picture import Label, Picture
 from rooftruss.output.schedule import display
 from rooftruss.output.workbook.sheet import Page
 from rooftruss.output.workbook.styles import plain
 
-if TYPE_CHECKING:
-    from openpyxl.chart import ScatterChart
-    from openpyxl.chart.series import XYSeries
-
 POSITIONS = {"above": "t", "below": "b", "left": "l", "right": "r", "on": "ctr"}
-LINES = {"top chord": ("22303C", 28000), "bottom chord": ("22303C", 28000), "web": ("5B6B78", 15000), "support": ("22303C", 9500)}
-MARGIN, LABEL_ROOM = 1.2, 0.8  # around the drawing, at the sides and above and below [cm]
+LINES = {
+    "top chord": ("22303C", 28000),
+    "bottom chord": ("22303C", 28000),
+    "web": ("5B6B78", 15000),
+    "support": ("22303C", 9500),
+}
+MARGIN, LABEL_ROOM = 1.2, 1.1  # around the drawing, at the sides and above and below [cm]
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,7 +48,7 @@ class PointSheet:
         self.page = page
         self.shown = display("length", page.units)
 
-    def column(self, heading: str, points: Sequence[tuple[str, float | None, float | None]], first: int) -> tuple[Any, Any]:
+    def column(self, heading: str, points: Sequence[tuple[str, float, float]], first: int) -> tuple[Any, Any]:
         """Put a list under the current row at sheet column `first`; references to its x and its y."""
         from openpyxl.chart import Reference
 
@@ -61,18 +62,18 @@ class PointSheet:
             page.row += 1
             page.put(first, word)
             for k, value in enumerate(place, start=1):
-                page.put(first + k, None if value is None else round(self.shown.of(value), 6), "body", self.shown.number_format)
+                page.put(first + k, round(self.shown.of(value), 6), "body", self.shown.number_format)
         last, page.row = page.row, top
-        start = top + 2
-        return tuple(Reference(page.sheet, min_col=first + k, min_row=start, max_row=last) for k in (1, 2))  # type: ignore[return-value]
+        x, y = (Reference(page.sheet, min_col=first + k, min_row=top + 2, max_row=last) for k in (1, 2))
+        return x, y
 
 
-def elevation(picture: Picture, points: PointSheet, frame: Frame) -> "ScatterChart":
+def elevation(picture: Picture, points: PointSheet, frame: Frame) -> Any:
     """Chart of a picture; writes its points under the current row of the point sheet."""
     from openpyxl.chart import ScatterChart
     from openpyxl.chart.layout import Layout, ManualLayout
 
-    chart = ScatterChart()
+    chart: Any = ScatterChart()
     chart.style, chart.legend, chart.scatterStyle = 2, None, "lineMarker"
     chart.width, chart.height = frame.width, frame.height
     chart.layout = Layout(
@@ -95,20 +96,18 @@ def elevation(picture: Picture, points: PointSheet, frame: Frame) -> "ScatterCha
     return chart
 
 
-def _series(chart: "ScatterChart", picture: Picture, points: PointSheet) -> None:
-    rows, start = [], points.page.row
-    for path in picture.paths:
-        for stroke in path.strokes:
-            rows.append((path.name, [(path.name, *p) for p in stroke]))
-    flat = [point for _, stroke in rows for point in stroke]
+def _series(chart: Any, picture: Picture, points: PointSheet) -> None:
+    start = points.page.row
+    strokes = [(path.name, stroke) for path in picture.paths for stroke in path.strokes]
+    flat = [(name, *point) for name, stroke in strokes for point in stroke]
     x, y = points.column("Line", flat, 9)
     at = start + 2
-    for name, stroke in rows:
+    for name, stroke in strokes:
         chart.series.append(_line(name, _part(x, at, len(stroke)), _part(y, at, len(stroke))))
         at += len(stroke)
     lists = (
         ("Panel point", picture.panel_points, 1, True),
-        ("Member", picture.member_names, 5, False),
+        ("Name of", picture.member_names, 5, False),
         ("Bearing", picture.bearings, 13, True),
     )
     for heading, labels, first, bold in lists:
@@ -123,7 +122,7 @@ def _part(reference: Any, first: int, count: int) -> Any:
     return Reference(reference.worksheet, min_col=reference.min_col, min_row=first, max_row=first + count - 1)
 
 
-def _line(name: str, x: Any, y: Any) -> "XYSeries":
+def _line(name: str, x: Any, y: Any) -> Any:
     from openpyxl.chart import Series
     from openpyxl.chart.marker import Marker
     from openpyxl.chart.shapes import GraphicalProperties
@@ -133,10 +132,10 @@ def _line(name: str, x: Any, y: Any) -> "XYSeries":
     colour, width = LINES[name]
     series.marker, series.smooth = Marker(symbol="none"), False
     series.spPr = GraphicalProperties(ln=LineProperties(solidFill=colour, w=width, cap="rnd"))
-    return series  # type: ignore[no-any-return]
+    return series
 
 
-def _labels(heading: str, labels: Sequence[Label], x: Any, y: Any, *, bold: bool) -> "XYSeries":
+def _labels(heading: str, labels: Sequence[Label], x: Any, y: Any, *, bold: bool) -> Any:
     from openpyxl.chart import Series
     from openpyxl.chart.label import DataLabelList
     from openpyxl.chart.marker import Marker
@@ -148,7 +147,7 @@ def _labels(heading: str, labels: Sequence[Label], x: Any, y: Any, *, bold: bool
     series.spPr = GraphicalProperties(ln=LineProperties(noFill=True))
     made = [_word(k, label, bold) for k, label in enumerate(labels) if label.position]
     series.dLbls = DataLabelList(dLbl=made, **dict.fromkeys(SHOWN, False))
-    return series  # type: ignore[no-any-return]
+    return series
 
 
 SHOWN = ("showLegendKey", "showVal", "showCatName", "showSerName", "showPercent", "showBubbleSize")

@@ -4,8 +4,8 @@ from collections.abc import Sequence
 
 from rooftruss.basis.job import Job
 from rooftruss.design.design import Design
-from rooftruss.output.cautions import SHORT_CAUTIONS
 from rooftruss.output.case_grids import cases_grids
+from rooftruss.output.cautions import SHORT_CAUTIONS
 from rooftruss.output.job_grids import assumptions_grid, cautions_grid, combinations_grid, quote_grid
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.picture import picture
@@ -22,8 +22,8 @@ from rooftruss.output.workbook.chart import PointSheet, elevation, frame_of
 from rooftruss.output.workbook.sheet import LINE_HEIGHT, Page, for_print
 from rooftruss.units import shown
 
-QUOTE_WIDTHS = (7, 8.5, 10, 7, 7, 8, 9, 15, 15, 15, 8, 9, 8, 9, 8, 8, 7, 15)
-TRUSS_WIDTHS = (11.5, 12, 8, 14.5, 9, 10, 6, 12, 6, 9, 6, 9.5, 6, 10, 6, 9, 26, 16, 10)
+QUOTE_WIDTHS = (7, 8.5, 10, 7, 7, 8, 9, 15.5, 15.5, 15.5, 9, 9.5, 9.5, 10, 8.5, 8.5, 7, 17)
+TRUSS_WIDTHS = (11, 11, 8, 13.5, 7.5, 8.5, 5.5, 11.5, 5.5, 8.5, 5.5, 8.5, 5.5, 9.5, 5.5, 9, 24.5, 15.5, 9.5)
 REACTION_SLOTS = (1, 2, 5, 6, 7, 8, 9, 10, 11, 14, 15, 16, 17)
 DEFLECTION_SLOTS = (1, 2, 6, 8, 14, 15, 16, 17)
 LOADING_SLOTS = (1, 2, 5, 6, 8, 10, 12, 14, 17)
@@ -42,7 +42,10 @@ def quote_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
     """The summary: who and what, one row per truss, what is not met, cautions."""
     page.widths(QUOTE_WIDTHS)
     page.line(job.title or "Roof trusses", "title", 24)
-    page.line("   ".join(t for t in (job.client and f"Client: {job.client}", job.number and f"Job: {job.number}") if t), "strong")
+    page.line(
+        "   ".join(t for t in (job.client and f"Client: {job.client}", job.number and f"Job: {job.number}") if t),
+        "strong",
+    )
     scheme = designs[0].run.family.scheme if designs else None
     if scheme:
         page.line(f"{scheme.title}. Loads: {scheme.load_standard}. Timber: {scheme.timber_standard}.", "note")
@@ -144,7 +147,9 @@ def combinations_page(page: Page, job: Job, designs: Sequence[Design], numbering
     wide = {"No.": 6, "Clause": 13, "Combination": 54, "Limit state": 22, "Load duration": 14, "Trusses": 14}
     page.widths([wide.get(c.heading, 9) for c in grid.columns])
     page.line(grid.title, "title", 24)
-    page.line("A factor multiplies the cases beside it, numbered as on the sheet Cases. Cases of one action exclude each other.")
+    page.line(
+        "A factor multiplies the cases beside it (numbers of the sheet Cases). Cases of one action exclude each other."
+    )
     page.row += 1
     page.grid(grid, title="", look="data")
     for_print(page, job, landscape=True, repeat="4:4", freeze="A5")

@@ -1,7 +1,7 @@
 """A sheet that is filled from the top: titles, notes and grids; and how it prints."""
 
 from collections.abc import Callable, Sequence
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from rooftruss.basis.job import Job
 from rooftruss.output.schedule import NOTHING, Grid, ShownCell, ShownColumn, ShownGrid, shown_grid
@@ -60,7 +60,7 @@ class Page:
 
     def put(self, column: int, value: ShownCell, look: str = "body", number_format: str = "", align: str = "") -> None:
         """Write one cell of the current row; text stays text whatever it looks like."""
-        cell = self.sheet.cell(self.row, column)
+        cell: Any = self.sheet.cell(self.row, column)
         if isinstance(value, str):
             text = plain(value)
             cell.value = text
@@ -88,7 +88,9 @@ class Page:
         scale = min(1.0, (width - 2 * SIDE * 72) / (self.width_cm / 2.54 * 72))
         room = (depth - (ABOVE + BELOW) * 72) / scale
         first = self._page_starts[-1]
-        heights = [self.sheet.row_dimensions[r].height or LINE_HEIGHT for r in (*range(1, repeated + 1), *range(first, self.row))]
+        known = self.sheet.row_dimensions
+        rows_used = (*range(1, repeated + 1), *range(first, self.row))
+        heights = [(known[r].height if r in known else None) or LINE_HEIGHT for r in rows_used]
         if self.row > first and sum(heights) + rows * LINE_HEIGHT > room:
             self.sheet.row_breaks.append(Break(id=self.row - 1))
             self._page_starts.append(self.row)
@@ -102,12 +104,18 @@ class Page:
         """Text over the whole width, on as many lines as it needs."""
         last = len(self._widths)
         self.sheet.merge_cells(start_row=self.row, end_row=self.row, start_column=1, end_column=last)
-        self.put(1, text, look, align="wrap")
+        self.put(1, text, look, align="lines")
         self._height([(text, sum(self._widths))])
         self.row += 1
 
     def grid(
-        self, grid: Grid, slots: Sequence[int] = (), *, title: str | None = None, wrap: Sequence[int] = (), look: str = "body"
+        self,
+        grid: Grid,
+        slots: Sequence[int] = (),
+        *,
+        title: str | None = None,
+        wrap: Sequence[int] = (),
+        look: str = "body",
     ) -> None:
         """A grid with its title and headings; `slots` are the sheet columns of its columns, A on when left out.
 
@@ -137,7 +145,10 @@ class Page:
             self.row += 1
 
     def _rows(self, shown: ShownGrid, slots: Sequence[int], wrap: Sequence[int], usual: str) -> None:
-        aligned = ["wrap" if k in wrap else _align(c, slot) for k, (c, slot) in enumerate(zip(shown.columns, slots, strict=True))]
+        aligned = [
+            "wrap" if k in wrap else _align(c, slot)
+            for k, (c, slot) in enumerate(zip(shown.columns, slots, strict=True))
+        ]
         formats = [c.number_format for c in shown.columns]
         fails = _not_met(shown.columns)
         gaps = sorted(set(range(1, max(slots) + 1)) - set(slots))
@@ -153,7 +164,7 @@ class Page:
 
     def _height(self, texts: Sequence[tuple[str, float]]) -> None:
         """Make the current row high enough for texts in columns of these widths."""
-        lines = max((-(-len(text) // max(int(width - 1), 1)) for text, width in texts), default=1)
+        lines = max((-(-len(text) // max(int(1.25 * width - 1), 1)) for text, width in texts), default=1)
         if lines > 1:
             self.sheet.row_dimensions[self.row].height = LINE_HEIGHT * lines + 1
 
@@ -172,7 +183,7 @@ def _not_met(columns: Sequence[ShownColumn]) -> Emphasis:
 
 
 def for_print(page: Page, job: Job, *, landscape: bool, repeat: str = "", freeze: str = "") -> None:
-    """Paper, margins, running lines, repeated rows ("1:3"), frozen panes ("B4"); all columns fit the width of a page."""
+    """Paper, margins, running lines, repeated rows ("1:3"), frozen panes ("B4"); all columns fit one page width."""
     from openpyxl.utils import get_column_letter
     from openpyxl.worksheet.properties import PageSetupProperties
 
@@ -194,7 +205,8 @@ def for_print(page: Page, job: Job, *, landscape: bool, repeat: str = "", freeze
 
 
 def _running_lines(sheet: "Worksheet", job: Job) -> None:
-    above, below = sheet.oddHeader, sheet.oddFooter
+    above: Any = sheet.oddHeader
+    below: Any = sheet.oddFooter
     texts = {
         above.left: running(f"{job.number}  {job.title}".strip()),
         above.right: running(job.client),

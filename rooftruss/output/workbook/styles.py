@@ -14,15 +14,18 @@ LONGEST = 32_000  # characters of a cell; the file format ends at 32 767
 
 
 class Looks:
-    """Styles of one workbook by look: title, section, head (above units), heads (alone), unit, body, data, plain, words, strong, fail,
-    note, total."""
+    """Styles of one workbook by look.
+
+    Looks: title, section, head (above units), heads (alone), unit, body, data, plain, words, strong, fail, note, total.
+    """
 
     def __init__(self, book: "Workbook") -> None:
-        self._sheet = book.active
+        self._sheet = book.worksheets[0]  # only lends the cells that styles are made with its workbook
         self._made: dict[tuple[str, str, str, bool], Any] = {}
 
     def style(self, look: str, number_format: str = "", align: str = "", *, quoted: bool = False) -> Any:
-        """The style of a look; `align` "left", "inset" (left, clear of a number before it), "right" or "wrap" (inset, on several lines).
+        """The style of a look; `align` "left", "inset" (left, clear of a number before it), "right", "lines"
+        (left, on several lines) or "wrap" (inset, on several lines).
 
         quoted marks text that a spreadsheet would take for a formula when it is typed again.
         """
@@ -35,7 +38,7 @@ class Looks:
         from openpyxl.cell.cell import Cell
         from openpyxl.styles import Alignment, Border, Font, PatternFill, Side
 
-        cell = Cell(self._sheet, row=1, column=1)
+        cell: Any = Cell(self._sheet, row=1, column=1)
         size = {"title": 14, "section": 11, "unit": 8, "note": 8}.get(look, 9)
         bold = look in ("title", "section", "head", "heads", "strong", "fail", "total")
         cell.font = Font(name=FONT, size=size, bold=bold, italic=look == "note", color=INK)
@@ -55,10 +58,10 @@ class Looks:
         }
         cell.border = lines.get(look, Border())
         cell.alignment = Alignment(
-            horizontal="left" if align in ("wrap", "inset") else align or None,
+            horizontal="left" if align in ("wrap", "lines", "inset") else align or None,
             indent=1 if align in ("wrap", "inset") else 0,
             vertical={"head": "bottom", "heads": "bottom", "unit": "bottom", "words": "top"}.get(look, "center"),
-            wrap_text=align == "wrap" or look in ("head", "heads") or None,
+            wrap_text=align in ("wrap", "lines") or look in ("head", "heads") or None,
         )
         if number_format:
             cell.number_format = number_format

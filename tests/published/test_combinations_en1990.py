@@ -1,0 +1,143 @@
+"""Combinations of EN 1990:2002+A1:2005 as the schemes hold them, against published and hand values."""
+
+import itertools
+
+import numpy as np
+import pytest
+
+from rooftruss.analysis.combinations import CaseHead, combine
+from rooftruss.basis.schemes import load_scheme
+from rooftruss.timber.ec5_tables import modification_factor
+
+PSI_0 = {"S": 0.5, "W": 0.6, "L": 0.7, "Lr": 0.0}  # Table A1.1, sites up to 1000 m, loft as category A
+EXCLUDED = ({"Lr", "S"}, {"Lr", "W"})  # EN 1991-1-1, 3.3.2(1)
+
+
+def heads(*actions: str) -> list[CaseHead]:
+    """A dead load that is the same at its most and least, and one case of each action; "S S" are two alternatives."""
+    numbers: dict[str, int] = {}
+    out = [CaseHead(name="G", short="", action="D", pattern="both")]
+    for action in actions:
+        numbers[action] = numbers.get(action, 0) + 1
+        name = f"{action}{numbers[action]}"
+        out.append(CaseHead(name=name, short=name, action=action, pattern=""))
+    return out
+
+
+def found(scheme: str, *actions: str, kind: str = "") -> set[tuple[float, ...]]:
+    """Factors of the combinations of one kind ("": strength), in the order G, then `actions`."""
+    made = combine(heads(*actions), load_scheme(scheme), {})
+    rows = [k for k, other in enumerate(made.kinds) if other == kind]
+    return {tuple(round(float(f), 6) for f in made.factors[k]) for k in rows}
+
+
+def expected_610(gammas: tuple[float, ...], actions: tuple[str, ...], gamma_Q: float = 1.5) -> set[tuple[float, ...]]:
+    """(6.10) by its definition: each action leading in turn, every subset of the compatible others with psi_0."""
+    out = set()
+    for gamma_G, size in itertools.product(gammas, range(len(actions) + 1)):
+        for acting in itertools.combinations(actions, size):
+            if any(pair <= set(acting) for pair in EXCLUDED):
+                continue
+            for leading in acting or ("",):
+                factors = {a: gamma_Q * (1.0 if a == leading else PSI_0[a]) for a in acting}
+                out.add((gamma_G, *(round(factors.get(a, 0.0), 6) for a in actions)))
+    return out
+
+
+def test_every_combination_of_6_10_is_there():
+    actions = ("S", "W", "L", "Lr")
+    missing = expected_610((1.35, 1.0), actions) - found("en1990-6.10", *actions)
+    assert not missing
+
+
+def test_the_twelve_combinations_of_snow_wind_and_maintenance():
+    # EN 1990, (6.10) by hand: G | S | S+0.9W | W | W+0.75S | Q_H for each of the two factors on G
+    twelve = {
+        (g, *rest)
+        for g in (1.35, 1.0)
+        for rest in ((0, 0, 0), (1.5, 0, 0), (1.5, 0.9, 0), (0, 1.5, 0), (0.75, 1.5, 0), (0, 0, 1.5))
+    }
+    assert twelve == expected_610((1.35, 1.0), ("S", "W", "Lr"))
+    extra = found("en1990-6.10", "S", "W", "Lr") - twelve
+    # beyond them: uplift with 0.9 G (Table A1.2(A)), and accompanying loads without a leading one, never the worse
+    assert extra == {
+        (0.9, 0, 0, 0),
+        (0.9, 0, 1.5, 0),
+        *((g, s, w, 0) for g in (1.35, 1.0) for s, w in ((0.75, 0), (0, 0.9))),
+    }
+
+
+def test_published_factors():
+    # Steel Buildings in Europe (2010), Multi-Storey Part 3, pp. 3-5 and 3-6: snow leads 1.35, 1.5, 0.9; wind 1.35, 1.5, 0.75
+    strength = found("en1990-6.10", "S", "W")
+    assert {(1.35, 1.5, 0.9), (1.35, 0.75, 1.5)} <= strength
+    # the same pages, serviceability, characteristic: G + S + 0.6 W and G + W + 0.5 S
+    assert {(1.0, 1.0, 0.6), (1.0, 0.5, 1.0)} <= found("en1990-6.10", "S", "W", kind="instantaneous")
+    assert found("en1990-6.10", "S", "W", kind="instantaneous") == found("en1990-6.10", "S", "W", kind="final")
+
+
+def test_maintenance_never_stands_with_snow_or_wind():
+    for scheme in ("en1990-6.10", "en1990-6.10ab"):
+        for kind in ("", "instantaneous", "final"):
+            for _, s, w, q_h in found(scheme, "S", "W", "Lr", kind=kind):
+                assert not (q_h and (s or w))
+
+
+def test_the_pair_6_10a_and_6_10b():
+    # Table A1.2(B), xi = 0.85: 0.85 x 1.35 = 1.1475 with the leading load in full, 1.35 with every load by psi_0
+    made = found("en1990-6.10ab", "S", "W")
+    assert {(1.35, 0.75, 0.9), (1.1475, 1.5, 0.9), (1.1475, 0.75, 1.5), (1.0, 1.5, 0.9)} <= made
+    assert all(s <= 0.75 and w <= 0.9 for g, s, w in made if g == 1.35)
+    assert {g for g, _, _ in made} == {1.35, 1.1475, 1.0, 0.9}  # xi does not reduce the favourable 1.0
+
+
+def test_least_dead_load_stands_where_it_is_favourable():
+    most, least = (CaseHead(name=f"G {w}", short=w, action="D", pattern=w) for w in ("most", "least"))
+    wind = CaseHead(name="W", short="W", action="W", pattern="")
+    made = combine([most, least, wind], load_scheme("en1990-6.10"), {})
+    strength = {tuple(f) for f in made.factors[made.strength].round(6).tolist()}
+    assert {(1.35, 0, 1.5), (0, 1.0, 1.5), (0, 0.9, 1.5)} <= strength
+    assert all(m == 0 or n == 0 for m, n, _ in strength)  # never two factors on one source
+
+
+def test_design_effects():
+    # by hand: N_G 4.2, N_S 6.0, N_W -7.5 kN: largest 14.67, smallest -7.05 with 1.0 G and -7.47 kN with 0.9 G
+    strength = np.array(sorted(found("en1990-6.10", "S", "W"))) @ np.array([4.2, 6.0, -7.5])
+    assert strength.max() == pytest.approx(14.67)
+    assert strength.min() == pytest.approx(-7.47)
+    with_one = [c for c in found("en1990-6.10", "S", "W") if c[0] != 0.9]
+    assert min(np.array(with_one) @ np.array([4.2, 6.0, -7.5])) == pytest.approx(-7.05)
+    service = np.array(sorted(found("en1990-6.10", "S", "W", kind="instantaneous"))) @ np.array([4.2, 6.0, -7.5])
+    assert service.max() == pytest.approx(10.2)
+
+
+def test_hold_down_force():
+    # EN 1990, Table A1.2(A) by hand: R_G 3.1, R_W -6.4, R_S 4.0 kN: 2.79 - 9.60 = -6.81
+    effects = np.array(sorted(found("en1990-6.10", "W", "S"))) @ np.array([3.1, -6.4, 4.0])
+    assert effects.min() == pytest.approx(-6.81)
+
+
+def test_envelope_of_a_member_with_three_winners():
+    # by hand: N G -4.0, S -6.0 -4.2 -4.9, W 5.5 -1.2 kN; snow short-term, wind instantaneous, service class 1
+    unit = np.array([-4.0, -6.0, -4.2, -4.9, 5.5, -1.2])
+    made = combine(heads("S", "S", "S", "W", "W"), load_scheme("en1990-6.10"), {})
+    assert len(expected_610((1.35, 1.0), ("S", "W"))) == 10  # 36 with the three snow and two wind alternatives put in
+    N = made.factors[made.strength] @ unit
+    names = [n for n, s in zip(made.names, made.strength, strict=True) if s]
+    k_mod = np.array([modification_factor(d, 1)[0] for d in np.array(made.durations)[made.strength]])
+    assert N.min() == pytest.approx(-15.48)
+    assert names[int(N.argmin())] == "1.35G + 1.5S(S1) + 0.9W(W2)"
+    with_one = np.array([not n.startswith("0.9G") for n in names])
+    assert N[with_one].max() == pytest.approx(4.25)
+    assert (N / k_mod).min() == pytest.approx(-16.0)
+    assert names[int((N / k_mod).argmin())] == "1.35G + 1.5S(S1)"
+
+
+def test_duration_is_that_of_the_shortest_load_present():
+    made = combine(heads("S", "W", "L", "Lr"), load_scheme("en1990-6.10"), {})
+    by_name = dict(zip(made.names, made.durations, strict=True))
+    assert by_name["1.35G"] == "permanent"
+    assert by_name["1.35G + 1.5Q(L1)" if "1.35G + 1.5Q(L1)" in by_name else "1.35G + 1.5Q"] == "long-term"
+    assert by_name["1.35G + 1.5S(S1)"] == "short-term"
+    assert by_name["1.35G + 1.5S(S1) + 0.9W(W1)"] == "instantaneous"
+    assert by_name["1.35G + 1.5Q_H(Lr1) + 1.05Q(L1)"] == "short-term"

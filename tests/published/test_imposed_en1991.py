@@ -1,0 +1,84 @@
+"""Imposed loads of EN 1991-1-1:2002: category H and its walking person, the loft."""
+
+import numpy as np
+import pytest
+
+from rooftruss.errors import OutOfScopeError
+from rooftruss.loads.imposed_en1991 import category_h, loft_cases, roof_live_cases, walked_points
+from rooftruss.loads.roof import Roof
+from rooftruss.shapes.catalogue import Layout, place
+from rooftruss.shapes.outline import Outline
+
+ROOF = Roof(
+    pitch=np.asarray(0.5),
+    span=np.asarray(8.0),
+    bearing_span=np.asarray(7.9),
+    overhang=np.asarray(0.5),
+    rise=np.asarray(1.975),
+    spacing=np.asarray(0.6),
+)
+
+
+def test_category_h():
+    # EN 1991-1-1, Table 6.10: q_k 0.4 kN/m2 within 0.0 to 1.0, Q_k 1.0 kN within 0.9 to 1.5
+    assert category_h("q") == pytest.approx((400.0, 0.0, 1000.0))
+    assert category_h("Q") == pytest.approx((1000.0, 900.0, 1500.0))
+
+
+def test_roof_is_loaded_in_full_and_by_halves():
+    cases = roof_live_cases(ROOF, np.asarray(400.0))
+    assert [(c.short, [load.surface for load in c.loads]) for c in cases] == [
+        ("full", ["left tail", "left slope", "right slope", "right tail"]),
+        ("left", ["left tail", "left slope"]),
+        ("right", ["right slope", "right tail"]),
+    ]
+    assert {c.action for c in cases} == {"Lr"}
+    assert {(load.kind, float(load.pressure)) for c in cases for load in c.loads} == {("plan", 400.0)}
+
+
+def test_no_imposed_load_no_case():
+    assert roof_live_cases(ROOF, np.asarray(0.0)) == []
+    assert loft_cases(np.asarray(0.0)) == []
+
+
+def test_a_roof_in_use_is_refused():
+    with pytest.raises(OutOfScopeError, match=r"roof_live 1\.5 kN/m2: EN 1991-1-1, Table 6\.10 gives up to 1 kN/m2"):
+        roof_live_cases(ROOF, np.asarray(1500.0))
+
+
+def test_loft_loads_the_bottom_chord():
+    (case,) = loft_cases(np.asarray(250.0))
+    assert case.action == "L"
+    assert [(load.surface, load.kind, float(load.pressure)) for load in case.loads] == [("ceiling", "plan", 250.0)]
+
+
+def fink(tails: bool = True):
+    layout = Layout(shape="fink", panels=4, tails=tails, raised_heel=False)
+    zero = np.asarray(0.0)
+    outline = Outline(
+        span=np.asarray(8.0),
+        pitch=np.asarray(0.5),
+        bottom_pitch=zero,
+        heel=zero,
+        overhang=np.asarray(0.5 if tails else 0.0),
+    )
+    return place(layout, outline, 0.1)
+
+
+def test_person_walks_over_every_panel():
+    truss = fink()
+    points = walked_points(truss, 1000.0)
+    x = [float(p.x) for p in points]
+    # tail ends, tail middles, heels, quarter points, ridge, and the middle of each of the four panels
+    assert sorted(x) == pytest.approx([-0.5, -0.25, 0.0, 1.0, 2.0, 3.0, 4.0, 5.0, 6.0, 7.0, 8.0, 8.25, 8.5])
+    assert {p.force for p in points} == {1000.0}
+    assert {p.case.action for p in points} == {"Lr"}
+    assert len({p.case.name for p in points}) == len(points)
+    for p in points:
+        start, end = truss.start_xy[p.member, 0], truss.end_xy[p.member, 0]
+        assert start - 1e-9 <= float(p.x) <= end + 1e-9
+
+
+def test_walk_without_tails_or_without_a_person():
+    assert len(walked_points(fink(tails=False), 1000.0)) == 9
+    assert walked_points(fink(), 0.0) == []
