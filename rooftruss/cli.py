@@ -179,6 +179,25 @@ def _explain(given: argparse.Namespace) -> int:
     return DONE
 
 
+def _inspect_arguments(command: argparse.ArgumentParser) -> None:
+    _job_argument(command)
+    command.add_argument("mark", help="truss, for example T1")
+
+
+def _inspect(given: argparse.Namespace) -> int:
+    from rooftruss.design.idle import idle_summary
+    from rooftruss.output.inspect_grids import inspection_grids
+    from rooftruss.output.terminal import print_cautions, print_grid
+
+    job, design = _design(given.job, given.mark)
+    print(f"{design.spec.mark} {design.spec.shape}: members without force, by inspection of the pin-jointed truss")
+    for heading, grid in inspection_grids(design, idle_summary(design)):
+        print(f"\n{heading}")
+        print_grid(grid, job.units)
+    print_cautions()
+    return DONE
+
+
 def _design(path: Path, mark: str):  # type: ignore[no-untyped-def]
     """The job and the design of one truss of it."""
     from rooftruss.basis.jobform import read_job
@@ -239,7 +258,7 @@ def _grades_arguments(command: argparse.ArgumentParser) -> None:
 
 
 def _units_argument(command: argparse.ArgumentParser) -> None:
-    command.add_argument("--units", choices=("US", "metric"), default="US", help="units of the values (default: US)")
+    command.add_argument("--units", choices=("US", "metric"), help="units of the values; default: those of the table")
 
 
 def _grades(given: argparse.Namespace) -> int:
@@ -251,7 +270,8 @@ def _grades(given: argparse.Namespace) -> int:
     if not found:
         raise JobError(f"no grade holds {' '.join(given.words)!r}; `rooftruss grades` lists them all")
     for family in dict.fromkeys(g.family for g in found):
-        _print(grades_grid([g for g in found if g.family == family]), given.units)
+        system = "US" if family == "NDS" else "metric"
+        _print(grades_grid([g for g in found if g.family == family]), given.units or system)
     return DONE
 
 
@@ -259,7 +279,9 @@ def _sections(given: argparse.Namespace) -> int:
     from rooftruss.basis.sections import sections
     from rooftruss.output.catalogue_grids import sections_grid
 
-    return _print(sections_grid(sections()), given.units)
+    for system in ("US", "metric"):
+        _print(sections_grid(system, sections(system)), given.units or system)
+    return DONE
 
 
 def _print(grid, units: str = "US") -> int:  # type: ignore[no-untyped-def]
@@ -296,6 +318,7 @@ COMMANDS: dict[str, Command] = {
     "compare": ("every shape of the catalogue for one roof", _compare_arguments, _compare),
     "envelope": ("governing effects of every member, or the result file", _envelope_arguments, _envelope),
     "explain": ("the check of one member, clause by clause", _explain_arguments, _explain),
+    "inspect": ("zero-force members of a truss, case by case", _inspect_arguments, _inspect),
     "shapes": ("the shapes of the catalogue", _no_arguments, _shapes),
     "schemes": ("the combination schemes, or the combinations of one", _schemes_arguments, _schemes),
     "grades": ("the grades and their reference values", _grades_arguments, _grades),

@@ -66,8 +66,7 @@ class _Pattern:
     stops: tuple[Array, ...]  # ends of the strips from the windward eave, one more than zones
     zones: tuple[str, ...]
     c_pe: tuple[Array, ...]
-    walls: tuple[str, str]  # wall zones below the first and the last tail
-    h_over_d: Array
+    walls: tuple[Array, Array]  # c_pe of the walls below the first and the last tail
     here: Flags  # trusses of the batch that have this pattern
 
 
@@ -179,8 +178,7 @@ def _duopitch_across(wind: _Wind, side: str, lines: tuple[str, str], here: Flags
         stops=(0 * half, edge, half, half + edge, wind.width),
         zones=zones,
         c_pe=tuple(roof_coefficient("across", z, slope, wind.area, v) for z, v in zip(zones, line_of, strict=True)),
-        walls=("D", "E"),
-        h_over_d=wind.height / wind.span,
+        walls=_walls_across(wind),
         here=here,
     )
 
@@ -196,10 +194,15 @@ def _flat_across(wind: _Wind, side: str, line: str, here: Flags) -> _Pattern:
         stops=(0 * e, np.minimum(e / 10, wind.width), np.minimum(e / 2, wind.width), wind.width),
         zones=zones,
         c_pe=tuple(flat_coefficient(z, wind.area, line if z == "I" else "suction") for z in zones),
-        walls=("D", "E"),
-        h_over_d=wind.height / wind.span,
+        walls=_walls_across(wind),
         here=here,
     )
+
+
+def _walls_across(wind: _Wind) -> tuple[Array, Array]:
+    """c_pe of the windward and the leeward wall, D and E; EN 1991-1-4, Table 7.1."""
+    h_over_d = wind.height / wind.span
+    return wall_coefficient("D", h_over_d), wall_coefficient("E", h_over_d)
 
 
 def _e_across(wind: _Wind) -> Array:
@@ -220,16 +223,13 @@ def _along(wind: _Wind) -> Iterator[_Pattern]:
 
 
 def _along_pattern(wind: _Wind, zone: str, e: Array, line: str, here: Flags) -> _Pattern:
-    """One zone over the whole truss, or F, G, F next to a gable; EN 1991-1-4, Fig. 7.8c) and Tables 7.2, 7.4b.
-
-    Wall zones below the tails: A next to the gable, B beside H, C beside I where the walls reach beyond e.
-    """
+    """One zone over the whole truss, or F, G, F next to a gable; EN 1991-1-4, Fig. 7.8c) and Tables 7.2, 7.4b."""
     flat = wind.slope < constant("flattest")
     slope = np.maximum(wind.slope, constant("flattest"))
     zones = ("F", "G", "F") if zone == "F" else (zone,)
     corner = np.minimum(e / 4, wind.width / 2)
     inner = (corner, wind.width - corner) if zone == "F" else ()
-    wall = {"F": "A", "H": "B", "I": "C" if np.all(wind.length > e) else "B"}[zone]
+    wall = _wall_along(wind, zone, e)
     word = ", pressure" if line == "pressure" else ""
     return _Pattern(
         name=f"wind along the ridge, zone {zone}{word}",
@@ -242,9 +242,14 @@ def _along_pattern(wind: _Wind, zone: str, e: Array, line: str, here: Flags) -> 
             for z in zones
         ),
         walls=(wall, wall),
-        h_over_d=np.full_like(wind.width, wind.height / wind.length),
         here=here,
     )
+
+
+def _wall_along(wind: _Wind, zone: str, e: Array) -> Array:
+    """c_pe of the side walls beside a truss in a roof zone: A by F, B by H, C by I where the walls reach beyond e."""
+    A, B, C = (wall_coefficient(z, np.full_like(e, wind.height / wind.length)) for z in "ABC")
+    return {"F": A, "H": B, "I": np.where(wind.length > e, C, B)}[zone]
 
 
 def _cases(wind: _Wind, pattern: _Pattern) -> Iterator[ActionCase]:
@@ -255,14 +260,10 @@ def _cases(wind: _Wind, pattern: _Pattern) -> Iterator[ActionCase]:
             Value(symbol=f"c_pe, {z}", value=c, kind="ratio", clause="EN 1991-1-4, Tables 7.2 and 7.4")
             for z, c in dict(zip(pattern.zones, pattern.c_pe, strict=True)).items()
         ]
+        sides = ("side",) if pattern.walls[0] is pattern.walls[1] else ("windward", "leeward")
         values += [
-            Value(
-                symbol=f"c_pe, {z}",
-                value=wall_coefficient(z, pattern.h_over_d),
-                kind="ratio",
-                clause="EN 1991-1-4, 7.2.1(3) and Table 7.1",
-            )
-            for z in dict.fromkeys(pattern.walls)
+            Value(symbol=f"c_pe, {wall} wall", value=c, kind="ratio", clause="EN 1991-1-4, 7.2.1(3) and Table 7.1")
+            for wall, c in zip(sides, pattern.walls, strict=False)
         ]
         values.append(Value(symbol="c_pi", value=c_pi, kind="ratio", clause="EN 1991-1-4, 7.2.9(6)"))
         yield ActionCase(
@@ -278,7 +279,7 @@ def _cases(wind: _Wind, pattern: _Pattern) -> Iterator[ActionCase]:
 def _strips(wind: _Wind, pattern: _Pattern, c_pi: float) -> list[Strip]:
     """Net pressures q_p (c_pe - c_p of the other face), cut where the walls stand; EN 1991-1-4, 5.2(3) and Fig. 7.3."""
     tail = has_tail(wind.roof)
-    under = [np.where(tail, wall_coefficient(z, pattern.h_over_d), c_pi) for z in pattern.walls]
+    under = [np.where(tail, wall, c_pi) for wall in pattern.walls]
     faces = (
         (0 * wind.tail, wind.tail, under[0]),
         (wind.tail, wind.width - wind.tail, wind.internal(c_pi)),

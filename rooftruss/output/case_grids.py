@@ -74,18 +74,24 @@ def _grid(groups: Sequence[_Cases], numbering: Numbering, *, named: bool) -> Gri
 
 
 def _common(cases: Sequence[Found]) -> Found:
-    """Values that are the same in all cases of one truss that have them, and that most of the cases have."""
+    """Values that are the same in all cases of one truss that have them, and that most of the cases have.
+
+    Of a single case that is every value: it may be listed with those that other trusses share between their cases.
+    """
     out: Found = {}
     for q in dict.fromkeys(q for case in cases for q in case):
         having = [case[q] for case in cases if q in case]
-        if 2 * len(having) > len(cases) > 1 and len(set(having)) == 1:
+        if 2 * len(having) > len(cases) and len(set(having)) == 1:
             out[q] = having[0]
     return out
 
 
 def _everywhere(q: Quantity, groups: Sequence[_Cases], common: Sequence[Found], names: Sequence[str]) -> bool:
-    """Whether a value can be listed once for all: it is common in every truss that has it."""
-    return all(q in c or not any(q in g.values.get(n, {}) for n in names) for g, c in zip(groups, common, strict=True))
+    """Whether a value can be listed once for all: it is common in every truss that has it, and not to one case only."""
+    repeated = any(sum(q in g.values.get(n, {}) for n in names) > 1 for g in groups)
+    return repeated and all(
+        q in c or not any(q in g.values.get(n, {}) for n in names) for g, c in zip(groups, common, strict=True)
+    )
 
 
 def _rows(number: str, name: str, quantities: Sequence[Quantity], found: Sequence[Found]) -> Iterator[tuple[Cell, ...]]:

@@ -1,6 +1,7 @@
 """Grids of the catalogues: shapes, schemes, grades, sections."""
 
 from collections.abc import Mapping, Sequence
+from math import isnan
 
 from rooftruss.basis.grades import Grade
 from rooftruss.basis.schemes import Scheme, load_scheme, schemes
@@ -39,7 +40,7 @@ def scheme_grid(scheme: Scheme) -> Grid:
     return Grid(f"{scheme.name}: {scheme.title}", columns, rows)
 
 
-def sections_grid(found: Sequence[Section]) -> Grid:
+def sections_grid(system: str, found: Sequence[Section]) -> Grid:
     """Sizes with their properties about the strong axis."""
     rows = tuple(
         (
@@ -60,7 +61,7 @@ def sections_grid(found: Sequence[Section]) -> Grid:
         Column("section modulus", "section modulus"),
         Column("inertia", "inertia"),
     )
-    return Grid("Sections", columns, rows)
+    return Grid(f"Sections, {system} sizes", columns, rows)
 
 
 def grades_grid(found: Sequence[Grade]) -> Grid:
@@ -85,9 +86,9 @@ def _keys(found: Sequence[Grade]) -> list[str]:
 
 
 def _is_stress(found: Sequence[Grade], key: str) -> bool:
-    """Whether a column holds stresses: reference values are between 0.1 MPa and 1 TPa, nothing else of a grade is."""
-    values = [row.get(key) for grade in found for row in grade.rows]
-    return all(isinstance(v, float) and (v != v or v > 1e5) for v in values if v is not None)
+    """Whether a column holds stresses: every reference value is over 0.1 MPa, and nothing else of a grade is."""
+    values = [row[key] for grade in found for row in grade.rows if key in row]
+    return all(isinstance(v, float) and (isnan(v) or v > 1e5) for v in values) and any(v == v for v in values)
 
 
 def _number(cell: object) -> float | None:

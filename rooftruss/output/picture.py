@@ -9,6 +9,7 @@ from rooftruss.shapes.truss import Truss
 
 Point = tuple[float, float]
 MARK = 0.022  # size of a support mark, as a share of the width of the picture
+EDGE = 0.1  # marks between the outermost points and the box; a chart hides a label on the edge
 LIFT = 0.4  # marks between a sloping line and its name
 LEVEL = 0.05  # slope up to which a name stands straight below its line
 SUPPORT_DEPTH = 1.5  # marks below the panel point, with the line of a roller
@@ -39,7 +40,7 @@ class Picture:
     member_names: tuple[Label, ...]
     panel_points: tuple[Label, ...]  # at their true places; the letters of bearings are hidden
     bearings: tuple[Label, ...]  # letters of the bearings, below the marks
-    box: tuple[float, float, float, float]
+    box: tuple[float, float, float, float]  # a little wider than the lines
 
 
 def picture_of(truss: Truss) -> Picture:
@@ -48,7 +49,7 @@ def picture_of(truss: Truss) -> Picture:
     paths = [Path(name=g, strokes=_strokes(truss, g)) for g in dict.fromkeys(m.group for m in members)]
     supports = tuple(stroke for k in range(len(truss.topology.supports)) for stroke in _support(truss, k))
     bearings = [s.node for s in truss.topology.supports]
-    below = SUPPORT_DEPTH * _mark(truss)
+    below, edge = SUPPORT_DEPTH * _mark(truss), EDGE * _mark(truss)
     return Picture(
         paths=(*paths, Path(name="support", strokes=supports)),
         member_names=tuple(_member_name(truss, k) for k in range(len(members))),
@@ -57,7 +58,12 @@ def picture_of(truss: Truss) -> Picture:
             Label(text=truss.topology.nodes[n], at=(float(x[n]), float(y[n]) - below), position="below")
             for n in bearings
         ),
-        box=(float(x.min()), float(y.min()) - below, float(x.max()), float(y.max())),
+        box=(
+            float(x.min()) - edge,
+            float(y.min()) - below - edge,
+            float(x.max()) + edge,
+            float(y.max()) + edge,
+        ),
     )
 
 

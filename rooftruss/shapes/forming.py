@@ -144,7 +144,7 @@ def _bottom_splices(
 
 
 def heel_offset(size: Dimensions, top_depth: Array | float, bottom_depth: Array | float) -> Array:
-    """Height of the top-chord centre line over the bottom-chord centre line above a bearing with a raised heel (...,)."""
+    """Height of the top-chord over the bottom-chord centre line above a bearing with a raised heel (...,)."""
     return np.asarray(size.heel_height - top_depth / 2 * np.hypot(1.0, size.pitch) - np.asarray(bottom_depth) / 2)
 
 

@@ -217,7 +217,7 @@ def _ratios(case: _Case) -> Iterator[tuple[int, Step]]:
     if case.moment:
         yield _ratio(rules.BENDING, "sigma_m,y,d/f_m,y,d", m, _shown("sigma_m,y,d", sigma_m))
         for sign, moment, lateral in _signs(case):
-            value = moment / (case.of(r.modulus) * case.of(lateral.k_crit) * case.design(r.f_m))
+            value = moment / case.of(r.modulus) / case.design(r.f_m) / case.of(lateral.k_crit)
             if moment:
                 yield _ratio(rules.TORSION, f"sigma_m,d{sign}/(k_crit f_m,d)", value, "with its own k_crit")
     if case.moment and case.tension:

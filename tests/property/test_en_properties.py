@@ -148,7 +148,7 @@ def test_more_snow_hangs_heavier(a, b):
     st.floats(10.0, 40.0),
     st.floats(2.0, 15.0),
     st.floats(2.0, 15.0),
-    st.sampled_from("I II III IV".split()),
+    st.sampled_from(["I", "II", "III", "IV"]),
 )
 def test_peak_pressure_rises_with_velocity_and_height(v_1, v_2, z_1, z_2, terrain):
     low = peak_velocity_pressure(min(v_1, v_2), min(z_1, z_2), terrain=terrain, c_o=1.0, rho=1.25)

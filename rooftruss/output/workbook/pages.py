@@ -34,7 +34,7 @@ SIGNS = (
     "Tension, bending with tension in the lower edge, and movement up or to the right are positive. "
     "Comb. is the number on the sheet Combinations, a dash where nothing acts."
 )
-TALLEST_DRAWING = 11.0  # cm, so that drawing and members stand on one page
+TALLEST_DRAWING = 9.5  # cm, so that drawing and members stand on one page
 ROW_HEIGHT = LINE_HEIGHT / 72 * 2.54  # cm, of a row as the spreadsheet makes it
 
 

@@ -146,7 +146,7 @@ class Page:
 
     def _rows(self, shown: ShownGrid, slots: Sequence[int], wrap: Sequence[int], usual: str) -> None:
         aligned = [
-            "wrap" if k in wrap else _align(c, slot)
+            ("lines" if slot == 1 else "wrap") if k in wrap else _align(c, slot)
             for k, (c, slot) in enumerate(zip(shown.columns, slots, strict=True))
         ]
         formats = [c.number_format for c in shown.columns]
