@@ -205,12 +205,14 @@ def require_stable(topology: Topology, stiffness: Array) -> None:
 
     stiffness (b, free, free). A mechanism has an eigenvalue of zero in the diagonally scaled matrix.
     """
+    from scipy.linalg import eigh  # here, because only a doubtful truss needs it
+
     number = freedoms(topology)
     for matrix in stiffness:
         diagonal = matrix.diagonal()
         idle = np.flatnonzero(diagonal <= 0)
         scale = 1 / np.sqrt(np.where(diagonal > 0, diagonal, 1.0))
-        values, modes = np.linalg.eigh(matrix * np.outer(scale, scale))
+        values, modes = eigh(matrix * np.outer(scale, scale), subset_by_index=(0, 0))
         if idle.size or values[0] < SINGULAR:
             worst = idle[0] if idle.size else int(np.abs(modes[:, 0] * scale).argmax())
             node, direction = number.label[worst]

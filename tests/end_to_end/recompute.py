@@ -139,10 +139,12 @@ def _stiffness(modulus: float, section: Record, length: float) -> np.ndarray:
     out = np.zeros((6, 6))
     out[np.ix_([0, 3], [0, 3])] = axial * np.array([[1, -1], [-1, 1]])
     s = length
-    out[np.ix_([1, 2, 4, 5], [1, 2, 4, 5])] = bending * np.array(
-        [[12, 6 * s, -12, 6 * s], [6 * s, 4 * s * s, -6 * s, 2 * s * s]]
-        + [[-12, -6 * s, 12, -6 * s], [6 * s, 2 * s * s, -6 * s, 4 * s * s]]
-    )
+    out[np.ix_([1, 2, 4, 5], [1, 2, 4, 5])] = bending * np.array([
+        [12, 6 * s, -12, 6 * s],
+        [6 * s, 4 * s * s, -6 * s, 2 * s * s],
+        [-12, -6 * s, 12, -6 * s],
+        [6 * s, 2 * s * s, -6 * s, 4 * s * s],
+    ])  # fmt: skip
     return out
 
 
