@@ -18,7 +18,7 @@ def constant(name: str) -> float:
     return cast(float, read_table("wind/constants_en1991").rows[0][name])
 
 
-def roughness_factor(z: Number, *, z_0: Number, z_min: Number) -> Number:
+def roughness_factor(z: Number, *, z_0: Number, z_min: Number) -> Array:
     """Roughness factor c_r [-] at height z [m]; EN 1991-1-4:2005, eq. (4.4), (4.5).
 
     Raises OutOfScopeError above z_max = 200 m.
@@ -29,19 +29,19 @@ def roughness_factor(z: Number, *, z_0: Number, z_min: Number) -> Number:
     if np.any(np.asarray(z) > constant("z_max")):
         raise OutOfScopeError(f"height {np.max(z):.0f} m; EN 1991-1-4, 4.3.2(1) covers heights up to 200 m")
     k_r = 0.19 * (np.asarray(z_0) / 0.05) ** 0.07
-    return k_r * np.log(np.maximum(z, z_min) / np.asarray(z_0))
+    return np.asarray(k_r * np.log(np.maximum(z, z_min) / np.asarray(z_0)))
 
 
-def turbulence_intensity(z: Number, *, z_0: Number, z_min: Number, c_o: Number) -> Number:
+def turbulence_intensity(z: Number, *, z_0: Number, z_min: Number, c_o: Number) -> Array:
     """Turbulence intensity I_v [-] at height z [m]; EN 1991-1-4:2005, eq. (4.7).
 
     >>> round(float(turbulence_intensity(9.0, z_0=1.0, z_min=10.0, c_o=1.0)), 4)
     0.4343
     """
-    return constant("k_I") / (c_o * np.log(np.maximum(z, z_min) / np.asarray(z_0)))
+    return np.asarray(constant("k_I") / (c_o * np.log(np.maximum(z, z_min) / np.asarray(z_0))))
 
 
-def peak_velocity_pressure(v_b: Number, z: Number, *, terrain: str, c_o: Number, rho: Number) -> Number:
+def peak_velocity_pressure(v_b: Number, z: Number, *, terrain: str, c_o: Number, rho: Number) -> Array:
     """Peak velocity pressure q_p [Pa] at height z [m] of a basic velocity v_b [m/s]; EN 1991-1-4:2005, eq. (4.8).
 
     terrain: category "0" to "IV" of Table 4.1; c_o orography factor [-]; rho density of air [kg/m3].

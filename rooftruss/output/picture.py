@@ -45,24 +45,25 @@ class Picture:
 
 def picture_of(truss: Truss) -> Picture:
     """Elevation of an unbatched truss."""
-    x, y, members = truss.xy[:, 0], truss.xy[:, 1], truss.topology.members
-    paths = [Path(name=g, strokes=_strokes(truss, g)) for g in dict.fromkeys(m.group for m in members)]
-    supports = tuple(stroke for k in range(len(truss.topology.supports)) for stroke in _support(truss, k))
-    bearings = [s.node for s in truss.topology.supports]
-    below, edge = SUPPORT_DEPTH * _mark(truss), EDGE * _mark(truss)
+    nodes, bearings = range(len(truss.topology.nodes)), range(len(truss.topology.supports))
+    groups = dict.fromkeys(m.group for m in truss.topology.members)
+    paths = (
+        *(Path(name=g, strokes=_strokes(truss, g)) for g in groups),
+        Path(name="support", strokes=tuple(stroke for k in bearings for stroke in _support(truss, k))),
+    )
+    letters = tuple(_bearing(truss, k) for k in bearings)
+    points = [p for path in paths for stroke in path.strokes for p in stroke] + [label.at for label in letters]
+    edge = EDGE * _mark(truss)
     return Picture(
-        paths=(*paths, Path(name="support", strokes=supports)),
-        member_names=tuple(_member_name(truss, k) for k in range(len(members))),
-        panel_points=tuple(_panel_point(truss, k) for k in range(len(truss.topology.nodes))),
-        bearings=tuple(
-            Label(text=truss.topology.nodes[n], at=(float(x[n]), float(y[n]) - below), position="below")
-            for n in bearings
-        ),
+        paths=paths,
+        member_names=tuple(_member_name(truss, k) for k in range(len(truss.topology.members))),
+        panel_points=tuple(_panel_point(truss, k) for k in nodes),
+        bearings=letters,
         box=(
-            float(x.min()) - edge,
-            float(y.min()) - below - edge,
-            float(x.max()) + edge,
-            float(y.max()) + edge,
+            min(x for x, _ in points) - edge,
+            min(y for _, y in points) - edge,
+            max(x for x, _ in points) + edge,
+            max(y for _, y in points) + edge,
         ),
     )
 
@@ -126,3 +127,10 @@ def _panel_point(truss: Truss, node: int) -> Label:
     resting = node in {s.node for s in truss.topology.supports}
     position = "" if resting else "below" if low else "above"
     return Label(text=truss.topology.nodes[node], at=_point(truss, node), position=position)
+
+
+def _bearing(truss: Truss, number: int) -> Label:
+    """Letter of a bearing, below its mark."""
+    node = truss.topology.supports[number].node
+    x, y = _point(truss, node)
+    return Label(text=truss.topology.nodes[node], at=(x, y - SUPPORT_DEPTH * _mark(truss)), position="below")

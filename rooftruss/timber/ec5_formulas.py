@@ -21,7 +21,7 @@ def size_factor(h: ArrayLike, *, size: ArrayLike, power: ArrayLike, most: ArrayL
     >>> round(float(size_factor(0.097, size=0.150, power=0.2, most=1.3)), 4)
     1.0911
     """
-    return np.clip((_array(size) / _array(h)) ** _array(power), 1.0, most)
+    return np.minimum(np.maximum((_array(size) / _array(h)) ** _array(power), 1.0), _array(most))
 
 
 def relative_slenderness(l_ef: ArrayLike, side: ArrayLike, *, f_c_0_k: ArrayLike, E_0_05: ArrayLike) -> Array:
@@ -31,7 +31,7 @@ def relative_slenderness(l_ef: ArrayLike, side: ArrayLike, *, f_c_0_k: ArrayLike
     2.1212
     """
     slenderness = _array(l_ef) * np.sqrt(12.0) / _array(side)
-    return slenderness / np.pi * np.sqrt(_array(f_c_0_k) / _array(E_0_05))
+    return np.asarray(slenderness / np.pi * np.sqrt(_array(f_c_0_k) / _array(E_0_05)))
 
 
 def column_factor(lambda_rel: ArrayLike, *, beta_c: ArrayLike) -> Array:
@@ -123,17 +123,17 @@ def bending_and_compression(compression: ArrayLike, bending: ArrayLike) -> Array
 
 def column_in_plane(compression: ArrayLike, k_c_y: ArrayLike, bending: ArrayLike) -> Array:
     """Left side of eq. (6.23), EN 1995-1-1, from sigma_c/f_c and sigma_m,y/f_m,y; sigma_m,z = 0."""
-    return _array(compression) / k_c_y + _array(bending)
+    return _array(compression) / _array(k_c_y) + _array(bending)
 
 
 def column_across(compression: ArrayLike, k_c_z: ArrayLike, bending: ArrayLike, *, k_m: ArrayLike) -> Array:
     """Left side of eq. (6.24), EN 1995-1-1, from sigma_c/f_c and sigma_m,y/f_m,y; sigma_m,z = 0."""
-    return _array(compression) / k_c_z + _array(k_m) * bending
+    return _array(compression) / _array(k_c_z) + _array(k_m) * _array(bending)
 
 
 def torsion_and_compression(compression: ArrayLike, k_c_z: ArrayLike, bending: ArrayLike, k_crit: ArrayLike) -> Array:
     """Left side of eq. (6.35), EN 1995-1-1, from sigma_c/f_c and sigma_m/f_m."""
-    return (_array(bending) / k_crit) ** 2 + _array(compression) / k_c_z
+    return (_array(bending) / _array(k_crit)) ** 2 + _array(compression) / _array(k_c_z)
 
 
 def final_factors(factors: Array, lasting: Array, *, k_def: float) -> Array:
