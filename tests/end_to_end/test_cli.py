@@ -234,7 +234,9 @@ def test_the_catalogues_print_their_names(run):
 def test_grades_are_shown_in_the_units_asked_for(run):
     """SPF No.1/No.2: Fb 875 psi (NDS Supplement 2018, Table 4A) is 6.03 N/mm2."""
     for units, value in (("US", "875"), ("metric", "6.03")):
-        line = [t for t in run("grades", "SPF", "No.1/No.2", "--units", units)[1].splitlines() if t.startswith("SPF No")]
+        line = [
+            t for t in run("grades", "SPF", "No.1/No.2", "--units", units)[1].splitlines() if t.startswith("SPF No")
+        ]
         assert value in line[0].split()
 
 
