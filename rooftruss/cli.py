@@ -143,6 +143,7 @@ def _envelope_arguments(command: argparse.ArgumentParser) -> None:
 
 
 def _envelope(given: argparse.Namespace) -> int:
+    from rooftruss.output.numbering import numbering_of
     from rooftruss.output.terminal import print_cautions, print_envelope, progress
     from rooftruss.run import run_file
 
@@ -153,7 +154,7 @@ def _envelope(given: argparse.Namespace) -> int:
         write_result(result.job, result.designs, given.json)
     else:
         for design in result.designs:
-            print_envelope(result.job, design)
+            print_envelope(result.job, design, numbering_of(result.designs))
     print_cautions()
     return DONE if result.passes else NOT_MET
 

@@ -20,7 +20,7 @@ class Alternative:
 
 
 def alternatives(spec: TrussSpec) -> Iterator[TrussSpec]:
-    """The truss in every shape of the catalogue; panel count and bottom pitch stay with the shape they were given for."""
+    """The truss in every shape of the catalogue; panel count and bottom pitch stay with the shape they belong to."""
     for name in SHAPES:
         yield spec if name == spec.shape else replace(spec, shape=name, panels=None, bottom_pitch=None)
 

@@ -73,7 +73,7 @@ class Family:
 
 @dataclass(frozen=True, kw_only=True)
 class Choice:
-    """What the groups of the trusses of a batch are made of: options of a group, and the number of the one taken (...,)."""
+    """What the groups of the trusses of a batch are made of: options, and the number of the one taken (...,)."""
 
     options: Mapping[str, tuple[Option, ...]]
     index: Mapping[str, NDArray[np.intp]]

@@ -9,7 +9,8 @@ from numpy.typing import NDArray
 
 from rooftruss.basis.tables import read_table
 from rooftruss.errors import OutOfScopeError
-from rooftruss.loads.roof import ActionCase, Roof, SurfaceLoad, Value
+from rooftruss.loads.roof import ActionCase, Roof, Site, SurfaceLoad, Value
+from rooftruss.loads.site import optional_number
 from rooftruss.shapes.truss import Truss
 from rooftruss.units import shown
 
@@ -98,6 +99,12 @@ def walked_points(truss: Truss, force: float, surfaces: Sequence[str] = (*LEFT, 
         )
         made.append(WalkedPoint(case=case, member=member, x=x, force=force))
     return made
+
+
+def person_on_roof(truss: Truss, site: Site) -> list[WalkedPoint]:
+    """`walked_points` of the site's roof_person [N]; the recommended Q_k where it is left out."""
+    given = optional_number(site, "roof_person")
+    return walked_points(truss, category_h("Q")[0] if given is None else given)
 
 
 def _walk(truss: Truss, surfaces: Sequence[str]) -> Iterator[tuple[int, str, Array]]:

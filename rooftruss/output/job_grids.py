@@ -3,6 +3,8 @@
 from collections.abc import Sequence
 from functools import cache
 
+import numpy as np
+
 from rooftruss.basis.job import Job
 from rooftruss.design.compare import Alternative
 from rooftruss.design.design import Design
@@ -84,6 +86,7 @@ def comparison_grid(rows: Sequence[Alternative]) -> Grid:
         Column("Weight", "mass"),
         Column("Most down", "force"),
         Column("Most uplift", "force"),
+        Column("Largest deflection", "deflection"),
         Column("Worst ratio", "ratio"),
         Column("Result"),
     )
@@ -93,7 +96,7 @@ def comparison_grid(rows: Sequence[Alternative]) -> Grid:
 def _compared(row: Alternative) -> tuple[Cell, ...]:
     design = row.design
     if design is None:
-        return (row.shape, *(None,) * 9, f"not possible: {row.reason}")
+        return (row.shape, *(None,) * 10, f"not possible: {row.reason}")
     outcome = design.outcome
     return (
         row.shape,
@@ -103,9 +106,22 @@ def _compared(row: Alternative) -> tuple[Cell, ...]:
         float(outcome.mass),
         float(outcome.reactions.down.value.max()),
         float(outcome.reactions.uplift.value.max()),
+        largest_deflection(design),
         float(outcome.worst),
         "all checks met" if design.passes else "; ".join(("NOT met", *design.failures[:1])),
     )
+
+
+def largest_deflection(design: Design) -> float:
+    """Largest vertical deflection of a panel point or panel middle between the bearings [m], whatever its limit."""
+    found = design.outcome.deflection
+    tails = {n for m in design.run.family.topology.members if m.role == "tail" for n in (m.start, m.end)}
+    inside = [
+        k
+        for k, p in enumerate(found.places)
+        if p.direction == "vertical" and not (p.kind == "node" and p.number in tails)
+    ]
+    return float(np.abs(found.value[inside]).max())
 
 
 def combinations_grid(numbering: Numbering, designs: Sequence[Design]) -> Grid:

@@ -15,9 +15,9 @@ import numpy as np
 
 from rooftruss import __version__
 from rooftruss.analysis.envelope import Peak
-from rooftruss.analysis.inspection import Summary, summary
 from rooftruss.basis.job import Job
 from rooftruss.design.design import LIMIT, Design
+from rooftruss.design.idle import idle_summary
 from rooftruss.design.stages import durations_of
 from rooftruss.errors import OutputError
 from rooftruss.output.cautions import CAUTIONS
@@ -304,16 +304,8 @@ def _deflections(design: Design) -> list[Record]:
 
 
 def _zero_force(design: Design) -> Record:
-    found = zero_force(design)
+    found = idle_summary(design)
     return {
         "by_case": {name: list(i.zero) for name, i in zip(design.run.cases.names, found.by_case, strict=True)},
         "in_every_combination": list(found.idle),
     }
-
-
-def zero_force(design: Design) -> Summary:
-    """Inspection of the pin-jointed truss under every case and strength combination."""
-    run = design.run
-    gravity = [c for c, head in enumerate(run.cases.heads) if head.action != "W"]
-    factors = run.combinations.factors[run.combinations.strength]
-    return summary(run.truss, run.stiffness_axial, run.cases, factors, gravity)

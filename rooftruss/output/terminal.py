@@ -8,13 +8,13 @@ from typing import TextIO
 from rooftruss.basis.job import Job
 from rooftruss.design.compare import Alternative
 from rooftruss.design.design import Design
+from rooftruss.design.idle import idle_members
 from rooftruss.output.cautions import SHORT_CAUTIONS
 from rooftruss.output.job_grids import comparison_grid, quote_grid
-from rooftruss.output.numbering import numbering_of
+from rooftruss.output.numbering import Numbering, numbering_of
 from rooftruss.output.schedule import MET, Grid, ShownColumn, ShownGrid, shown_grid, texts
 from rooftruss.output.truss_grids import (
     deflections_grid,
-    idle_members,
     members_grid,
     named_combinations_grid,
     reactions_grid,
@@ -57,9 +57,8 @@ def print_sizes(designs: Sequence[Design]) -> None:
     print_grid(sizes_grid(designs), "US")  # no column of it has a unit
 
 
-def print_envelope(job: Job, design: Design) -> None:
+def print_envelope(job: Job, design: Design, numbering: Numbering) -> None:
     """Governing effects of every member, reactions, deflections, and the combinations they come from."""
-    numbering = numbering_of([design])
     print(f"Truss {design.spec.mark}\n")
     for grid in (
         members_grid(design, numbering, idle_members(design)),

@@ -6,7 +6,6 @@ import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.analysis.envelope import Peak
-from rooftruss.analysis.inspection import pin_jointed_axial, triangulation
 from rooftruss.design.design import LIMIT, Design
 from rooftruss.design.stages import GROUPS
 from rooftruss.loads.cases import LoadCases
@@ -32,16 +31,6 @@ class _Governing:
     def __call__(self, found: Peak, k: int) -> tuple[float, int]:
         n = int(found.combination[k])
         return float(found.value[k]), self.number[n] if n >= 0 else 0
-
-
-def idle_members(design: Design) -> frozenset[str]:
-    """Members of the pin-jointed truss that carry nothing in any strength combination; tails are left out."""
-    run = design.run
-    axial = pin_jointed_axial(run.truss, run.stiffness_axial, run.cases)
-    combined = np.abs(run.combinations.factors[run.combinations.strength] @ axial)
-    idle = np.all(combined <= 1e-9 * combined.max(axis=-1, keepdims=True), axis=0)
-    names = run.family.topology.names
-    return frozenset(names[k] for k in triangulation(run.family.topology).members if idle[k])
 
 
 def members_grid(design: Design, numbering: Numbering, idle: Collection[str] = ()) -> Grid:

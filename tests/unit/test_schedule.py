@@ -213,7 +213,7 @@ def test_picture_holds_every_member_and_panel_point():
 
 def test_terminal_prints_plain_aligned_text(capsys, monkeypatch):
     job, designs = job_and_designs()
-    print_envelope(job, designs[0])
+    print_envelope(job, designs[0], numbering_of(designs))
     out = capsys.readouterr().out
     assert "\x1b" not in out
     assert "Compression" in out

@@ -4,6 +4,7 @@ from collections.abc import Sequence
 
 from rooftruss.basis.job import Job
 from rooftruss.design.design import Design
+from rooftruss.design.idle import idle_members
 from rooftruss.output.case_grids import cases_grids
 from rooftruss.output.cautions import SHORT_CAUTIONS
 from rooftruss.output.job_grids import assumptions_grid, cautions_grid, combinations_grid, quote_grid
@@ -12,7 +13,6 @@ from rooftruss.output.picture import picture
 from rooftruss.output.schedule import Grid, shown_grid
 from rooftruss.output.truss_grids import (
     deflections_grid,
-    idle_members,
     loading_grid,
     members_grid,
     named_combinations_grid,
