@@ -9,34 +9,45 @@ import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.basis.job import Job, TrussSpec
-from rooftruss.design.design import Design, outcome_of
+from rooftruss.design.design import LIMIT, Design, Outcome, outcome_of
 from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, options_of, run, unbatched
 from rooftruss.shapes.forming import LEAST_HEEL, form, heel_offset
 
+Array = NDArray[np.float64]
 CHUNK = 48  # candidates per batch: wide enough to share the work, small enough to stop early
 
 
 def size_truss(job: Job, spec: TrussSpec) -> Design:
     """Sizes of one truss: the least timber volume that passes every check; of equal volumes the options listed first.
 
-    When nothing passes, the design with the smallest worst ratio is returned, with notes that say so; its `failures`
-    say what failed. Raises JobError and OutOfScopeError for input that does not fit.
+    When nothing passes, the design with the fewest failing groups (of those, the smallest worst ratio) is returned, with
+    a note that says so; its `failures` say what failed. Raises JobError and OutOfScopeError for input that does not fit.
     """
     family = unbatched(family_of(job, [spec]))
     options = options_of(spec)
     rows = _candidates(family, options)
-    nearest: tuple[float, NDArray[np.intp]] = (np.inf, rows[0])
+    nearest: tuple[tuple[float, float], NDArray[np.intp]] = ((np.inf, np.inf), rows[0])
     for start in range(0, len(rows), CHUNK):
         chunk = rows[start : start + CHUNK]
         outcome = outcome_of(run(family, _choice(options, chunk)))
-        worst = np.where(np.isfinite(outcome.worst), outcome.worst, np.inf)
         if np.any(outcome.passes):
             return finished(family, _choice(options, chunk[int(np.argmax(outcome.passes))]), ())
-        best = int(np.argmin(worst))
-        if worst[best] < nearest[0]:
-            nearest = (float(worst[best]), chunk[best])
+        failing = _failing_groups(family, outcome)
+        best = int(np.lexsort((outcome.worst, failing))[0])
+        score = (float(failing[best]), float(outcome.worst[best]))
+        if score < nearest[0]:
+            nearest = (score, chunk[best])
     note = f"none of the {len(rows)} allowed combinations of sizes and grades passes; the nearest is shown"
     return finished(family, _choice(options, nearest[1]), (note,))
+
+
+def _failing_groups(family: Family, outcome: Outcome) -> Array:
+    """Number of groups with a member over its limit, of each candidate; bearings and deflections count as one each."""
+    groups = np.array(family.topology.groups)
+    over = outcome.utilisation.value > LIMIT
+    counts = [over[..., groups == group].any(axis=-1) for group in GROUPS]
+    counts += [(outcome.bearing.value > LIMIT).any(axis=-1), (outcome.deflection.ratio > LIMIT).any(axis=-1)]
+    return np.asarray(np.sum(counts, axis=0, dtype=float))
 
 
 def _choice(options: dict[str, tuple[Option, ...]], rows: NDArray[np.intp]) -> Choice:

@@ -50,7 +50,7 @@ def wheel(source, tmp_path_factory) -> Path:
 
 def environment(folder: Path, *what: object) -> Path:
     """Folder of programs of a new environment with the program installed; its dependencies are this one's."""
-    venv.create(folder, with_pip=False)
+    venv.create(folder, with_pip=False, symlinks=os.name != "nt")
     places = sysconfig.get_paths(vars={"base": str(folder), "platbase": str(folder)})
     Path(places["purelib"], "dependencies.pth").write_text(sysconfig.get_paths()["purelib"] + "\n", "utf-8")
     programs = Path(places["scripts"])
@@ -69,6 +69,7 @@ def installed(request, source, tmp_path_factory) -> tuple[Path, list[object], di
     if request.param == "wheel":
         programs = environment(folder, request.getfixturevalue("wheel"))
         return folder, [programs / "rooftruss"], {}, away
+    pytest.importorskip("editables", reason="an editable install is built with the package editables")
     programs = environment(folder, "--editable", source)
     return source, [programs / "rooftruss"], {}, away
 
