@@ -20,8 +20,9 @@ CHUNK = 48  # candidates per batch: wide enough to share the work, small enough 
 def size_truss(job: Job, spec: TrussSpec) -> Design:
     """Sizes of one truss: the least timber volume that passes every check; of equal volumes the options listed first.
 
-    When nothing passes, the design with the fewest failing groups (of those, the smallest worst ratio) is returned, with
-    a note that says so; its `failures` say what failed. Raises JobError and OutOfScopeError for input that does not fit.
+    When nothing passes, the design with the fewest failing groups is returned (of those, the one with the smallest
+    worst ratio), with a note that says so; its `failures` say what failed. Raises JobError and OutOfScopeError for
+    input that does not fit.
     """
     family = unbatched(family_of(job, [spec]))
     options = options_of(spec)
