@@ -22,10 +22,14 @@ CLAUSE = "EN 1991-1-1, 6.3.4.2"
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class WalkedPoint:
-    """A concentrated load at one place of its walk: its case (which holds no other load), and where it stands."""
+    """A concentrated load at one place of its walk: its case (which holds no other load), and where it stands.
+
+    It stands on a joint (`node`) or inside a chord member (`member`); the other of the two is None.
+    """
 
     case: ActionCase
-    member: int  # chord member below or above x
+    node: int | None
+    member: int | None
     x: Array  # plan position from the left bearing centre (...,) [m]
     force: float  # downwards [N]
 
@@ -93,11 +97,11 @@ def walked_points(truss: Truss, force: float, surfaces: Sequence[str] = (*LEFT, 
         return []
     value = Value(symbol="Q_k", value=force, kind="force", clause=f"{CLAUSE}, Table 6.10")
     made = []
-    for member, place, x in _walk(truss, surfaces):
+    for node, member, place, x in _walk(truss, surfaces):
         case = ActionCase(
             name=f"person on roof, {place}", short=place, action="Lr", pattern="person", loads=(), values=(value,)
         )
-        made.append(WalkedPoint(case=case, member=member, x=x, force=force))
+        made.append(WalkedPoint(case=case, node=node, member=member, x=x, force=force))
     return made
 
 
@@ -107,20 +111,17 @@ def person_on_roof(truss: Truss, site: Site) -> list[WalkedPoint]:
     return walked_points(truss, category_h("Q")[0] if given is None else given)
 
 
-def _walk(truss: Truss, surfaces: Sequence[str]) -> Iterator[tuple[int, str, Array]]:
-    """(member, place in words, plan position) of every stop, from the left; a shared panel point is one stop."""
+def _walk(truss: Truss, surfaces: Sequence[str]) -> Iterator[tuple[int | None, int | None, str, Array]]:
+    """(node, member, place in words, plan position) of every stop, from the left; a shared joint is one stop."""
     made = truss.topology
     seen: set[int] = set()
     for k in made.on(*surfaces):
         member = made.members[k]
-        start, end = truss.start_xy[..., k, 0], truss.end_xy[..., k, 0]
-        if member.start not in seen:
-            seen.add(member.start)
-            yield k, f"at {made.nodes[member.start]}", start
-        yield k, f"middle of {member.name}", (start + end) / 2
-        if member.end not in seen:
-            seen.add(member.end)
-            yield k, f"at {made.nodes[member.end]}", end
+        for node in (member.start, member.end):
+            if node not in seen:
+                seen.add(node)
+                yield node, None, f"at {made.nodes[node]}", truss.xy[..., node, 0]
+        yield None, k, f"middle of {member.name}", (truss.start_xy[..., k, 0] + truss.end_xy[..., k, 0]) / 2
 
 
 def _on(surfaces: Sequence[str], pressure: Array) -> tuple[SurfaceLoad, ...]:

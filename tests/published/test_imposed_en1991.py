@@ -4,7 +4,7 @@ import numpy as np
 import pytest
 
 from rooftruss.errors import OutOfScopeError
-from rooftruss.loads.imposed_en1991 import category_h, loft_cases, roof_live_cases, walked_points
+from rooftruss.loads.imposed_en1991 import category_h, loft_cases, person_on_roof, roof_live_cases, walked_points
 from rooftruss.loads.roof import Roof
 from rooftruss.shapes.catalogue import Layout, place
 from rooftruss.shapes.outline import Outline
@@ -75,8 +75,18 @@ def test_person_walks_over_every_panel():
     assert {p.case.action for p in points} == {"Lr"}
     assert len({p.case.name for p in points}) == len(points)
     for p in points:
-        start, end = truss.start_xy[p.member, 0], truss.end_xy[p.member, 0]
-        assert start - 1e-9 <= float(p.x) <= end + 1e-9
+        assert (p.node is None) != (p.member is None)
+        if p.member is None:
+            assert float(truss.xy[p.node, 0]) == float(p.x)
+        else:
+            middle = (truss.start_xy[p.member, 0] + truss.end_xy[p.member, 0]) / 2
+            assert float(p.x) == pytest.approx(float(middle))
+
+
+def test_the_person_of_the_site():
+    assert {p.force for p in person_on_roof(fink(), {})} == {1000.0}  # recommended Q_k
+    assert {p.force for p in person_on_roof(fink(), {"roof_person": 1500.0})} == {1500.0}
+    assert person_on_roof(fink(), {"roof_person": 0.0}) == []
 
 
 def test_walk_without_tails_or_without_a_person():
