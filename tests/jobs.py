@@ -33,7 +33,9 @@ def calm() -> Job:
     return at_site(wind_speed=0.0)
 
 
-def spec(mark: str = "T1", *, points: bool = False, loads: Mapping[str, float] | None = None, **changes: Any) -> TrussSpec:
+def spec(
+    mark: str = "T1", *, points: bool = False, loads: Mapping[str, float] | None = None, **changes: Any
+) -> TrussSpec:
     """A truss of the house with some of its values changed [m, Pa]; point loads only when asked for."""
     found = next(s for s in house().trusses if s.mark == mark)
     own = replace(found.loads, **({} if points else {"points": ()}), **(loads or {}))

@@ -205,21 +205,21 @@ def require_stable(topology: Topology, stiffness: Array) -> None:
 
     stiffness (b, free, free). A mechanism has an eigenvalue of zero in the diagonally scaled matrix.
     """
-    from scipy.linalg import eigh  # here, because only a doubtful truss needs it
-
-    number = freedoms(topology)
     for matrix in stiffness:
         diagonal = matrix.diagonal()
-        idle = np.flatnonzero(diagonal <= 0)
         scale = 1 / np.sqrt(np.where(diagonal > 0, diagonal, 1.0))
-        values, modes = eigh(matrix * np.outer(scale, scale), subset_by_index=(0, 0))
-        if idle.size or values[0] < SINGULAR:
-            worst = idle[0] if idle.size else int(np.abs(modes[:, 0] * scale).argmax())
-            node, direction = number.label[worst]
-            raise UnstableTrussError(
-                f"{topology.shape}: joint {topology.nodes[node]} can move {DIRECTIONS[direction]}; "
-                "add a member or a support there"
-            )
+        scaled = matrix * np.outer(scale, scale)
+        if not np.all(diagonal > 0) or np.linalg.eigvalsh(scaled)[0] < SINGULAR:
+            raise UnstableTrussError(f"{topology.shape}: {_softest(topology, scaled, scale)}")
+
+
+def _softest(topology: Topology, scaled: Array, scale: Array) -> str:
+    """Which joint moves most, and where to, in the softest mode of a scaled stiffness (free, free)."""
+    from scipy.linalg import eigh  # here, because only a mechanism needs it
+
+    _, modes = eigh(scaled, subset_by_index=(0, 0))
+    node, direction = freedoms(topology).label[int(np.abs(modes[:, 0] * scale).argmax())]
+    return f"joint {topology.nodes[node]} can move {DIRECTIONS[direction]}; add a member or a support there"
 
 
 def stiffness_matrix(truss: Truss, stiffness_axial: Array, stiffness_bending: Array) -> Array:

@@ -4,6 +4,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
 
+from rooftruss.basis.grades import Grade
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Assumption:
@@ -45,6 +47,7 @@ class TimberSpec:
     groups: Mapping[str, GroupTimber]  # "top chord", "bottom chord", "web"
     longest_stock: float  # [m]
     options: Mapping[str, object]
+    own_grades: tuple[Grade, ...] = ()  # those of Job.grades
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -59,8 +62,41 @@ class PointLoad:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class CaseLoad:
+    """A uniform load of a case of the job's own: on chord members by name, or on a surface ("roof": all four of it).
+
+    kind as in loads.roof.SurfaceLoad; pressure [Pa] or line load [N per m of what the kind measures], the other is
+    None; x_from, x_to [m] from the outside of the left bearing, None: to the end of what carries it.
+    """
+
+    members: tuple[str, ...]
+    surface: str
+    kind: str
+    pressure: float | None
+    line: float | None
+    x_from: float | None
+    x_to: float | None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class OwnCase:
+    """A load case that the job gives itself. pattern "with": it joins every case of its action (see combinations)."""
+
+    name: str
+    action: str
+    pattern: str
+    loads: tuple[CaseLoad, ...]
+    points: tuple[PointLoad, ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class LoadSpec:
-    """Area loads [Pa] and point loads of one truss; roof dead on the slope, roof live on plan."""
+    """Loads of one truss: area loads [Pa], roof dead on the slope, roof live on plan; point loads; loads that are
+    walked along a chord [N], one place at a time; cases of the job's own.
+
+    attic: the word of the job ("" where it says nothing); attic_storage_live [Pa] is zero without storage.
+    scheme_options: options of the scheme that the attic of this truss changes.
+    """
 
     roof_dead: float
     roof_dead_least: float
@@ -69,6 +105,12 @@ class LoadSpec:
     roof_live: float
     ceiling_live: float
     points: tuple[PointLoad, ...] = ()
+    cases: tuple[OwnCase, ...] = ()
+    maintenance_load: float = 0.0
+    ceiling_point_load: float = 0.0
+    attic: str = ""
+    attic_storage_live: float = 0.0
+    scheme_options: tuple[tuple[str, str], ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -77,6 +119,15 @@ class LimitSpec:
 
     ceiling: str
     horizontal: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CustomSpec:
+    """Joints, members and bearings of a truss that is given one by one, as rows [m]; see shapes.custom."""
+
+    nodes: tuple[tuple[str, float, float], ...]  # name, x, y
+    members: tuple[tuple[str | None, str, str, str, str, bool, bool], ...]  # name, role, start, end, group, two pins
+    supports: tuple[tuple[str, bool, bool, float | None], ...]  # node, held across, held up; bearing, None: the truss's
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -97,6 +148,7 @@ class TrussSpec:
     plies: int
     loads: LoadSpec
     timber: TimberSpec
+    custom: CustomSpec | None = None  # of the shape "custom"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -115,4 +167,5 @@ class Job:
     limits: LimitSpec
     trusses: tuple[TrussSpec, ...]
     assumptions: tuple[Assumption, ...]
+    grades: tuple[Grade, ...] = ()  # of the job itself, beside those of tables/grades
     given: Mapping[str, object] = field(default_factory=dict, repr=False)  # as written: a like job is read from it

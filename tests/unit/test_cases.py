@@ -125,7 +125,13 @@ def test_a_point_load_stands_on_its_member_and_cuts_it():
 
 @pytest.mark.parametrize(
     ("chord", "x", "name"),
-    [("top", -0.3, "tail 1"), ("top", 5.0, "top 2"), ("bottom", 5.0, "bottom 2"), ("bottom", 8.2, None), ("top", 9.0, None)],
+    [
+        ("top", -0.3, "tail 1"),
+        ("top", 5.0, "top 2"),
+        ("bottom", 5.0, "bottom 2"),
+        ("bottom", 8.2, None),
+        ("top", 9.0, None),
+    ],
 )
 def test_the_member_above_or_below_a_place(chord, x, name):
     truss = king()
@@ -135,7 +141,11 @@ def test_the_member_above_or_below_a_place(chord, x, name):
 
 def test_segments_ascend_and_cover_every_member_once():
     truss = king()
-    cuts = [load("left slope", "plan", 1.0, 0.5, 2.5), load("right slope", "plan", 1.0, 5.5), load("ceiling", "plan", 1.0)]
+    cuts = [
+        load("left slope", "plan", 1.0, 0.5, 2.5),
+        load("right slope", "plan", 1.0, 5.5),
+        load("ceiling", "plan", 1.0),
+    ]
     made = laid(truss, case(*cuts))
     assert list(made.member_of) == sorted(made.member_of)
     covered = np.zeros(len(truss.topology.members))
