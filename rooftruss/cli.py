@@ -7,10 +7,15 @@ import argparse
 import sys
 from collections.abc import Callable, Sequence
 from pathlib import Path
-from typing import NoReturn
+from typing import TYPE_CHECKING, NoReturn
 
 from rooftruss import __version__
 from rooftruss.errors import JobError, OutputError, RooftrussError, nearest
+
+if TYPE_CHECKING:
+    from rooftruss.design.design import Design
+    from rooftruss.output.schedule import Grid
+    from rooftruss.run import Result
 
 DONE, NOT_MET, WRONG_INPUT = 0, 1, 2
 LIKE_KEYS = (  # options of `size` that stand for keys of [[truss]]: key, example
@@ -75,6 +80,9 @@ def _quote_arguments(command: argparse.ArgumentParser) -> None:
     command.add_argument(
         "-o", "--output", type=Path, help="workbook to write; default: the job's name with .xlsx, here"
     )
+    command.add_argument(
+        "--pin-jointed", action="store_true", help="add sheets with the pin-jointed forces beside the frame's, per case"
+    )
 
 
 def _quote(given: argparse.Namespace) -> int:
@@ -88,7 +96,7 @@ def _quote(given: argparse.Namespace) -> int:
     if path.exists() and path.resolve() == given.job.resolve():
         raise OutputError(f"{path} is the job file itself; give the workbook another name")
     result = run_file(given.job, progress)
-    write_workbook(result.job, result.designs, path)
+    write_workbook(result.job, result.designs, path, pin_jointed=given.pin_jointed)
     print_quote(result.job, result.designs)
     print(f"written: {path}", file=sys.stderr)
     print_cautions()
@@ -170,12 +178,13 @@ def _explain_arguments(command: argparse.ArgumentParser) -> None:
 
 def _explain(given: argparse.Namespace) -> int:
     from rooftruss.output.explain_grids import explanation
+    from rooftruss.output.numbering import numbering_of
     from rooftruss.output.terminal import print_cautions, print_grid
 
-    job, design = _design(given.job, given.mark)
-    heading, grid = explanation(design, given.member, given.combination)
+    result, design = _design(given.job, given.mark)
+    heading, grid = explanation(design, given.member, numbering_of(result.designs), given.combination)
     print(heading)
-    print_grid(grid, job.units)
+    print_grid(grid, result.job.units)
     print_cautions()
     return DONE
 
@@ -190,25 +199,26 @@ def _inspect(given: argparse.Namespace) -> int:
     from rooftruss.output.inspect_grids import inspection_grids
     from rooftruss.output.terminal import print_cautions, print_grid
 
-    job, design = _design(given.job, given.mark)
+    result, design = _design(given.job, given.mark)
     print(f"{design.spec.mark} {design.spec.shape}: members without force, by inspection of the pin-jointed truss")
     for heading, grid in inspection_grids(design, idle_summary(design)):
         print(f"\n{heading}")
-        print_grid(grid, job.units)
+        print_grid(grid, result.job.units)
     print_cautions()
     return DONE
 
 
-def _design(path: Path, mark: str):  # type: ignore[no-untyped-def]
-    """The job and the design of one truss of it."""
+def _design(path: Path, mark: str) -> "tuple[Result, Design]":
+    """The results of a job and the design of one truss of it. The whole job is run, for the numbers of combinations."""
     from rooftruss.basis.jobform import read_job
-    from rooftruss.run import design_truss
+    from rooftruss.run import run_job
 
     job = read_job(path)
-    found = [spec for spec in job.trusses if spec.mark == mark]
-    if not found:
-        raise JobError(f"{job.source}: there is no truss {mark!r}; {nearest(mark, [s.mark for s in job.trusses])}")
-    return job, design_truss(job, found[0])
+    marks = [spec.mark for spec in job.trusses]
+    if mark not in marks:
+        raise JobError(f"{job.source}: there is no truss {mark!r}; {nearest(mark, marks)}")
+    result = run_job(job)
+    return result, result.designs[marks.index(mark)]
 
 
 def _no_arguments(command: argparse.ArgumentParser) -> None:
@@ -285,7 +295,7 @@ def _sections(given: argparse.Namespace) -> int:
     return DONE
 
 
-def _print(grid, units: str = "US") -> int:  # type: ignore[no-untyped-def]
+def _print(grid: "Grid", units: str = "US") -> int:
     from rooftruss.output.terminal import print_grid
 
     print_grid(grid, units)

@@ -6,8 +6,10 @@ from pathlib import Path
 from typing import Any
 
 from rooftruss.basis.job import Job, LimitSpec
+from rooftruss.basis.jobattic import ATTIC, attic_defaults
 from rooftruss.basis.jobfile import read_toml
-from rooftruss.basis.jobkeys import Key, common_form, form_for
+from rooftruss.basis.jobkeys import Key, common_form, form_for, grade_family, with_grades
+from rooftruss.basis.jobrows import CUSTOM, read_grades
 from rooftruss.basis.jobtrusses import TrussReader
 from rooftruss.basis.kinds import Choice, Number
 from rooftruss.basis.schemes import Scheme, load_scheme
@@ -15,7 +17,8 @@ from rooftruss.basis.tablereader import Entries, Given, TableReader
 from rooftruss.basis.written import told
 from rooftruss.errors import JobError, nearest
 
-TABLES = ("job", "standard", "site", "loads", "timber", "deflection", "truss")
+LISTS = ("grade", "truss")  # written in two brackets
+TABLES = ("job", "standard", "site", "loads", "timber", "deflection", *LISTS)
 
 
 def read_job(path: Path) -> Job:
@@ -30,15 +33,27 @@ def job_from_mapping(data: Mapping[str, object], source: str, folder: Path) -> J
     """
     reader = TableReader(source=source, system=_system(data))
     given = _tables(reader, data)
-    scheme, standard = _scheme(reader, given["standard"], folder)
+    attic = given["loads"].get(ATTIC)
+    scheme, standard = _scheme(reader, given["standard"], folder, attic.value if attic else None)
     heading = reader.read(common_form()["job"], given["job"], "[job]")
     if scheme is None:
         raise reader.failure()
     reader.standard = scheme.load_standard
     form = form_for(scheme.load_standard, scheme.timber_standard)
+    own = read_grades(reader, form, data.get("grade"), grade_family(scheme.timber_standard))
+    form = with_grades(form, own)
     site = reader.read(form["site"], given["site"], "[site]")
     limits = reader.read(form["deflection"], given["deflection"], "[deflection]")
-    trusses = TrussReader(reader, form, given["loads"], given["timber"]).trusses(data.get("truss"))
+    trusses = TrussReader(
+        reader=reader,
+        form=form,
+        loads=given["loads"],
+        timber=given["timber"],
+        scheme=scheme,
+        options=standard,
+        chosen=given["standard"],
+        grades=tuple(own.values()),
+    ).trusses(data.get("truss"))
     if reader.problems:
         raise reader.failure()
     return Job(
@@ -53,6 +68,7 @@ def job_from_mapping(data: Mapping[str, object], source: str, folder: Path) -> J
         limits=LimitSpec(**limits),
         trusses=trusses,
         assumptions=tuple(reader.assumptions),
+        grades=tuple(own.values()),
         folder=folder,
         given=data,
     )
@@ -62,7 +78,7 @@ def with_overrides(job: Job, mark: str | None, changes: Mapping[str, object]) ->
     """Job of one truss: the one of this mark (None: the first) with some keys changed, all else as in `job`.
 
     changes holds values as a job file writes them, under keys of [[truss]], [loads] or [timber]; None leaves a key as
-    it is. A new shape does not keep the panel count and bottom pitch of the old one. Raises JobError.
+    it is. A new shape does not keep the panel count, bottom pitch and joints of the old one. Raises JobError.
     """
     marks = [truss.mark for truss in job.trusses]
     if mark is not None and mark not in marks:
@@ -71,7 +87,7 @@ def with_overrides(job: Job, mark: str | None, changes: Mapping[str, object]) ->
     kept = dict(listed[marks.index(mark) if mark is not None else 0])
     new = {name: _number_typed(name, value) for name, value in changes.items() if value is not None}
     if new.get("shape", kept["shape"]) != kept["shape"]:
-        kept = {name: value for name, value in kept.items() if name not in ("panels", "bottom_pitch")}
+        kept = {name: value for name, value in kept.items() if name not in ("panels", "bottom_pitch", *CUSTOM)}
     return job_from_mapping({**job.given, "truss": [kept | new]}, job.source, job.folder)
 
 
@@ -89,14 +105,14 @@ def _system(data: Mapping[str, object]) -> str:
 
 
 def _tables(reader: TableReader, data: Mapping[str, object]) -> dict[str, dict[str, Given]]:
-    """Entries of every table but [[truss]]; a table that is absent has none."""
+    """Entries of every table but the lists; a table that is absent has none."""
     for name in data:
         if name not in TABLES:
             reader.problem(f"[{told(name)[1:-1]}]", f"there is no such table; {nearest(name[:100], TABLES)}")
-    return {name: reader.table(data.get(name, {}), f"[{name}]") for name in TABLES if name != "truss"}
+    return {name: reader.table(data.get(name, {}), f"[{name}]") for name in TABLES if name not in LISTS}
 
 
-def _scheme(reader: TableReader, given: Entries, folder: Path) -> tuple[Scheme | None, dict[str, Any]]:
+def _scheme(reader: TableReader, given: Entries, folder: Path, attic: object) -> tuple[Scheme | None, dict[str, Any]]:
     """The scheme, and the values of [standard]; no scheme when it cannot be found (a mistake has been noted)."""
     keys = common_form()["standard"]
     values = reader.read(keys, {name: g for name, g in given.items() if name in keys}, "[standard]")
@@ -106,17 +122,19 @@ def _scheme(reader: TableReader, given: Entries, folder: Path) -> tuple[Scheme |
         scheme = load_scheme(values["scheme"], folder)
         form_for(scheme.load_standard, scheme.timber_standard)  # raises for a standard without keys
         reader.standard = scheme.load_standard
-        keys = {**keys, **{option: _option_key(option, choices) for option, choices in scheme.options}}
+        defaults = {option: choices[0] for option, choices in scheme.options} | attic_defaults(attic, scheme)
+        options = {name: _option_key(name, choices, defaults[name]) for name, choices in scheme.options}
+        keys = {**keys, **options}
         return scheme, reader.read(keys, given, "[standard]")
     return None, values
 
 
-def _option_key(name: str, choices: tuple[str, ...]) -> Key:
-    """Key of a scheme option: the words of the form, the choices and the default of the scheme."""
-    default = dict.fromkeys(("US", "metric"), choices[0])
+def _option_key(name: str, choices: tuple[str, ...], taken: str) -> Key:
+    """Key of a scheme option: the words of the form, the choices of the scheme, and the one taken by default."""
+    default = dict.fromkeys(("US", "metric"), taken)
     known = common_form()["option"].get(name)
     if known is None:
-        plain = f"option {name} as the scheme has it: {choices[0]}"
+        plain = f"option {name} as the scheme has it: {taken}"
         return Key(
             name=name, kind=Choice(choices=choices), help="option of the scheme", default=default, assumption=plain
         )

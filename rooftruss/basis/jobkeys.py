@@ -5,12 +5,24 @@ A further load or timber standard adds one file there; nothing here asks which s
 
 import re
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cache, partial
 from typing import Any, cast
 
 from rooftruss.basis import grades, sections
-from rooftruss.basis.kinds import RESISTANCE, SI_UNIT, Choice, Kind, Names, Number, Pitch, Quantity, RestraintKind, Text
+from rooftruss.basis.kinds import (
+    RESISTANCE,
+    SI_UNIT,
+    Choice,
+    Kind,
+    Names,
+    Number,
+    Pitch,
+    Quantity,
+    RestraintKind,
+    Text,
+    Words,
+)
 from rooftruss.basis.tables import data_folder, read_settings
 from rooftruss.errors import JobError, TableError
 
@@ -31,8 +43,11 @@ class Key:
     assumption: str = ""  # sentence printed when the default is used
     source: str = ""
     only: tuple[str, ...] = ()  # standards that know the key; () is all that the file serves
-    needed_with: Mapping[str, str] | None = None  # required only where another key holds this word
+    needed_with: Mapping[str, str] | None = None  # counts only where another key holds this word
     idle_without: str = ""  # key that makes this one unnecessary when it is zero
+    absent: str = ""  # sentence printed when an optional key is left out, where the next two say so
+    absent_with: Mapping[str, str] | None = None  # only where another key holds this word
+    absent_under: tuple[str, ...] = ()  # only under these standards; () is all that the file serves
 
 
 Keys = Mapping[str, Key]
@@ -41,7 +56,7 @@ Form = Mapping[str, Keys]
 
 @cache
 def common_form() -> Form:
-    """Keys that every standard shares, by table: job, standard, loads, point, timber, chord, web, deflection, truss."""
+    """Keys that every standard shares, by table of the job file; form.toml lists them."""
     return _form("form")
 
 
@@ -56,6 +71,28 @@ def form_for(load_standard: str, timber_standard: str) -> Form:
         for table, keys in _form(_file_serving(family, name)).items():
             merged.setdefault(table, {}).update(keys)
     return merged
+
+
+@cache
+def grade_family(timber_standard: str) -> str:
+    """Family of grades ("NDS", "EN") that a timber standard uses. Raises TableError like `form_for`."""
+    about = cast(Entry, read_settings(f"{FOLDER}/{_file_serving('timber', timber_standard)}")["about"])
+    return str(about["family"])
+
+
+def with_grades(form: Form, own: Mapping[str, grades.Grade]) -> Form:
+    """The form of a job that has grades of its own: its lists of grades know them beside those of tables/grades."""
+
+    def widened(key: Key) -> Key:
+        kind = cast(Names, key.kind)
+        return replace(key, kind=replace(kind, known=partial(_own_or, own, kind.known)))
+
+    groups = {table: {**form[table], "grades": widened(form[table]["grades"])} for table in ("chord", "web")}
+    return {**form, **groups}
+
+
+def _own_or(own: Mapping[str, grades.Grade], other: Callable[[str], object], name: str) -> object:
+    return own[name] if name in own else other(name)
 
 
 def _file_serving(family: str, standard: str) -> str:
@@ -86,7 +123,8 @@ def _key(place: str, name: str, entry: Entry) -> Key:
         default = {"US": rest.pop("default")} if "default" in rest else None
         if default is not None:
             default["metric"] = rest.pop("metric_default", default["US"])
-        return Key(name=name, kind=kind, default=default, only=tuple(rest.pop("only", ())), **rest)
+        only, under = (tuple(rest.pop(field, ())) for field in ("only", "absent_under"))
+        return Key(name=name, kind=kind, default=default, only=only, absent_under=under, **rest)
     except (KeyError, TypeError) as error:
         raise TableError(f"{place}: {error}") from None
 
@@ -103,6 +141,8 @@ def _quantity(shows: str, unit: str) -> Callable[[dict[str, Any]], Kind]:
 
 def _names(entry: dict[str, Any]) -> Names:
     catalogue = entry.pop("catalogue")
+    if catalogue == "members":  # of a truss; which ones there are is known only when it is made
+        return Names(known=str, **_take(entry, "example"))
     if catalogue == "sections":
         return Names(known=sections.find_section, **_take(entry, "example"))
     family, _, _ = catalogue.rpartition(" grades")
@@ -121,6 +161,7 @@ _KINDS: dict[str, Callable[[dict[str, Any]], Kind]] = {
     "text": lambda entry: Text(**_take(entry, "longest", "may_be_empty", "pattern", "rule")),
     "choice": lambda entry: Choice(**_take(entry, "choices")),
     "flag": lambda entry: Choice(choices=(True, False)),
+    "words": lambda entry: Words(**_take(entry, "choices")),
     "number": lambda entry: Number(**_take(entry, "limits")),
     "whole": lambda entry: Number(whole=True, **_take(entry, "limits")),
     "pitch": lambda entry: Pitch(**_take(entry, "limits")),

@@ -1,16 +1,22 @@
 """Reads the [[truss]] tables of a job with the keys of [loads] and [timber] that each overrides."""
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
-from rooftruss.basis.job import GroupTimber, LoadSpec, PointLoad, TimberSpec, TrussSpec
+from rooftruss.basis.grades import Grade
+from rooftruss.basis.job import GroupTimber, LoadSpec, TimberSpec, TrussSpec
+from rooftruss.basis.jobattic import ATTIC, attic_options, check_attic
 from rooftruss.basis.jobkeys import Form, Key, Keys
+from rooftruss.basis.jobrows import CUSTOM, read_cases, read_custom, read_points
 from rooftruss.basis.kinds import Choice
+from rooftruss.basis.schemes import Scheme
 from rooftruss.basis.tablereader import Entries, Given, TableReader, entries
 from rooftruss.basis.written import told
 
 MOST_TRUSSES = 500
+CUSTOM_SHAPE = "custom"
+OF_THE_CATALOGUE = ("heel_height", "panels", "bottom_pitch")  # keys of [[truss]] that shape one of the catalogue
 GROUPS = {"top_chord": "chord", "bottom_chord": "chord", "web": "web"}  # key of [timber] -> table of the form
 _ANY = Key(name="", kind=Choice(choices=()), help="")  # stands for a key whose value is read elsewhere
 
@@ -23,6 +29,10 @@ class TrussReader:
     form: Form
     loads: Entries  # as given in [loads]
     timber: Entries
+    scheme: Scheme
+    options: Mapping[str, object]  # of the scheme, in force for the job
+    chosen: Collection[str]  # those of them that [standard] gives
+    grades: tuple[Grade, ...]  # of the job's own
 
     def trusses(self, given: object) -> tuple[TrussSpec, ...]:
         """All trusses, or those that are right; mistakes have been noted."""
@@ -50,7 +60,7 @@ class TrussReader:
                     self.reader.value(keys[name], value)
 
     def _load_keys(self) -> Keys:
-        return {**self.form["loads"], "point": _ANY}
+        return {**self.form["loads"], "point": _ANY, "case": _ANY}
 
     def _timber_keys(self) -> Keys:
         return {**self.form["timber"], **dict.fromkeys(GROUPS, _ANY)}
@@ -66,41 +76,46 @@ class TrussReader:
     def _truss(self, table: Mapping[str, object], place: str) -> TrussSpec | None:
         before = self.reader.mistakes
         given = entries(table, place)
-        own, loads, timber = (
+        lists = dict.fromkeys(CUSTOM, _ANY)
+        own, loads, timber, rows = (
             {name: g for name, g in given.items() if name in keys}
-            for keys in (self.form["truss"], self._load_keys(), self._timber_keys())
+            for keys in (self.form["truss"], self._load_keys(), self._timber_keys(), lists)
         )
-        self.reader.refuse_unknown({**self.form["truss"], **self._load_keys(), **self._timber_keys()}, given)
+        self.reader.refuse_unknown({**self.form["truss"], **self._load_keys(), **self._timber_keys(), **lists}, given)
         values = self.reader.read(self.form["truss"], own, place)
-        load_values = self._loads({**self.loads, **loads})
+        load_values = self._loads({**self.loads, **loads}, place)
         timber_values = self._timber(timber)
+        custom = self._custom(values, rows, place)
         if self.reader.mistakes > before:
             return None
-        truss = TrussSpec(**values, loads=load_values, timber=timber_values)
+        truss = TrussSpec(**values, loads=load_values, timber=timber_values, custom=custom)
         _check_geometry(self.reader, truss, place)
         return truss
 
-    def _loads(self, given: Entries) -> Any:
+    def _custom(self, values: Mapping[str, Any], rows: Entries, place: str) -> Any:
+        """CustomSpec of a truss of that shape, else None; its rows and the keys of the catalogue exclude each other."""
+        if values["shape"] != CUSTOM_SHAPE:
+            for name, given in rows.items():
+                self.reader.problem(f"{given.place} {name}", f"belongs to a truss with shape = {CUSTOM_SHAPE!r}")
+            return None
+        for name in OF_THE_CATALOGUE:
+            if values[name] is not None:
+                self.reader.problem(f"{place} {name}", "is fixed by the joints of a custom truss; leave it out")
+        return read_custom(self.reader, self.form, rows, place)
+
+    def _loads(self, given: Entries, place: str) -> Any:
         """LoadSpec, or None after a mistake."""
         before = self.reader.mistakes
         known = {name: g for name, g in given.items() if name in self.form["loads"]}
         values = self.reader.read(self.form["loads"], known, "[loads]")
-        points = self._points(given["point"]) if "point" in given else ()
-        return LoadSpec(**values, points=points) if self.reader.mistakes == before else None
-
-    def _points(self, given: Given) -> tuple[PointLoad, ...]:
-        head = f"{given.place} point"
-        if not isinstance(given.value, list | tuple):
-            self.reader.problem(head, "is not a list of tables; write [[loads.point]], in two brackets, over each load")
-            return ()
-        points = []
-        for number, item in enumerate(given.value, 1):
-            place = f"{head} {number}"
-            before = self.reader.mistakes
-            values = self.reader.read(self.form["point"], self.reader.table(item, place), place)
-            if self.reader.mistakes == before:
-                points.append(PointLoad(**{**values, "note": values["note"] or ""}))
-        return tuple(points)
+        points = read_points(self.reader, self.form, given["point"]) if "point" in given else ()
+        cases = read_cases(self.reader, self.form, given["case"], self.scheme) if "case" in given else ()
+        if self.reader.mistakes > before:
+            return None
+        check_attic(self.reader, values, place)
+        values |= {"attic": values.get(ATTIC) or "", "attic_storage_live": values.get("attic_storage_live") or 0.0}
+        options = attic_options(self.reader, values[ATTIC], self.scheme, self.options, self.chosen, place)
+        return LoadSpec(**values, points=points, cases=cases, scheme_options=options)
 
     def _timber(self, override: Entries) -> Any:
         """TimberSpec, or None after a mistake."""
@@ -110,7 +125,8 @@ class TrussReader:
         groups = {name.replace("_", " "): self._group(name, override.get(name)) for name in GROUPS}
         if self.reader.mistakes > before:
             return None
-        return TimberSpec(groups=groups, longest_stock=values.pop("longest_stock"), options=values)
+        stock = values.pop("longest_stock")
+        return TimberSpec(groups=groups, longest_stock=stock, options=values, own_grades=self.grades)
 
     def _group(self, name: str, override: Given | None) -> Any:
         """GroupTimber of "top_chord" and so on, or None after a mistake; an override changes single keys of it."""

@@ -17,6 +17,8 @@ SI_UNIT = {
     "pressure": "Pa",
     "speed": "m/s",
     "force": "N",
+    "line load": "N/m",
+    "stress": "Pa",
     "density": "kg/m^3",
     "area": "m^2",
 }
@@ -158,6 +160,23 @@ class Names:
         if twice is not None:
             raise JobError(f"{twice!r} is in the list twice; name it once")
         return names
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Words:
+    """A list of some of a few words, each at most once; it may be empty."""
+
+    choices: tuple[str, ...]
+
+    def read(self, value: object, system: str) -> tuple[str, ...]:
+        """The words, in the order of the choices."""
+        if not isinstance(value, list | tuple):
+            example = ", ".join(map(repr, self.choices))
+            raise JobError(f"{written.told(value)} is not a list; write some of [{example}], or []")
+        found = [Choice(choices=self.choices).read(word, system) for word in value[: LONGEST_LIST + 1]]
+        if len(set(found)) < len(found):
+            raise JobError("a word is in the list twice; name it once")
+        return tuple(choice for choice in self.choices if choice in found)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -102,16 +102,22 @@ class TableReader:
             return values.get(key.same_as)
         if key.idle_without and values.get(key.idle_without) == 0.0:
             return None
+        if key.needed_with and not _hold(values, key.needed_with):
+            return self._absent(key, values, place)
         if key.default is not None:
             default = key.default[self.system]
             self.assume(place, key.assumption.replace("{default}", str(default)))
             return key.kind.read(default, self.system)
         if key.optional:
-            return None
-        if key.needed_with and any(values.get(other) != word for other, word in key.needed_with.items()):
-            return None
+            return self._absent(key, values, place)
         self.problem(place, f"is missing ({self._wanted(key)})")
         return None
+
+    def _absent(self, key: Key, values: Mapping[str, Any], place: str) -> None:
+        """Note what it means that an optional key was left out, where the form says so."""
+        under = not key.absent_under or self.standard in key.absent_under
+        if key.absent and under and _hold(values, key.absent_with or {}):
+            self.assume(place, key.absent)
 
     def assume(self, place: str, text: str) -> None:
         """Note what stands for a value that was left out."""
@@ -124,3 +130,8 @@ class TableReader:
 
     def _foreign(self, key: Key) -> str:
         return f"belongs to {' and '.join(key.only)}, this job's scheme to {self.standard}; take the line out"
+
+
+def _hold(values: Mapping[str, Any], words: Mapping[str, str]) -> bool:
+    """Whether keys hold the words that are asked for."""
+    return all(values.get(key) == word for key, word in words.items())

@@ -7,17 +7,20 @@ Trusses of one layout are one stacked solve; mixed layouts are grouped. Each chu
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from concurrent.futures import Executor
 from dataclasses import dataclass, fields, replace
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.basis.job import Job, TrussSpec
+from rooftruss.basis.schemes import Scheme, load_scheme
 from rooftruss.design.design import LIMIT, Outcome, outcome_of
 from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, run
 from rooftruss.errors import JobError
 from rooftruss.loads.actions import AreaLoads
 from rooftruss.shapes.forming import Dimensions, layout_of
+from rooftruss.timber.check import standard
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -99,26 +102,29 @@ class _Chunk:
     marks: tuple[str, ...]
 
 
-def _shared_key(job: Job, spec: TrussSpec) -> object:
-    """What trusses must have in common to be one family."""
-    timber = spec.timber
-    points = tuple((p.action, p.chord, p.note) for p in spec.loads.points)
-    groups = tuple(sorted((g, t.restraint) for g, t in timber.groups.items()))
-    alone = spec.mark if points else ""  # a point load may stand on another member in the next truss
+def _shared_key(scheme: Scheme, spec: TrussSpec, number: int) -> object:
+    """What trusses must have in common to be one family; `number` is that of the truss in the batch."""
+    timber = standard(scheme.timber_standard, spec.timber.options)
+    groups = spec.timber.groups
+    restraints = {role: groups["top chord" if role == "tail" else role].restraint for role in (*GROUPS, "tail")}
     return (
         layout_of(spec),
-        groups,
-        tuple(sorted((k, str(v)) for k, v in timber.options.items())),
-        spec.quantity >= 3,
-        alone,
+        tuple(restraints.values()),
+        tuple(sorted((k, str(v)) for k, v in spec.timber.options.items())),
+        tuple(
+            timber.shares_load(role=r, sheathed=x.kind == "sheathed", quantity=spec.quantity, spacing=spec.spacing)
+            for r, x in restraints.items()
+        ),
+        number if spec.loads.points else -1,  # a point load may stand on another member in the next truss
     )
 
 
 def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Iterator[_Chunk]:
     groups: dict[object, list[int]] = {}
+    scheme = load_scheme(job.scheme, Path(job.folder))
     for k, spec in enumerate(specs):
         try:
-            groups.setdefault(_shared_key(job, spec), []).append(k)
+            groups.setdefault(_shared_key(scheme, spec, k), []).append(k)
         except JobError as error:
             raise JobError(f"truss {spec.mark}: {error}") from None
     for rows in groups.values():
@@ -197,8 +203,8 @@ def _joined(parts: Sequence[Report], rows: Sequence[NDArray[np.intp]]) -> Report
     columns: dict[str, object] = {}
     for f in fields(Report):
         values = [getattr(p, f.name) for p in parts]
-        if values and isinstance(values[0], np.ndarray):
-            columns[f.name] = np.concatenate(values)[order]
+        if f.type == Array:
+            columns[f.name] = np.concatenate(values)[order] if values else np.zeros(0)
         else:
             flat = [x for part in values for x in part]
             columns[f.name] = tuple(flat[k] for k in order)

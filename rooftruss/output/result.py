@@ -17,6 +17,7 @@ from rooftruss import __version__
 from rooftruss.analysis.envelope import Peak
 from rooftruss.basis.job import Job
 from rooftruss.design.design import LIMIT, Design
+from rooftruss.design.idealisations import idealisations
 from rooftruss.design.idle import idle_summary
 from rooftruss.design.stages import durations_of
 from rooftruss.errors import OutputError
@@ -77,6 +78,7 @@ def truss_record(design: Design) -> Record:
         "bearing_checks": _bearing_checks(design),
         "deflections": _deflections(design),
         "zero_force": _zero_force(design),
+        "pin_jointed": _pin_jointed(design),
         "pieces": [],
         "price": {},
     }
@@ -301,6 +303,13 @@ def _deflections(design: Design) -> list[Record]:
         }
         for k, p in enumerate(found.places)
     ]
+
+
+def _pin_jointed(design: Design) -> Record:
+    """Axial forces of the pin-jointed truss by case and member, beside the frame's in `effects`."""
+    forces = idealisations(design).pin_jointed
+    names, cases = design.run.members.names, design.run.cases.names
+    return {case: dict(zip(names, _numbers(row), strict=True)) for case, row in zip(cases, forces, strict=True)}
 
 
 def _zero_force(design: Design) -> Record:

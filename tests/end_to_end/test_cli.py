@@ -12,6 +12,7 @@ import pytest
 from rooftruss import __version__
 from rooftruss.cli import COMMANDS, main
 from rooftruss.output.explain_grids import explanation
+from rooftruss.output.numbering import numbering_of
 from rooftruss.output.schedule import Measure
 from rooftruss.shapes.webbing import SHAPES
 from tests.damaged import damages
@@ -185,7 +186,7 @@ def test_explain_takes_any_combination_by_number_or_name(run):
 def test_every_explanation_of_every_truss_ends_with_the_utilisation_checked(path):
     for design in designed(path).designs:
         for k, name in enumerate(design.run.members.names):
-            _, grid = explanation(design, name)
+            _, grid = explanation(design, name, numbering_of([design]))
             found = [row[1] for row in grid.rows if row[0] == "utilisation"][-1]
             assert isinstance(found, Measure)
             assert grid.rows[-1][0] == "utilisation"

@@ -235,6 +235,13 @@ def test_tie_in_tension_and_bending():
     assert found["utilisation"] == found["(6.17)"]
 
 
+def test_flat_tie_takes_the_size_factor_of_its_larger_side():
+    # EN 1995-1-1, 3.2(3): width in tension; 120 wide, 45 deep: (150/120)^0.2, not the capped 1.273 of the depth
+    found = explained(code(), {"grade": "C24", "b": 120, "h": 45}, demand(N=10.0))
+    expected = 10e3 / (120 * 45) / (14.5 * (150 / 120) ** 0.2 * 0.9 / 1.3)
+    assert found["utilisation"] == pytest.approx(expected)
+
+
 def test_web_without_a_brace():
     # by hand from EN 1995-1-1, 6.3.2: C16, 35 x 72, 1.5 m, 3.2 kN, k_mod 0.9
     found = explained(code(), {"grade": "C16", "b": 35, "h": 72, "le_strong": 1500, "le_weak": 1500}, demand(N=-3.2))

@@ -110,6 +110,16 @@ def test_table_7_4b_cells():
     assert [cells[a, "H"] for a in (5, 15, 30, 45, 60, 75)] == [-0.7, -0.6, -0.8, -0.9, -0.8, -0.8]
 
 
+def test_cells_of_small_areas():
+    # EN 1991-1-4, Tables 7.4a, 7.4b and 7.2, c_pe,1, from memory of the printed tables
+    across = {(degrees(r["slope"]), r["zone"]): r["suction_1"] for r in read_table("wind/duopitch_across_en1991").rows}
+    along = {(degrees(r["slope"]), r["zone"]): r["suction_1"] for r in read_table("wind/duopitch_along_en1991").rows}
+    assert [across[15, z] for z in "FGHIJ"] == [-2.0, -1.5, -0.3, -0.4, -1.5]
+    assert [across[30, z] for z in "FGHIJ"] == [-1.5, -1.5, -0.2, -0.4, -0.5]
+    assert [along[15, z] for z in "FGHI"] == [-2.0, -2.0, -1.2, -0.5]
+    assert [along[60, z] for z in "FGHI"] == [-1.5, -2.0, -1.0, -0.5]
+
+
 def test_table_3_1_falls_with_duration_and_moisture():
     rows = read_table("timber/k_mod_en1995").rows
     k_mod = {(r["duration"], r["service_class"]): r["k_mod"] for r in rows}

@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from rooftruss.basis.grades import find_grade
-from rooftruss.basis.job import Restraint, TrussSpec
+from rooftruss.basis.job import GroupTimber, Restraint, TrussSpec
 from rooftruss.basis.sections import find_section
 from rooftruss.design import batch
 from rooftruss.design.batch import Report, check_many
@@ -157,7 +157,18 @@ def test_trusses_that_differ_in_a_setting_are_not_run_as_one(field):
     assert together.worst[0] != pytest.approx(together.worst[1], rel=1e-4)
 
 
-def _unsheathed(truss: TrussSpec):
+def test_point_loads_stand_where_each_truss_has_them():
+    """Two trusses of one mark, their loads on different members of the bottom chord."""
+    first = spec("T1", points=True)
+    (point,) = first.loads.points
+    moved = replace(first.loads, points=(replace(point, position=7.0, force=5000.0),))
+    pair = [first, replace(first, loads=moved)]
+    together = check_many(house(), pair, [SIZES])
+    alone = [check_many(house(), [s], [SIZES]) for s in pair]
+    assert together.worst == pytest.approx([float(a.worst[0]) for a in alone], rel=1e-12)
+
+
+def _unsheathed(truss: TrussSpec) -> dict[str, GroupTimber]:
     groups = dict(truss.timber.groups)
     groups["top chord"] = replace(groups["top chord"], restraint=Restraint(kind="spacing", spacing=1.2))
     return groups

@@ -9,7 +9,7 @@ import pytest
 from rooftruss.basis.job import GroupTimber, TrussSpec
 from rooftruss.design.batch import check_many
 from rooftruss.design.compare import alternatives, compare_shapes
-from rooftruss.design.design import LIMIT
+from rooftruss.design.design import LIMIT, Design
 from rooftruss.design.sizing import size_truss
 from rooftruss.design.stages import GROUPS, options_of
 from rooftruss.errors import JobError
@@ -34,7 +34,19 @@ def every_choice(truss: TrussSpec) -> list[dict[str, tuple[str, str]]]:
     return [dict(zip(GROUPS, chosen, strict=True)) for chosen in product(*(kinds(groups[g]) for g in GROUPS))]
 
 
-def taken(design) -> dict[str, tuple[str, str]]:
+def only(choice: dict[str, tuple[str, str]]) -> dict[str, dict[str, tuple[str, ...]]]:
+    """The changes for `limited` that leave this one choice."""
+    return {g: {"sizes": (size,), "grades": (grade,)} for g, (size, grade) in choice.items()}
+
+
+def failing_parts(design: Design) -> set[str]:
+    """Groups with a member over its limit, and "bearing" and "deflection" as one each, by what is said."""
+    made = design.run.family.topology
+    group = dict(zip(made.names, made.groups, strict=True))
+    return {group.get(text.split(" (")[0], text.split(" at ")[0].split()[-1]) for text in design.failures}
+
+
+def taken(design: Design) -> dict[str, tuple[str, str]]:
     return {g: (option.section.name, option.grade.name) for g, option in design.sizes.items()}
 
 
@@ -65,9 +77,10 @@ def test_when_nothing_passes_the_nearest_is_shown_with_what_failed():
     small = limited(spec("T1"), top_chord={"sizes": ("2x3",)}, bottom_chord={"sizes": ("2x3", "2x4")})
     design = size_truss(house(), small)
     choices = every_choice(small)
-    worst = check_many(house(), [small] * len(choices), choices).worst
+    single = [size_truss(house(), limited(small, **only(choice))) for choice in choices]
     assert not design.passes
-    assert float(design.outcome.worst) == pytest.approx(worst.min())
+    best = min(single, key=lambda d: (len(failing_parts(d)), float(d.outcome.worst)))
+    assert taken(design) == taken(best)
     assert design.notes == (
         f"none of the {len(choices)} allowed combinations of sizes and grades passes; the nearest is shown",
     )
@@ -87,10 +100,10 @@ def test_a_failed_bearing_and_a_failed_deflection_are_said():
 
 
 def test_sizes_that_leave_no_room_under_a_raised_heel_are_left_out():
-    low = spec("T1", heel_height=0.255)  # room for 2x4 and 2x6 top chords over a 2x4, not for a 2x8
+    low = spec("T1", heel_height=0.185)  # room for 2x4 and 2x6 top chords over a 2x4, not for a 2x8
     design = size_truss(house(), limited(low, top_chord={"sizes": ("2x8", "2x6")}, bottom_chord={"sizes": ("2x4",)}))
     assert taken(design)["top chord"][0] == "2x6"
-    with pytest.raises(JobError, match="heel_height: 0.255 m leaves no room for a heel post"):
+    with pytest.raises(JobError, match=r"heel_height: 0\.185 m leaves no room for a heel post"):
         size_truss(house(), limited(low, top_chord={"sizes": ("2x8",)}))
 
 

@@ -15,9 +15,10 @@ from rooftruss.output.workbook.styles import Looks, plain
 FIRST, LAST = ("Quote",), ("Combinations", "Cases", "Geometry", "Assumptions", "Cautions")
 
 
-def write_workbook(job: Job, designs: Sequence[Design], path: str | Path) -> None:
+def write_workbook(job: Job, designs: Sequence[Design], path: str | Path, *, pin_jointed: bool = False) -> None:
     """Write the quote of a job as an .xlsx file; a file that is there stays unless the new one is whole.
 
+    pin_jointed: also a sheet per truss with the forces of the pin-jointed truss beside the frame's, per case.
     Raises OutputError with the path and what to do.
     """
     from openpyxl import Workbook
@@ -29,13 +30,17 @@ def write_workbook(job: Job, designs: Sequence[Design], path: str | Path) -> Non
     marks: list[str] = []
     for design in designs:
         marks.append(sheet_name(design.spec.mark, [*names, *marks]))
-    page = {name: Page(book.create_sheet(name), looks, job.units) for name in (*FIRST, *marks, *LAST)}
+    pinned = [sheet_name(f"{mark} pin-jointed", [*names, *marks]) for mark in marks] if pin_jointed else []
+    every = (*FIRST, *marks, *pinned, *LAST)
+    page = {name: Page(book.create_sheet(name), looks, job.units) for name in every}
     numbering = numbering_of(designs)
     points = PointSheet(page["Geometry"])
     pages.points_page(points.page, job)
     pages.quote_page(page["Quote"], job, designs)
     for mark, design in zip(marks, designs, strict=True):
         pages.truss_page(page[mark], points, job, design, numbering)
+    for name, design in zip(pinned, designs if pinned else (), strict=True):
+        pages.idealisations_page(page[name], job, design, numbering)
     for_print(points.page, job, landscape=False, repeat="1:2", freeze="A3")
     pages.combinations_page(page["Combinations"], job, designs, numbering)
     pages.cases_page(page["Cases"], job, designs, numbering)

@@ -7,6 +7,7 @@ from rooftruss.design.design import Design
 from rooftruss.design.idle import idle_members
 from rooftruss.output.case_grids import cases_grids
 from rooftruss.output.cautions import SHORT_CAUTIONS
+from rooftruss.output.idealisation_grids import idealisations_grid
 from rooftruss.output.job_grids import assumptions_grid, cautions_grid, combinations_grid, quote_grid
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.picture import picture
@@ -166,6 +167,19 @@ def cases_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbe
     for grid in grids:
         page.grid(grid, title="", look="data")
     for_print(page, job, landscape=True, repeat="4:4", freeze="A5")
+
+
+def idealisations_page(page: Page, job: Job, design: Design, numbering: Numbering) -> None:
+    """Pin-jointed forces of one truss beside the frame's, case by case."""
+    grid = idealisations_grid(design, numbering)
+    page.widths((7, 46, 12, 16, 16, 16))
+    page.line(grid.title, "title", 24)
+    page.line(
+        "Unfactored, tension positive. Loads of the pin-jointed truss act at its joints; tails are no part of it."
+    )
+    page.row += 1
+    page.grid(grid, title="", look="data")
+    for_print(page, job, landscape=False, repeat="4:5", freeze="A6")
 
 
 def words_page(page: Page, job: Job, grid: Grid, first: float) -> None:
