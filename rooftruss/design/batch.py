@@ -8,7 +8,7 @@ from collections.abc import Callable, Iterator, Mapping, Sequence
 from concurrent.futures import Executor
 from dataclasses import dataclass, fields, replace
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -28,6 +28,8 @@ if TYPE_CHECKING:
 Array = NDArray[np.float64]
 CHUNK_BYTES = 48e6  # memory of the largest array of a chunk; about six such arrays live at once
 LARGEST_CHUNK = 256  # trusses; more gives no speed, the arrays leave the processor's cache
+NUMBERS = tuple(f.name for f in fields(AreaLoads))  # loads that may differ within a family
+_NO_LOADS: dict[str, Any] = dict.fromkeys(NUMBERS, 0.0)
 Sizes = Mapping[str, tuple[str, str]]  # group -> (size, grade)
 
 
@@ -115,7 +117,10 @@ def _shared_key(scheme: Scheme, spec: TrussSpec, number: int) -> object:
             timber.shares_load(role=r, sheathed=x.kind == "sheathed", quantity=spec.quantity, spacing=spec.spacing)
             for r, x in restraints.items()
         ),
-        number if spec.loads.points else -1,  # a point load may stand on another member in the next truss
+        replace(spec.loads, **_NO_LOADS),  # all but the numbers
+        tuple(getattr(spec.loads, name) > 0 for name in NUMBERS),  # a load of zero makes no case
+        # A point load may stand on another member in the next truss.
+        number if spec.loads.points or spec.loads.cases else -1,
     )
 
 

@@ -9,6 +9,7 @@ from rooftruss.analysis.effects import mid_deflections
 from rooftruss.design.stages import Run
 
 Array = NDArray[np.float64]
+SAME_PLACE = 1e-6  # [m]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -67,15 +68,17 @@ def _unit(run: Run, places: tuple[Place, ...]) -> Array:
 
 
 def _reach(run: Run, places: tuple[Place, ...]) -> Array:
-    """Length l of the limits l/x for each place (..., place): the span, or twice the cantilever for a tail end."""
-    made = run.family.topology
-    tips = {n for m in made.members if m.role == "tail" for n in (m.start, m.end)} - {
-        n for m in made.members if m.role != "tail" for n in (m.start, m.end)
-    }
-    span, tail = run.family.size.bearing_span, run.family.size.tail
-    return np.stack(
-        np.broadcast_arrays(*(2 * tail if p.kind == "node" and p.number in tips else span for p in places)), axis=-1
-    )
+    """Length l of the limits l/x for each place (..., place): between the bearings on either side of it, or twice the
+    cantilever beyond the last one."""
+    made, truss = run.family.topology, run.truss
+    at = truss.xy[..., [s.node for s in made.supports if s.vertical], 0]
+    middles = (truss.start_xy[..., 0] + truss.end_xy[..., 0]) / 2
+    x = np.stack([middles[..., p.number] if p.kind == "member" else truss.xy[..., p.number, 0] for p in places], -1)
+    beyond = np.maximum(at[..., :1] - x, x - at[..., -1:])
+    after = np.sum(x[..., None] >= at[..., None, :] - SAME_PLACE, axis=-1)
+    left = np.clip(after - 1, 0, at.shape[-1] - 2)
+    between = np.take_along_axis(at, left + 1, -1) - np.take_along_axis(at, left, -1)
+    return np.where(beyond > SAME_PLACE, 2 * beyond, between)
 
 
 def deflections(run: Run) -> Deflections:

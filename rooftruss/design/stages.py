@@ -16,9 +16,9 @@ from numpy.typing import NDArray
 from rooftruss.analysis.combinations import CaseHead, Combinations, combine
 from rooftruss.analysis.effects import UnitEffects, demands_and_envelope, unit_effects
 from rooftruss.analysis.envelope import Envelope
-from rooftruss.analysis.frame import Solution, solve
+from rooftruss.analysis.frame import Solution, require_stable, solve, stiffness_matrix
 from rooftruss.basis.grades import Grade, find_grade
-from rooftruss.basis.job import Job, Restraint, TrussSpec
+from rooftruss.basis.job import Job, PointLoad, Restraint, TrussSpec
 from rooftruss.basis.schemes import Scheme, load_scheme
 from rooftruss.basis.sections import Section, find_section
 from rooftruss.basis.tables import read_table
@@ -31,10 +31,22 @@ from rooftruss.loads.actions import (
     cases_on,
     position_from_centre,
     roof_of,
+    walked_stops,
 )
 from rooftruss.loads.cases import LoadCases, member_at
-from rooftruss.shapes.catalogue import Layout, topology
-from rooftruss.shapes.forming import Dimensions, dimensions, form, layout_of
+from rooftruss.loads.gable import flattest_pitch, gable_fault
+from rooftruss.loads.own import own_cases
+from rooftruss.loads.roof import ActionCase
+from rooftruss.shapes.custom_layout import CustomLayout
+from rooftruss.shapes.forming import (
+    AnyLayout,
+    Dimensions,
+    bearing_lengths,
+    dimensions,
+    form,
+    layout_of,
+    topology_of,
+)
 from rooftruss.shapes.truss import Topology, Truss
 from rooftruss.timber.check import Checks, Demand, Durations, Members, TimberStandard, standard
 from rooftruss.timber.restraint import restraint_lengths
@@ -58,7 +70,7 @@ class Family:
 
     job: Job
     spec: TrussSpec  # the first of them; settings that the whole family shares are read from it
-    layout: Layout
+    layout: AnyLayout
     size: Dimensions
     loads: AreaLoads
     points: tuple[PlacedPoint, ...]
@@ -68,7 +80,7 @@ class Family:
     @cached_property
     def topology(self) -> Topology:
         """Names and connectivity."""
-        return topology(self.layout)
+        return topology_of(self.layout)
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -113,6 +125,7 @@ class Run:
     envelope: Envelope
     checks: Checks
     reactions: Array  # (..., strength combination, support, 2) [N], on the truss, up positive
+    bearing_lengths: Array  # (..., support) [m]
     bearing: Array  # utilisation (..., strength combination, support)
 
     @property
@@ -152,27 +165,37 @@ def unbatched(family: Family) -> Family:
     return replace(family, size=Dimensions(**bare(family.size)), loads=AreaLoads(**bare(family.loads)), points=points)
 
 
-def _placed(layout: Layout, size: Dimensions, specs: Sequence[TrussSpec]) -> tuple[PlacedPoint, ...]:
-    """Point loads on the chord members below or above them."""
+def _placed(layout: AnyLayout, size: Dimensions, specs: Sequence[TrussSpec]) -> tuple[PlacedPoint, ...]:
+    """Point loads, those of the job's own cases among them, on the chord members below or above them."""
+    given = [_points_of(spec) for spec in specs]
+    if not given[0]:
+        return ()
+    line = form(replace(layout, raised_heel=False), size, 0.0, 0.0).one(0)
     out = []
-    line = form(replace(layout, raised_heel=False), size, 0.0, 0.0) if specs[0].loads.points else None
-    for k, point in enumerate(specs[0].loads.points):
-        x = np.array([position_from_centre(s.loads.points[k], s.bearing) for s in specs])
-        member = member_at(cast(Truss, line).one(0), point.chord, float(x[0]))
+    for k, (case, point) in enumerate(given[0]):
+        x = np.array([position_from_centre(own[k][1], s.bearing) for own, s in zip(given, specs, strict=True)])
+        member = member_at(line, point.chord, float(x[0]))
         if member is None:
+            place = f"[[loads.case]] {case!r} points" if case else "[[loads.point]]"
             raise JobError(
-                f"[[loads.point]] position: {point.position:.2f} m is outside the {point.chord} chord; "
+                f"{place} position: {point.position:.2f} m is outside the {point.chord} chord; "
                 "measure from the outside of the left bearing"
             )
-        force = np.array([s.loads.points[k].force for s in specs])
-        out.append(PlacedPoint(action=point.action, note=point.note, member=member, x=x, force=force))
+        force = np.array([own[k][1].force for own in given])
+        out.append(PlacedPoint(action=point.action, note=point.note, case=case, member=member, x=x, force=force))
     return tuple(out)
+
+
+def _points_of(spec: TrussSpec) -> list[tuple[str, PointLoad]]:
+    """(name of its case or "", point load) of every point load of a truss."""
+    return [*(("", p) for p in spec.loads.points), *((c.name, p) for c in spec.loads.cases for p in c.points)]
 
 
 def options_of(spec: TrussSpec) -> dict[str, tuple[Option, ...]]:
     """Allowed sizes and grades of each group of a truss, in the order given. Raises JobError for an unknown name."""
+    own = {grade.name: grade for grade in spec.timber.own_grades}
     return {
-        group: tuple(Option(find_section(s), find_grade(g)) for s in timber.sizes for g in timber.grades)
+        group: tuple(Option(find_section(s), own.get(g) or find_grade(g)) for s in timber.sizes for g in timber.grades)
         for group, timber in spec.timber.groups.items()
     }
 
@@ -182,13 +205,15 @@ def run(family: Family, choice: Choice) -> Run:
     depth = {g: choice.column(g, [o.section.depth for o in choice.options[g]]) for g in GROUPS}
     truss = form(family.layout, family.size, depth["top chord"], depth["bottom chord"])
     members = _members(family, choice, truss)
-    heads = action_cases(family.scheme.load_standard, roof_of(family.size), family.loads, family.job.site)
     area = members.breadth * members.depth * members.plies
     weight = area * members.properties["density"] * GRAVITY
-    cases = cases_on(truss, heads, family.size.spacing, weight, family.points)
-    combinations = combine(case_heads(cases), family.scheme, family.job.scheme_options)
+    cases = _cases(family, truss, weight)
+    options = {**family.job.scheme_options, **dict(family.spec.loads.scheme_options)}
+    combinations = combine(case_heads(cases), family.scheme, options)
     modulus = members.properties["E"]
     ea, ei = modulus * area, modulus * area * members.depth**2 / 12
+    if isinstance(family.layout, CustomLayout):
+        require_stable(truss.topology, _first(stiffness_matrix(truss, ea, ei), 2)[None])
     solution = solve(truss, ea, ei, cases)
     effects = unit_effects(truss, cases, solution)
     strength = np.flatnonzero(combinations.strength)
@@ -197,6 +222,7 @@ def run(family: Family, choice: Choice) -> Run:
     demand = Demand(**{f.name: getattr(demands, f.name) for f in fields(demands)})
     durations = durations_of(combinations)
     reactions = _combined_reactions(factors, solution.reactions)
+    bearing = bearing_lengths(family.layout, truss)
     return Run(
         family=family,
         choice=choice,
@@ -212,13 +238,35 @@ def run(family: Family, choice: Choice) -> Run:
         envelope=envelope,
         checks=family.timber.check(members, demand, durations),
         reactions=reactions,
+        bearing_lengths=bearing,
         bearing=family.timber.bearing(
             np.maximum(reactions[..., 1], 0.0),
             take_members(members, bearing_members(family.topology)),
-            truss.bearing[..., None],
+            bearing,
             durations,
         ),
     )
+
+
+def _cases(family: Family, truss: Truss, weight: Array) -> LoadCases:
+    """Cases of the load standard and of the job on the members; weight (..., m) is the self-weight [N/m]."""
+    standard_name, size, roof, fault = family.scheme.load_standard, family.size, roof_of(family.size), ""
+    if isinstance(family.layout, CustomLayout):
+        one = Truss(topology=truss.topology, xy=_first(truss.xy, 2), bearing=_first(truss.bearing, 0))
+        bare = type(roof)(**{f.name: _first(np.asarray(getattr(roof, f.name)), 0) for f in fields(roof)})
+        fault = gable_fault(one, bare)
+        roof = replace(roof, pitch=np.minimum(roof.pitch, flattest_pitch(one))) if fault else roof
+    heads: list[ActionCase] = [
+        *action_cases(standard_name, roof, family.loads, family.job.site, truss, fault=fault),
+        *own_cases(truss, family.spec.loads.cases, size.bearing, size.spacing),
+    ]
+    walked = walked_stops(truss, family.loads, standard_name)
+    return cases_on(truss, heads, size.spacing, weight, family.points, walked)
+
+
+def _first(array: Array, own: int) -> Array:
+    """The first of a batch; `own` axes of the array are its own."""
+    return np.asarray(array.reshape(-1, *array.shape[array.ndim - own :])[0])
 
 
 def combinations_of(job: Job, spec: TrussSpec) -> Combinations:

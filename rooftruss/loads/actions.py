@@ -1,17 +1,19 @@
 """All actions on a truss: the registry of load standards, and the load cases of a batch on its members."""
 
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.basis.job import LoadSpec, PointLoad
-from rooftruss.errors import JobError, nearest
+from rooftruss.errors import JobError, OutOfScopeError, nearest
 from rooftruss.loads import imposed, snow_asce7, wind_asce7
+from rooftruss.loads.attic import attic_cases
 from rooftruss.loads.cases import ChordPoint, LoadCases, lay_on
 from rooftruss.loads.dead import dead_cases
 from rooftruss.loads.roof import ActionCase, Roof, Site
+from rooftruss.loads.walked import BOTTOM, TOP, Stop, stops
 from rooftruss.shapes.forming import Dimensions
 from rooftruss.shapes.truss import Truss
 
@@ -20,7 +22,7 @@ Array = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class AreaLoads:
-    """Area loads of a batch, arrays (...,) [Pa]; see basis.job.LoadSpec."""
+    """Loads of a batch that are one number a truss, arrays (...,) [Pa], walked loads [N]; see basis.job.LoadSpec."""
 
     roof_dead: Array
     roof_dead_least: Array
@@ -28,35 +30,56 @@ class AreaLoads:
     ceiling_dead_least: Array
     roof_live: Array
     ceiling_live: Array
+    maintenance_load: Array
+    ceiling_point_load: Array
+    attic_storage_live: Array
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class PlacedPoint:
-    """Point loads of a batch that stand on the same member: what the load is, and where in each truss."""
+    """Point loads of a batch that stand on the same member: what the load is, and where in each truss.
+
+    case is the name of the job's own case it belongs to; "" joins all cases of the action.
+    """
 
     action: str
     note: str
+    case: str = ""
     member: int
     x: Array  # from the left bearing centre [m]
     force: Array  # downwards [N]
 
 
-Variable = Callable[[Roof, AreaLoads, Site], list[ActionCase]]
+Variable = Callable[[Roof, AreaLoads, Site, Truss], list[ActionCase]]
 
 
-def _asce7(edition: str) -> Variable:
-    def cases(roof: Roof, loads: AreaLoads, site: Site) -> list[ActionCase]:
+@dataclass(frozen=True, slots=True, kw_only=True)
+class LoadStandard:
+    """One edition of a load standard: its variable cases, and the clauses that lay some of them on a gable roof."""
+
+    cases: Variable
+    gable: str
+    gable_actions: tuple[str, ...] = ("S", "W")
+
+
+def _asce7(edition: str) -> LoadStandard:
+    def cases(roof: Roof, loads: AreaLoads, site: Site, truss: Truss) -> list[ActionCase]:
+        storage = bool(np.any(loads.attic_storage_live))
         return [
-            *imposed.ceiling_live_cases(loads.ceiling_live),
+            *(
+                attic_cases(truss, loads.ceiling_live, loads.attic_storage_live)
+                if storage
+                else imposed.ceiling_live_cases(loads.ceiling_live)
+            ),
             *imposed.roof_live_cases(roof, loads.roof_live),
             *snow_asce7.snow_cases(roof, site, edition),
             *wind_asce7.wind_cases(roof, site, edition),
         ]
 
-    return cases
+    return LoadStandard(cases=cases, gable=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1")
 
 
-STANDARDS: Mapping[str, Variable] = {"ASCE 7-16": _asce7("7-16"), "ASCE 7-22": _asce7("7-22")}
+STANDARDS: Mapping[str, LoadStandard] = {"ASCE 7-16": _asce7("7-16"), "ASCE 7-22": _asce7("7-22")}
 
 
 def area_loads(specs: Sequence[LoadSpec]) -> AreaLoads:
@@ -76,20 +99,39 @@ def roof_of(size: Dimensions) -> Roof:
     )
 
 
-def action_cases(standard: str, roof: Roof, loads: AreaLoads, site: Site) -> list[ActionCase]:
+def action_cases(
+    standard: str, roof: Roof, loads: AreaLoads, site: Site, truss: Truss, *, fault: str = ""
+) -> list[ActionCase]:
     """Every load case of one load standard: dead, then the variable actions in the standard's order.
 
+    fault says what keeps the roof from being a symmetric gable (loads.gable), "" if nothing does.
     Raises JobError for an unknown standard, OutOfScopeError for what the standard does not cover.
     """
     if standard not in STANDARDS:
         raise JobError(f"load standard {standard!r} is unknown; {nearest(standard, STANDARDS)}")
+    chosen = STANDARDS[standard]
     dead = dead_cases(loads.roof_dead, loads.roof_dead_least, loads.ceiling_dead, loads.ceiling_dead_least)
-    return [*dead, *STANDARDS[standard](roof, loads, site)]
+    cases = [*dead, *chosen.cases(roof, loads, site, truss)]
+    if fault and any(case.action in chosen.gable_actions for case in cases):
+        raise OutOfScopeError(
+            f"{chosen.gable}: snow and wind are covered on symmetric gable roofs only, and here {fault}; make snow and "
+            "wind of the job zero and give them as cases of its own ([[loads.case]])"
+        )
+    return cases
+
+
+def walked_stops(truss: Truss, loads: AreaLoads, standard: str) -> list[Stop]:
+    """Places of the loads that are walked along the chords; each is an alternative of its action."""
+    roof = stops(
+        truss, TOP, loads.maintenance_load, action="Lr", what="person on roof", clause=f"{standard}, concentrated load"
+    )
+    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause="job")
+    return [*roof, *ceiling]
 
 
 def _point_cases(points: Sequence[PlacedPoint]) -> list[ActionCase]:
     """One case for the point loads of each action; of dead load they count where it adds, not where it resists."""
-    actions = sorted({p.action for p in points}, key=["D", "L", "Lr", "S", "W"].index)
+    actions = sorted({p.action for p in points if not p.case}, key=["D", "L", "Lr", "S", "W"].index)
     return [
         ActionCase(
             name=f"point loads, {action}",
@@ -103,13 +145,42 @@ def _point_cases(points: Sequence[PlacedPoint]) -> list[ActionCase]:
 
 
 def cases_on(
-    truss: Truss, heads: Sequence[ActionCase], spacing: Array, self_weight: Array, points: Sequence[PlacedPoint]
+    truss: Truss,
+    heads: Sequence[ActionCase],
+    spacing: Array,
+    self_weight: Array,
+    points: Sequence[PlacedPoint] = (),
+    walked: Sequence[Stop] = (),
 ) -> LoadCases:
-    """The cases on the members; point loads make a case of their own for each action."""
-    own = _point_cases(points)
-    place = {case.action: len(heads) + k for k, case in enumerate(own)}
-    on_chords = [ChordPoint(case=place[p.action], member=p.member, x=p.x, force=p.force) for p in points]
-    return lay_on(truss, [*heads, *own], spacing, self_weight, on_chords)
+    """The cases on the members. Point loads of no case make one of their own for each action; so does every stop of a
+    walked load. Raises JobError where two cases have one name.
+    """
+    joining = _point_cases(points)
+    every = [*heads, *joining, *(stop.case for stop in walked)]
+    place = _numbers(every)
+    on_chords = [
+        ChordPoint(case=place[p.case or f"point loads, {p.action}"], member=p.member, x=p.x, force=p.force)
+        for p in points
+    ]
+    on_chords += [
+        ChordPoint(case=place[s.case.name], member=s.member, x=s.x, force=s.force)
+        for s in walked
+        if s.member is not None
+    ]
+    made = lay_on(truss, every, spacing, self_weight, on_chords)
+    nodal = made.nodal.copy()
+    for stop in walked:
+        if stop.node is not None:
+            nodal[..., place[stop.case.name], stop.node, 1] -= stop.force
+    return replace(made, nodal=nodal) if walked else made
+
+
+def _numbers(heads: Sequence[ActionCase]) -> dict[str, int]:
+    found: dict[str, int] = {}
+    for number, head in enumerate(heads):
+        if found.setdefault(head.name, number) != number:
+            raise JobError(f"[[loads.case]] name: the load standard has a case {head.name!r} itself; take another name")
+    return found
 
 
 def position_from_centre(point: PointLoad, bearing: float) -> float:
