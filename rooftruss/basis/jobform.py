@@ -123,14 +123,17 @@ def _scheme(reader: TableReader, given: Entries, folder: Path, attic: object) ->
         form_for(scheme.load_standard, scheme.timber_standard)  # raises for a standard without keys
         reader.standard = scheme.load_standard
         defaults = {option: choices[0] for option, choices in scheme.options} | attic_defaults(attic, scheme)
-        options = {name: _option_key(name, choices, defaults[name]) for name, choices in scheme.options}
+        options = {name: _option_key(name, choices, defaults[name], attic) for name, choices in scheme.options}
         keys = {**keys, **options}
         return scheme, reader.read(keys, given, "[standard]")
     return None, values
 
 
-def _option_key(name: str, choices: tuple[str, ...], taken: str) -> Key:
-    """Key of a scheme option: the words of the form, the choices of the scheme, and the one taken by default."""
+def _option_key(name: str, choices: tuple[str, ...], taken: str, attic: object) -> Key:
+    """Key of a scheme option: the words of the form, the choices of the scheme, and the one taken by default.
+
+    What is not the default of the scheme itself is that of the attic.
+    """
     default = dict.fromkeys(("US", "metric"), taken)
     known = common_form()["option"].get(name)
     if known is None:
@@ -138,4 +141,5 @@ def _option_key(name: str, choices: tuple[str, ...], taken: str) -> Key:
         return Key(
             name=name, kind=Choice(choices=choices), help="option of the scheme", default=default, assumption=plain
         )
-    return replace(known, kind=Choice(choices=choices), default=default)
+    words = known.assumption + (f", as for an attic {attic}" if taken != choices[0] else "")
+    return replace(known, kind=Choice(choices=choices), default=default, assumption=words)

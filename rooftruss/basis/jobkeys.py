@@ -24,7 +24,7 @@ from rooftruss.basis.kinds import (
     Words,
 )
 from rooftruss.basis.tables import data_folder, read_settings
-from rooftruss.errors import JobError, TableError
+from rooftruss.errors import JobError, TableError, nearest
 
 FOLDER = "jobform"
 Entry = Mapping[str, Any]
@@ -44,6 +44,7 @@ class Key:
     source: str = ""
     only: tuple[str, ...] = ()  # standards that know the key; () is all that the file serves
     needed_with: Mapping[str, str] | None = None  # counts only where another key holds this word
+    needed_without: str = ""  # key in whose place this one may stand: one of the two is required
     idle_without: str = ""  # key that makes this one unnecessary when it is zero
     absent: str = ""  # sentence printed when an optional key is left out, where the next two say so
     absent_with: Mapping[str, str] | None = None  # only where another key holds this word
@@ -92,6 +93,9 @@ def with_grades(form: Form, own: Mapping[str, grades.Grade]) -> Form:
 
 
 def _own_or(own: Mapping[str, grades.Grade], other: Callable[[str], object], name: str) -> object:
+    hint = nearest(name, own) if own else ""
+    if name not in own and hint.startswith("did you mean"):
+        raise JobError(f"grade {name!r} is not in tables/grades nor among the [[grade]] of the job; {hint}")
     return own[name] if name in own else other(name)
 
 

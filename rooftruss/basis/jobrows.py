@@ -22,7 +22,7 @@ def read_rows(reader: TableReader, keys: Keys, given: Given, name: str, heading:
 
     heading says how the list is written: "[[loads.point]], in two brackets, over each load".
     """
-    head = f"{given.place} {name}"
+    head = f"{given.place} {name}".strip()
     if not isinstance(given.value, list | tuple):
         reader.problem(head, f"is not a list of tables; write {heading}")
         return

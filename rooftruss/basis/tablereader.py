@@ -102,6 +102,8 @@ class TableReader:
             return values.get(key.same_as)
         if key.idle_without and values.get(key.idle_without) == 0.0:
             return None
+        if key.needed_without and values.get(key.needed_without) is not None:
+            return None
         if key.needed_with and not _hold(values, key.needed_with):
             return self._absent(key, values, place)
         if key.default is not None:

@@ -7,20 +7,21 @@ Trusses of one layout are one stacked solve; mixed layouts are grouped. Each chu
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from concurrent.futures import Executor
 from dataclasses import dataclass, fields, replace
+from functools import cache
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.basis.job import Job, TrussSpec
+from rooftruss.basis.job import Job, LoadSpec, TrussSpec
 from rooftruss.basis.schemes import Scheme, load_scheme
 from rooftruss.design.design import LIMIT, Outcome, outcome_of
 from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, run
 from rooftruss.errors import JobError
 from rooftruss.loads.actions import AreaLoads
 from rooftruss.shapes.forming import Dimensions, layout_of
-from rooftruss.timber.check import standard
+from rooftruss.timber.check import TimberStandard, standard
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -29,7 +30,7 @@ Array = NDArray[np.float64]
 CHUNK_BYTES = 48e6  # memory of the largest array of a chunk; about six such arrays live at once
 LARGEST_CHUNK = 256  # trusses; more gives no speed, the arrays leave the processor's cache
 NUMBERS = tuple(f.name for f in fields(AreaLoads))  # loads that may differ within a family
-_NO_LOADS: dict[str, Any] = dict.fromkeys(NUMBERS, 0.0)
+WORDS = tuple(f.name for f in fields(LoadSpec) if f.name not in NUMBERS)  # what may not
 Sizes = Mapping[str, tuple[str, str]]  # group -> (size, grade)
 
 
@@ -106,22 +107,27 @@ class _Chunk:
 
 def _shared_key(scheme: Scheme, spec: TrussSpec, number: int) -> object:
     """What trusses must have in common to be one family; `number` is that of the truss in the batch."""
-    timber = standard(scheme.timber_standard, spec.timber.options)
-    groups = spec.timber.groups
-    restraints = {role: groups["top chord" if role == "tail" else role].restraint for role in (*GROUPS, "tail")}
+    loads, groups = spec.loads, spec.timber.groups
+    options = tuple(sorted(spec.timber.options.items()))
+    timber = _standard(scheme.timber_standard, options)
+    restraints = tuple(groups[group].restraint for group in GROUPS)
     return (
         layout_of(spec),
-        tuple(restraints.values()),
-        tuple(sorted((k, str(v)) for k, v in spec.timber.options.items())),
+        options,
+        restraints,
         tuple(
-            timber.shares_load(role=r, sheathed=x.kind == "sheathed", quantity=spec.quantity, spacing=spec.spacing)
-            for r, x in restraints.items()
+            timber.shares_load(role=g, sheathed=x.kind == "sheathed", quantity=spec.quantity, spacing=spec.spacing)
+            for g, x in zip(GROUPS, restraints, strict=True)
         ),
-        replace(spec.loads, **_NO_LOADS),  # all but the numbers
-        tuple(getattr(spec.loads, name) > 0 for name in NUMBERS),  # a load of zero makes no case
-        # A point load may stand on another member in the next truss.
-        number if spec.loads.points or spec.loads.cases else -1,
+        tuple(getattr(loads, name) for name in WORDS),
+        tuple(getattr(loads, name) > 0 for name in NUMBERS),  # a load of zero makes no case
+        number if loads.points or loads.cases else -1,  # a point load may stand on another member in the next truss
     )
+
+
+@cache
+def _standard(name: str, options: tuple[tuple[str, object], ...]) -> TimberStandard:
+    return standard(name, dict(options))
 
 
 def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Iterator[_Chunk]:

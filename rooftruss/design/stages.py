@@ -17,12 +17,13 @@ from rooftruss.analysis.combinations import CaseHead, Combinations, combine
 from rooftruss.analysis.effects import UnitEffects, demands_and_envelope, unit_effects
 from rooftruss.analysis.envelope import Envelope
 from rooftruss.analysis.frame import Solution, require_stable, solve, stiffness_matrix
+from rooftruss.analysis.inspection import triangulation
 from rooftruss.basis.grades import Grade, find_grade
 from rooftruss.basis.job import Job, PointLoad, Restraint, TrussSpec
 from rooftruss.basis.schemes import Scheme, load_scheme
 from rooftruss.basis.sections import Section, find_section
 from rooftruss.basis.tables import read_table
-from rooftruss.errors import JobError
+from rooftruss.errors import JobError, UnstableTrussError
 from rooftruss.loads.actions import (
     AreaLoads,
     PlacedPoint,
@@ -132,6 +133,22 @@ class Run:
     def strength(self) -> list[int]:
         """Numbers of the strength combinations."""
         return [int(k) for k in np.flatnonzero(self.combinations.strength)]
+
+    @cached_property
+    def triangulated(self) -> bool:
+        """Whether the truss (first of a batch) stands with every member pinned, as pin-jointed forces and zero-force
+        inspection take it. The shapes of the catalogue do; a custom truss may need its stiff chords."""
+        if not isinstance(self.family.layout, CustomLayout):
+            return True
+        part = triangulation(self.truss.topology)
+        xy = _first(self.truss.xy, 2)[list(part.nodes)]
+        ea = _first(self.stiffness_axial, 1)[list(part.members)]
+        one = Truss(topology=part.topology, xy=xy, bearing=np.zeros(()))
+        try:
+            require_stable(part.topology, stiffness_matrix(one, ea, 0.0 * ea)[None])
+        except UnstableTrussError:
+            return False
+        return True
 
 
 def family_of(job: Job, specs: Sequence[TrussSpec]) -> Family:

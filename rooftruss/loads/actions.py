@@ -59,6 +59,7 @@ class LoadStandard:
 
     cases: Variable
     gable: str
+    walked: str  # clause of the point load of a person on the roof
     gable_actions: tuple[str, ...] = ("S", "W")
 
 
@@ -76,7 +77,9 @@ def _asce7(edition: str) -> LoadStandard:
             *wind_asce7.wind_cases(roof, site, edition),
         ]
 
-    return LoadStandard(cases=cases, gable=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1")
+    return LoadStandard(
+        cases=cases, gable=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1", walked=f"ASCE {edition}, 4.4 and Table 4.3-1"
+    )
 
 
 STANDARDS: Mapping[str, LoadStandard] = {"ASCE 7-16": _asce7("7-16"), "ASCE 7-22": _asce7("7-22")}
@@ -122,10 +125,9 @@ def action_cases(
 
 def walked_stops(truss: Truss, loads: AreaLoads, standard: str) -> list[Stop]:
     """Places of the loads that are walked along the chords; each is an alternative of its action."""
-    roof = stops(
-        truss, TOP, loads.maintenance_load, action="Lr", what="person on roof", clause=f"{standard}, concentrated load"
-    )
-    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause="job")
+    clause = STANDARDS[standard].walked
+    roof = stops(truss, TOP, loads.maintenance_load, action="Lr", what="person on roof", clause=clause)
+    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause=clause)
     return [*roof, *ceiling]
 
 

@@ -31,6 +31,7 @@ class Nds:
     incised: bool
     buckling_stiffness: bool
     repetitive: bool | None  # None: by the conditions of 4.3.9
+    net_section: float = 1.0  # least share of the section that joints leave in tension
 
     @property
     def name(self) -> str:
@@ -45,6 +46,11 @@ class Nds:
             "beam stability by the loading not listed in NDS Table 3.3.3, the least favourable row",
             "bearing area factor C_b = 1.0: trusses rest at the ends of their chords (NDS 3.10.4)",
         ]
+        if self.net_section < 1:
+            notes.append(
+                f"joints leave {self.net_section:g} of the section in tension (NDS {self.edition}, 3.1.2); "
+                "everything else is checked on the gross section"
+            )
         if self.buckling_stiffness:
             notes.append(
                 "C_T taken: lumber at 19 percent moisture or less when the roof sheathing is nailed (NDS 4.4.2)"
@@ -76,6 +82,7 @@ class Nds:
             "density": self._density(grade, row),
             "column_c": product.column_c,
             "C_r": product.repetitive,
+            "net_section": self.net_section,
             "K_T": product.K_T if product.K_T > 0 else 0.0,
         }
         for prop in tables.PROPERTIES:
@@ -199,7 +206,8 @@ class Nds:
 def nds_standard(name: str, options: Mapping[str, object]) -> Nds:
     """The NDS called `name` ("NDS 2018 ASD") with the keys moisture, temperature, incised and buckling_stiffness.
 
-    The key repetitive may stand beside them ("auto", true or false; "auto" without it: by the conditions of 4.3.9).
+    The keys repetitive ("auto", true or false; "auto" without it: by the conditions of 4.3.9) and net_section (a share
+    above 0, 1 without it) may stand beside them.
     Other keys of [timber] are not the standard's. Raises JobError naming the key that is missing or wrong.
     """
     _, edition, method = name.split()
@@ -217,6 +225,7 @@ def nds_standard(name: str, options: Mapping[str, object]) -> Nds:
         incised=_flag(options, "incised"),
         buckling_stiffness=stiff,
         repetitive=None if options.get("repetitive", "auto") == "auto" else _flag(options, "repetitive"),
+        net_section=_share(options.get("net_section", 1.0)),
     )
 
 
@@ -232,6 +241,12 @@ def _flag(options: Mapping[str, object], key: str) -> bool:
     if not isinstance(value, bool):
         raise JobError(f"[timber] {key}: {value!r} must be true or false")
     return value
+
+
+def _share(value: object) -> float:
+    if isinstance(value, bool) or not isinstance(value, int | float) or not 0 < value <= 1:
+        raise JobError(f"[timber] net_section: {value!r} must be a share of the section above 0, at most 1 (NDS 3.1.2)")
+    return float(value)
 
 
 def _positive(row: Mapping[str, Cell], key: str) -> float:

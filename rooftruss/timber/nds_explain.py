@@ -141,6 +141,9 @@ def _given(case: _Case, members: Members, r: Resistances) -> Iterator[Step]:
     plies = _at(members.plies, n)
     yield Step(symbol="n", value=plies, kind="factor", clause="job", text="plies")
     yield Step(symbol="A", value=_at(r.area, n), kind="area", clause=f"{case.code} 3.1.2", text="n b d, gross")
+    if _at(r.net_area, n) < _at(r.area, n):
+        text = "net section in tension, the share of A that joints leave"
+        yield Step(symbol="A_n", value=_at(r.net_area, n), kind="area", clause=f"{case.code} 3.1.2", text=text)
     yield Step(
         symbol="S", value=_at(r.modulus, n), kind="section modulus", clause=f"{case.code} 3.3.2.2", text="n b d^2/6"
     )
@@ -186,7 +189,7 @@ def _values(case: _Case, members: Members, r: Resistances) -> Iterator[Step]:
     yield Step(symbol=symbol, value=case.duration, kind="factor", clause=f"{code} {clause}", text=text)
     if case.tension:
         yield from _reference(code, "Ft", p, n, case.lrfd)
-        yield _stress("F_t'", _at(r.F_t, n), f"{code} Table 4.3.1", "all factors")
+        yield _stress("F_t'", _tension_stress(case, r), f"{code} Table 4.3.1", "all factors")
     if case.compression or case.moment:
         yield from _reference(code, "Emin", p, n, case.lrfd)
         yield _stress("E_min'", _at(p["Emin"], n), f"{code} Table 4.3.1", "before C_T")
@@ -253,10 +256,11 @@ def _ratios(case: _Case, r: Resistances) -> Iterator[tuple[int | None, Step]]:
     """
     n, area = case.member, _at(r.area, case.member)
     column = limit("column slenderness", edition=case.edition)
-    f_t, f_c = case.tension / area, case.compression / area
+    f_t, f_c = case.tension / _at(r.net_area, n), case.compression / area
     if case.tension or not (case.compression or case.moment or case.shear):
-        yield None, _stress("f_t", f_t, f"{case.code} 3.8.1", "T/A")
-        yield _ratio(case, rules.TENSION, "f_t/F_t'", f_t / _at(r.F_t, n), "tension alone")
+        net = _at(r.net_area, n) < area
+        yield None, _stress("f_t", f_t, f"{case.code} 3.8.1", "T/A_n" if net else "T/A")
+        yield _ratio(case, rules.TENSION, "f_t/F_t'", f_t / _tension_stress(case, r), "tension alone")
     if case.compression:
         F_c = _at(_stability(case, r).F_c, n)
         yield None, _stress("f_c", f_c, f"{case.code} 3.6.3", "P/A")
@@ -299,8 +303,8 @@ def _bending_ratios(case: _Case, r: Resistances) -> Iterator[tuple[int | None, S
         text = "slenderness ratio over its limit"
         yield _ratio(case, rules.SLENDER_BEAM, f"R_B{sign}/{beam:g}", _at(lateral.R_B, n) / beam, text)
     if case.tension:
-        f_t, f_b = case.tension / area, case.moment / _at(r.modulus, n)
-        value = float(nds.tension_and_bending(f_t, _at(r.F_t, n), f_b, _at(r.F_b_star, n)))
+        f_t, f_b = case.tension / _at(r.net_area, n), case.moment / _at(r.modulus, n)
+        value = float(nds.tension_and_bending(f_t, _tension_stress(case, r), f_b, _at(r.F_b_star, n)))
         yield _ratio(case, rules.TENSION_BENDING, "f_t/F_t' + f_b/F_b*", value, "left side of eq. 3.9-1")
 
 
@@ -328,6 +332,12 @@ def _interaction_ratios(case: _Case, r: Resistances) -> Iterator[tuple[int | Non
     for sign, f_b, lateral in _signs(case, r):
         value = float(nds.compression_and_bending_stability(f_c, _at(r.F_cE2, n), f_b, _at(lateral.F_bE, n)))
         yield _ratio(case, rules.STABILITY, f"f_c/F_cE2 + (f_b{sign}/F_bE)^2", value, "left side of eq. 3.9-4")
+
+
+def _tension_stress(case: _Case, r: Resistances) -> float:
+    """F_t' [Pa]; Resistances hold it per gross area."""
+    n = case.member
+    return _at(r.F_t, n) * _at(r.area, n) / _at(r.net_area, n)
 
 
 def _stability(case: _Case, r: Resistances) -> Stability:

@@ -44,7 +44,8 @@ class Resistances:
     slenderness: Array  # the larger
     C_r: Array
     C_T: Array
-    F_t: Array
+    net_area: Array  # for tension
+    F_t: Array  # per gross area: F_t' times net over gross area, so that T/A may stand against it
     F_v: Array
     F_b_star: Array  # all factors but C_L
     F_c_star: Array  # all factors but C_P
@@ -69,15 +70,17 @@ def resistances(members: Members, duration: Array, *, edition: str, buckling_sti
     plain = _column(p["Emin"], strong, weak, F_c_star, p["column_c"])
     stiffened = _column(p["Emin"] * C_T, strong, weak, F_c_star, p["column_c"]) if np.any(C_T > 1) else plain
     breadth = members.breadth * members.plies
+    net = p["net_section"]
     return Resistances(
         area=breadth * members.depth,
+        net_area=breadth * members.depth * net,
         modulus=breadth * members.depth**2 / 6,
         slenderness_strong=strong,
         slenderness_weak=weak,
         slenderness=np.maximum(strong, weak),
         C_r=C_r,
         C_T=C_T,
-        F_t=_rows(p["Ft"]) * per_duration,
+        F_t=_rows(p["Ft"] * net) * per_duration,
         F_v=_rows(p["Fv"]) * per_duration,
         F_b_star=F_b_star,
         F_c_star=F_c_star,

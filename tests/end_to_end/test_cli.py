@@ -193,6 +193,14 @@ def test_every_explanation_of_every_truss_ends_with_the_utilisation_checked(path
             assert found.value == pytest.approx(float(design.outcome.utilisation.value[k]), rel=1e-9)
 
 
+def test_inspect_speaks_of_every_case_and_every_member(run):
+    code, out, _ = run("inspect", HOUSE, "T3")
+    design = designed(HOUSE).designs[-1]
+    assert code == 0
+    assert all(name in out for name in design.run.cases.names)
+    assert all(name in out for name in design.run.members.names)
+
+
 def test_compare_lists_every_shape(run):
     code, out, _ = run("compare", HOUSE, "--mark", "T3")
     assert code == 0

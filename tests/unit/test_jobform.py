@@ -98,6 +98,7 @@ def test_the_timber_of_the_example():
         "incised": False,
         "repetitive": "auto",
         "buckling_stiffness": False,
+        "net_section": 1.0,
     }
 
 
@@ -116,10 +117,14 @@ def test_every_default_is_an_assumption_with_its_clause_or_practice():
         "[site] topographic_factor",
         "[site] ground_elevation",
         "[loads] ceiling_dead_least",
+        "[loads] maintenance_load",
+        "[loads] ceiling_point_load",
+        "[loads] attic",
         "[timber] temperature",
         "[timber] incised",
         "[timber] repetitive",
         "[timber] buckling_stiffness",
+        "[timber] net_section",
         "[timber] web.restraint",
         "[deflection] ceiling",
         "[deflection] horizontal",
@@ -199,6 +204,19 @@ def test_an_earlier_edition_has_no_winter_wind_parameter():
 def test_an_unventilated_roof_gives_its_r_value():
     made = job(site={"thermal": "unventilated", "roof_r_value": "R-30"})
     assert made.site["roof_r_value"] == pytest.approx(30 * 0.17611015908, rel=1e-6)
+
+
+def test_a_ventilated_attic_without_r_value_counts_as_cold_under_7_16_and_says_so():
+    """ASCE 7-16, Table 7.3-2: C_t = 1.1 only over R-25 between attic and heated space; 7-22 has no such limit."""
+    data = tables()
+    del data["site"]["winter_wind_parameter"]
+    data["standard"]["scheme"] = "asce7-16-asd"
+    made = job_from_mapping(data, "demo.toml", Path())
+    assert texts(made)["[site] roof_r_value"].startswith("ventilated attic counted as cold, with more than R-25")
+    data["site"]["roof_r_value"] = "R-38"
+    assert "[site] roof_r_value" not in texts(job_from_mapping(data, "demo.toml", Path()))
+    assert "[site] roof_r_value" not in texts(job())
+    assert "[site] roof_r_value" not in texts(job(site={"thermal": "unheated"}))
 
 
 def test_scheme_options_are_those_of_the_scheme():
@@ -393,12 +411,16 @@ def test_the_fresh_form_is_right_with_every_line_in_use():
         line[2:] if line.startswith(("# [[", "# ")) and "=" in line.split("#")[1] else line
         for line in new_job_text().splitlines()
     ]
-    text = "\n".join(lines).replace("# [[loads.point]] ", "[[loads.point]] ")
+    text = "\n".join(lines)
+    for head in ("[[loads.point]] ", "[[loads.case]] ", "[[grade]] "):
+        text = text.replace(f"# {head}", head)
     data = tomllib.loads(text)
     form = form_for("ASCE 7-22", "NDS 2018 ASD")
     assert form["site"].keys() <= data["site"].keys()
-    assert form["loads"].keys() | {"point"} == data["loads"].keys()
+    assert form["loads"].keys() | {"point", "case"} == data["loads"].keys()
     assert form["point"].keys() == data["loads"]["point"][0].keys()
+    assert form["case"].keys() | {"loads", "points"} == data["loads"]["case"][0].keys()
+    assert form["grade"].keys() == data["grade"][0].keys()
     assert form["timber"].keys() <= data["timber"].keys()
     assert form["deflection"].keys() == data["deflection"].keys()
     assert form["truss"].keys() <= data["truss"][0].keys()
