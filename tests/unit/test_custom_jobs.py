@@ -1,11 +1,15 @@
 """Trusses given joint by joint in a job file: same pipeline, same results; what does not fit is refused in words."""
 
 import copy
+import tomllib
+from dataclasses import replace
+from pathlib import Path
 
 import numpy as np
 import pytest
 
-from rooftruss.basis.jobform import with_overrides
+from rooftruss.basis.jobform import job_from_mapping, with_overrides
+from rooftruss.basis.newjob import new_job_text
 from rooftruss.errors import JobError, OutOfScopeError, UnstableTrussError
 from rooftruss.output.result import truss_record
 from rooftruss.run import run_job
@@ -242,3 +246,12 @@ def test_pins_left_out_are_those_of_the_model_and_are_printed():
 def test_a_shape_of_the_catalogue_takes_the_place_of_a_custom_one_without_its_joints():
     other = with_overrides(job(truss=THREE), None, {"shape": "fink"})
     assert (other.trusses[0].shape, other.trusses[0].custom) == ("fink", None)
+
+
+def test_the_custom_truss_of_the_fresh_form_runs():
+    text = "\n".join(line.removeprefix("#| ") for line in new_job_text().splitlines())
+    made = job_from_mapping(tomllib.loads(text), "new.toml", Path())
+    assert [t.mark for t in made.trusses] == ["T1", "C1"]
+    found = run_job(replace(made, trusses=made.trusses[1:])).designs[0]
+    assert found.run.members.names == ("top 1", "top 2", "bottom 1", "bottom 2", "post")
+    assert effects_agree(found)
