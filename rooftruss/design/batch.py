@@ -105,14 +105,13 @@ class _Chunk:
     marks: tuple[str, ...]
 
 
-def _shared_key(scheme: Scheme, spec: TrussSpec, number: int) -> object:
-    """What trusses must have in common to be one family; `number` is that of the truss in the batch."""
+def _shared_settings(scheme: Scheme, spec: TrussSpec) -> tuple[object, ...]:
+    """What trusses must have in common beside their layout to be one family."""
     loads, groups = spec.loads, spec.timber.groups
     options = tuple(sorted(spec.timber.options.items()))
     timber = _standard(scheme.timber_standard, options)
     restraints = tuple(groups[group].restraint for group in GROUPS)
     return (
-        layout_of(spec),
         options,
         restraints,
         tuple(
@@ -121,7 +120,6 @@ def _shared_key(scheme: Scheme, spec: TrussSpec, number: int) -> object:
         ),
         tuple(getattr(loads, name) for name in WORDS),
         tuple(getattr(loads, name) > 0 for name in NUMBERS),  # a load of zero makes no case
-        number if loads.points or loads.cases else -1,  # a point load may stand on another member in the next truss
     )
 
 
@@ -132,10 +130,16 @@ def _standard(name: str, options: tuple[tuple[str, object], ...]) -> TimberStand
 
 def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Iterator[_Chunk]:
     groups: dict[object, list[int]] = {}
+    settings: dict[object, tuple[object, ...]] = {}
     scheme = load_scheme(job.scheme, Path(job.folder))
     for k, spec in enumerate(specs):
+        # trusses made from one another share these objects, so what follows from them is found once
+        same = (id(spec.loads), id(spec.timber), spec.quantity, spec.spacing)
+        if same not in settings:
+            settings[same] = _shared_settings(scheme, spec)
+        alone = k if spec.loads.points or spec.loads.cases else -1  # a point may stand on another member in the next
         try:
-            groups.setdefault(_shared_key(scheme, spec, k), []).append(k)
+            groups.setdefault((layout_of(spec), settings[same], alone), []).append(k)
         except JobError as error:
             raise JobError(f"truss {spec.mark}: {error}") from None
     for rows in groups.values():

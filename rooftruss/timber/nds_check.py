@@ -34,7 +34,7 @@ RULES = (
 
 # Round-off of the analysis is not a force: below this share of the section's own capacity there is none.
 NEGLIGIBLE = 1e-9
-BLOCK = 24_000  # elements (combinations x members) worked on at a time: about 192 kB an array
+BLOCK = 48_000  # elements (combinations x members) worked on at a time: about 384 kB an array
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
