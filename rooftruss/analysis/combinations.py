@@ -81,8 +81,9 @@ def combine(heads: Sequence[CaseHead], scheme: Scheme, options: Mapping[str, obj
     """Every row of the scheme x every "or" choice x every alternative case x every subset of the variable actions.
 
     Variable actions may be absent in any row (ASCE 7 2.3.1 and 2.4.1: loads not acting must be considered); dead load
-    never is. Cases of one action exclude each other, except those of pattern "with", which join each of them. A pattern
-    the scheme lists as `alone` stands with dead load only. Of combinations with the same factors the first is kept.
+    and the leading action of a row never are. Cases of one action exclude each other, except those of pattern "with",
+    which join each of them. A pattern the scheme lists as `alone` stands with dead load only. Of combinations with the
+    same factors the first is kept.
 
     No combination is left out for being a smaller multiple of another (D + 0.75Lr beside D + Lr): the interaction of
     compression and bending is not convex, so a point between two that pass need not pass.
@@ -138,6 +139,8 @@ def _lines(row: Row, heads: tuple[CaseHead, ...], scheme: Scheme, options: Mappi
     for picked in product(*choices):
         acting = [part for part in picked if part is not None]
         if not (dead or acting) or not _may_stand_together(acting, scheme, options):
+            continue
+        if row.leading and row.leading not in {part.load.action for part in acting}:
             continue
         parts = [*dead, *acting]
         yield _Line(

@@ -13,10 +13,11 @@ from functools import cache
 from math import nan
 from pathlib import Path
 
+from rooftruss.basis.scheme_values import resolved
 from rooftruss.basis.tables import data_folder
 from rooftruss.errors import JobError, TableError, nearest
 
-ACTIONS = ("D", "L", "Lr", "S", "R", "W")
+ACTIONS = ("D", "L", "Lr", "S", "R", "W", "A")  # A: accidental
 NO_CASE = "R"  # rain stands in the printed rows; no load module makes a case of it, so it needs no duration
 KINDS = ("live", "wind_snow", "total", "instantaneous", "final")
 DEAD = ("most", "least")
@@ -37,9 +38,10 @@ TOP_KEYS = {
     "options",
     "strength",
     "deflection",
+    "lasting",
 }
-STRENGTH_KEYS = {"clause", "expression", "dead", "companions", "time_effect", "time_effect_storage"}
-DEFLECTION_KEYS = {"clause", "expression", "dead", "companions", "kind"}
+STRENGTH_KEYS = {"clause", "expression", "dead", "leading", "companions", "time_effect", "time_effect_storage"}
+DEFLECTION_KEYS = {"clause", "expression", "dead", "leading", "companions", "kind"}
 Pairs = tuple[tuple[str, tuple[str, ...]], ...]
 
 
@@ -63,6 +65,7 @@ class Row:
     expression: str
     terms: tuple[Term, ...]
     dead: str  # "most" or "least": which dead load the row takes
+    leading: str  # action that is never absent in this row, "" for none
     companions: tuple[str, ...]  # actions that only accompany another one in this row
     kind: str  # "" for strength, else what the deflection limit speaks of
     time_effect: float  # lambda [-]; NaN where the scheme has none
@@ -82,6 +85,7 @@ class Scheme:
     companion_patterns: Pairs  # action -> patterns that may accompany
     alone_patterns: Pairs  # action -> patterns that act with dead load only
     options: Pairs  # option -> choices, default first
+    lasting: tuple[tuple[str, float], ...]  # action -> share of it that lasts, for creep
     rows: tuple[Row, ...]
 
     def option(self, name: str, given: Mapping[str, object]) -> str:
@@ -106,25 +110,27 @@ def schemes() -> list[str]:
     return sorted(path.stem for path in (data_folder("tables") / "schemes").glob("*.toml"))
 
 
-def load_scheme(name: str, base_folder: Path = Path()) -> Scheme:
+def load_scheme(name: str, base_folder: Path = Path(), site: Mapping[str, object] | None = None) -> Scheme:
     """Scheme by its name in tables/schemes, or by the path (ending in .toml) of a file of the user's own.
 
-    A path is taken from `base_folder`, the folder of the job file. Raises JobError when it is not found and
+    A path is taken from `base_folder`, the folder of the job file. `site` decides between the variants of a scheme that
+    has some; without it the values stand as they are. Raises JobError when it is not found or does not serve the site,
     TableError (file, row, what is allowed) for anything wrong inside.
     """
+    plain = tuple((k, v) for k, v in sorted((site or {}).items()) if isinstance(v, str | int | float))
     if name.lower().endswith(".toml"):
-        return _read(base_folder / name)
+        return _read(base_folder / name, dict(plain))
     if name not in schemes():
         raise JobError(f"there is no scheme {name!r}; {nearest(name, schemes())}, or the path of a .toml file")
-    return _shipped(name)
+    return _shipped(name, plain)
 
 
 @cache
-def _shipped(name: str) -> Scheme:
-    return _read(data_folder("tables") / "schemes" / f"{name}.toml")
+def _shipped(name: str, site: tuple[tuple[str, object], ...]) -> Scheme:
+    return _read(data_folder("tables") / "schemes" / f"{name}.toml", dict(site))
 
 
-def _read(path: Path) -> Scheme:
+def _read(path: Path, site: Mapping[str, object]) -> Scheme:
     if not path.is_file():
         raise JobError(f"there is no scheme file {path.name}; give its path from the folder of the job file")
     if path.stat().st_size > LARGEST_FILE:
@@ -135,7 +141,7 @@ def _read(path: Path) -> Scheme:
         raise TableError(f"{path.name} is not a text file (UTF-8); write the scheme as TOML") from None
     except tomllib.TOMLDecodeError as error:
         raise TableError(f"{path.name} is not valid TOML: {error}") from None
-    return scheme_from_mapping(data, path.stem, path.name)
+    return scheme_from_mapping(resolved(data, site, path.name), path.stem, path.name)
 
 
 def scheme_from_mapping(data: Mapping[str, object], name: str, file: str) -> Scheme:
@@ -161,6 +167,7 @@ def scheme_from_mapping(data: Mapping[str, object], name: str, file: str) -> Sch
         companion_patterns=tuple((action, found) for action, kind, found in patterns if kind == "companion"),
         alone_patterns=tuple((action, found) for action, kind, found in patterns if kind == "alone"),
         options=_options(data.get("options", {}), f"{file} [options]"),
+        lasting=_lasting(data.get("lasting", {}), f"{file} [lasting]"),
         rows=tuple(rows),
     )
 
@@ -248,6 +255,7 @@ def _row(row: Mapping[str, object], actions: Mapping[str, str], place: str, kind
         expression=expression,
         terms=terms,
         dead=_choice(row, "dead", DEAD, "most", place),
+        leading=_choice(row, "leading", ("", *used), "", place),
         companions=tuple(_words(row.get("companions", []), used, f"{place} companions")),
         kind=kind,
         time_effect=effect,
@@ -297,6 +305,16 @@ def _every_action_has_a_duration(rows: Iterable[Row], durations: Pairs, file: st
             raise TableError(
                 f"{file} durations: {action} must stand in exactly one of them, it is in {timed.count(action)}"
             )
+
+
+def _lasting(given: object, place: str) -> tuple[tuple[str, float], ...]:
+    if not isinstance(given, dict):
+        raise TableError(f"{place}: write for example S = 0.2")
+    _known(given, ACTIONS, place)
+    for action, share in given.items():
+        if isinstance(share, bool) or not isinstance(share, int | float) or not 0 <= share <= 1:
+            raise TableError(f"{place} {action}: {share!r} must be a number from 0 to 1")
+    return tuple((str(action), float(share)) for action, share in given.items())
 
 
 def _options(given: object, place: str) -> Pairs:

@@ -89,7 +89,9 @@ def deflections(run: Run) -> Deflections:
     service = np.flatnonzero(~run.combinations.strength)
     kinds = [run.combinations.kinds[k] for k in service]
     actions = tuple(h.action for h in run.cases.heads)
-    factors = run.family.timber.service_factors(run.combinations.factors[service], actions=actions, kinds=tuple(kinds))
+    factors = run.family.timber.service_factors(
+        run.combinations.factors[service], actions=actions, kinds=tuple(kinds), lasting=dict(run.family.scheme.lasting)
+    )
     value = np.matmul(factors, unit)
     divisor = np.array([run.family.timber.deflection_ratio(run.family.job.limits.ceiling, kind) for kind in kinds])
     limit = reach[..., None, :] / divisor[:, None]

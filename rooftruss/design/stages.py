@@ -158,7 +158,7 @@ def family_of(job: Job, specs: Sequence[TrussSpec]) -> Family:
     """
     first = specs[0]
     layout = layout_of(first)
-    scheme = load_scheme(job.scheme, Path(job.folder))
+    scheme = load_scheme(job.scheme, Path(job.folder), job.site)
     size = dimensions(specs)
     return Family(
         job=job,
@@ -168,7 +168,7 @@ def family_of(job: Job, specs: Sequence[TrussSpec]) -> Family:
         loads=area_loads([s.loads for s in specs]),
         points=_placed(layout, size, specs),
         scheme=scheme,
-        timber=standard(scheme.timber_standard, first.timber.options),
+        timber=standard(scheme.timber_standard, {**job.site, **first.timber.options}),
     )
 
 
@@ -277,7 +277,7 @@ def _cases(family: Family, truss: Truss, weight: Array) -> LoadCases:
         *action_cases(standard_name, roof, family.loads, family.job.site, truss, fault=fault),
         *own_cases(truss, family.spec.loads.cases, size.bearing, size.spacing),
     ]
-    walked = walked_stops(truss, family.loads, standard_name)
+    walked = walked_stops(truss, family.loads, standard_name, family.job.site)
     return cases_on(truss, heads, size.spacing, weight, family.points, walked)
 
 

@@ -8,7 +8,7 @@ from numpy.typing import NDArray
 
 from rooftruss.basis.job import LoadSpec, PointLoad
 from rooftruss.errors import JobError, OutOfScopeError, nearest
-from rooftruss.loads import imposed, snow_asce7, wind_asce7
+from rooftruss.loads import imposed, imposed_en1991, snow_asce7, snow_en1991, wind_asce7, wind_en1991
 from rooftruss.loads.attic import attic_cases
 from rooftruss.loads.cases import ChordPoint, LoadCases, lay_on
 from rooftruss.loads.dead import dead_cases
@@ -61,6 +61,7 @@ class LoadStandard:
     gable: str
     walked: str  # clause of the point load of a person on the roof
     gable_actions: tuple[str, ...] = ("S", "W")
+    person: Callable[[Site], float] = lambda site: 0.0  # that load where the job gives none [N]; 0: none is required
 
 
 def _asce7(edition: str) -> LoadStandard:
@@ -82,7 +83,26 @@ def _asce7(edition: str) -> LoadStandard:
     )
 
 
-STANDARDS: Mapping[str, LoadStandard] = {"ASCE 7-16": _asce7("7-16"), "ASCE 7-22": _asce7("7-22")}
+def _en1991(roof: Roof, loads: AreaLoads, site: Site, truss: Truss) -> list[ActionCase]:
+    return [
+        *imposed_en1991.loft_cases(loads.ceiling_live),
+        *imposed_en1991.roof_live_cases(roof, loads.roof_live),
+        *snow_en1991.snow_cases(roof, site),
+        *wind_en1991.wind_cases(roof, site),
+    ]
+
+
+STANDARDS: Mapping[str, LoadStandard] = {
+    "ASCE 7-16": _asce7("7-16"),
+    "ASCE 7-22": _asce7("7-22"),
+    "EN 1991": LoadStandard(
+        cases=_en1991,
+        gable="EN 1991-1-3, 5.3.3 and EN 1991-1-4, 7.2.5",
+        walked=f"{imposed_en1991.CLAUSE}, Table 6.10",
+        gable_actions=("S", "W", "A"),
+        person=imposed_en1991.person_on_roof,
+    ),
+}
 
 
 def area_loads(specs: Sequence[LoadSpec]) -> AreaLoads:
@@ -123,11 +143,15 @@ def action_cases(
     return cases
 
 
-def walked_stops(truss: Truss, loads: AreaLoads, standard: str) -> list[Stop]:
-    """Places of the loads that are walked along the chords; each is an alternative of its action."""
-    clause = STANDARDS[standard].walked
-    roof = stops(truss, TOP, loads.maintenance_load, action="Lr", what="person on roof", clause=clause)
-    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause=clause)
+def walked_stops(truss: Truss, loads: AreaLoads, standard: str, site: Site) -> list[Stop]:
+    """Places of the loads that are walked along the chords; each is an alternative of its action.
+
+    The person on the roof weighs what the job says; what the standard asks for where it says nothing.
+    """
+    chosen = STANDARDS[standard]
+    person = np.where(loads.maintenance_load > 0, loads.maintenance_load, chosen.person(site))
+    roof = stops(truss, TOP, person, action="Lr", what="person on roof", clause=chosen.walked)
+    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause=chosen.walked)
     return [*roof, *ceiling]
 
 

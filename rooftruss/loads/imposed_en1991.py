@@ -1,7 +1,6 @@
 """Imposed loads to EN 1991-1-1:2002: a roof that is walked on for maintenance only (category H), and the loft."""
 
-from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from collections.abc import Sequence
 from typing import cast
 
 import numpy as np
@@ -11,27 +10,12 @@ from rooftruss.basis.tables import read_table
 from rooftruss.errors import OutOfScopeError
 from rooftruss.loads.roof import ActionCase, Roof, Site, SurfaceLoad, Value
 from rooftruss.loads.site import optional_number
-from rooftruss.shapes.truss import Truss
 from rooftruss.units import shown
 
 Array = NDArray[np.float64]
 LEFT = ("left tail", "left slope")
 RIGHT = ("right slope", "right tail")
 CLAUSE = "EN 1991-1-1, 6.3.4.2"
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class WalkedPoint:
-    """A concentrated load at one place of its walk: its case (which holds no other load), and where it stands.
-
-    It stands on a joint (`node`) or inside a chord member (`member`); the other of the two is None.
-    """
-
-    case: ActionCase
-    node: int | None
-    member: int | None
-    x: Array  # plan position from the left bearing centre (...,) [m]
-    force: float  # downwards [N]
 
 
 def category_h(name: str) -> tuple[float, float, float]:
@@ -87,41 +71,13 @@ def loft_cases(loft: Array) -> list[ActionCase]:
     ]
 
 
-def walked_points(truss: Truss, force: float, surfaces: Sequence[str] = (*LEFT, *RIGHT)) -> list[WalkedPoint]:
-    """Places of the concentrated load Q_k [N] of category H on its walk (action Lr); EN 1991-1-1, 6.3.4.2(4).
+def person_on_roof(site: Site) -> float:
+    """Concentrated load Q_k [N] of category H: the site's roof_person, the recommended value where it is left out.
 
-    Over the top chord: the middle and both ends of every panel, and the tail ends. Each place is a case of its own that
-    excludes the uniform load and the other places, as Q_k and q_k act apart. None for a force of zero.
+    It is walked along the top chord as an alternative to q_k, with which it does not act (EN 1991-1-1, 6.3.4.2(4)).
     """
-    if not force:
-        return []
-    value = Value(symbol="Q_k", value=force, kind="force", clause=f"{CLAUSE}, Table 6.10")
-    made = []
-    for node, member, place, x in _walk(truss, surfaces):
-        case = ActionCase(
-            name=f"person on roof, {place}", short=place, action="Lr", pattern="person", loads=(), values=(value,)
-        )
-        made.append(WalkedPoint(case=case, node=node, member=member, x=x, force=force))
-    return made
-
-
-def person_on_roof(truss: Truss, site: Site) -> list[WalkedPoint]:
-    """`walked_points` of the site's roof_person [N]; the recommended Q_k where it is left out."""
     given = optional_number(site, "roof_person")
-    return walked_points(truss, category_h("Q")[0] if given is None else given)
-
-
-def _walk(truss: Truss, surfaces: Sequence[str]) -> Iterator[tuple[int | None, int | None, str, Array]]:
-    """(node, member, place in words, plan position) of every stop, from the left; a shared joint is one stop."""
-    made = truss.topology
-    seen: set[int] = set()
-    for k in made.on(*surfaces):
-        member = made.members[k]
-        for node in (member.start, member.end):
-            if node not in seen:
-                seen.add(node)
-                yield node, None, f"at {made.nodes[node]}", truss.xy[..., node, 0]
-        yield None, k, f"middle of {member.name}", (truss.start_xy[..., k, 0] + truss.end_xy[..., k, 0]) / 2
+    return category_h("Q")[0] if given is None else given
 
 
 def _on(surfaces: Sequence[str], pressure: Array) -> tuple[SurfaceLoad, ...]:

@@ -147,8 +147,13 @@ class TimberStandard(Protocol):
     def creep(self) -> Creep:
         """Creep of the deflection under lasting load in the service conditions of the job."""
 
-    def service_factors(self, factors: Array, *, actions: tuple[str, ...], kinds: tuple[str, ...]) -> Array:
-        """Factors (k, c) of service combinations of the given `kinds` (k,) on cases of `actions` (c,), with creep."""
+    def service_factors(
+        self, factors: Array, *, actions: tuple[str, ...], kinds: tuple[str, ...], lasting: Mapping[str, float]
+    ) -> Array:
+        """Factors (k, c) of service combinations of the given `kinds` (k,) on cases of `actions` (c,), with creep.
+
+        lasting: share of each action that lasts, from the scheme; none where the timber standard knows it itself.
+        """
 
     def deflection_ratio(self, ceiling: str, kind: str) -> float:
         """Span over the largest deflection [-] under a kind of service combination."""
@@ -160,11 +165,18 @@ def _nds(name: str, options: Mapping[str, object]) -> TimberStandard:
     return nds_standard(name, options)
 
 
+def _ec5(name: str, options: Mapping[str, object]) -> TimberStandard:
+    from rooftruss.timber.ec5 import ec5_standard
+
+    return ec5_standard(name, options)
+
+
 REGISTER: dict[str, Callable[[str, Mapping[str, object]], TimberStandard]] = {
     "NDS 2018 ASD": _nds,
     "NDS 2018 LRFD": _nds,
     "NDS 2024 ASD": _nds,
     "NDS 2024 LRFD": _nds,
+    "EN 1995-1-1": _ec5,
 }
 
 

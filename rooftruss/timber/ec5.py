@@ -146,13 +146,13 @@ class Ec5:
         *,
         actions: tuple[str, ...],
         kinds: tuple[str, ...],
-        lasting: Mapping[str, float] | None = None,
+        lasting: Mapping[str, float],
     ) -> Array:
         """Factors (k, c) of characteristic combinations, with creep in those of the kind "final"; 2.2.3(5).
 
-        lasting: psi_2 by action; without it the recommended ones for sites up to 1000 m and a loft of category A.
+        lasting: psi_2 by action, 0 for one that is not there; dead load lasts.
         """
-        share = [tables.lasting_share(a) if lasting is None else lasting[a] for a in actions]
+        share = [1.0 if a == "D" else lasting.get(a, 0.0) for a in actions]
         final = final_factors(factors, np.array(share, dtype=float), k_def=self.creep().coefficient)
         return np.where(np.array([kind == "final" for kind in kinds])[:, None], final, factors)
 

@@ -116,11 +116,6 @@ def deflection_ratio(ceiling: str, kind: str) -> float:
     return _number(table.where(ceiling=ceiling), kind)
 
 
-def lasting_share(action: str) -> float:
-    """psi_2 [-] of an action; EN 1990, Table A1.1, recommended, sites up to 1000 m, loft as category A."""
-    return _number(read_table("timber/lasting_share_en1990").where(action=action), "psi_2")
-
-
 def strengths(row: Mapping[str, Cell]) -> dict[str, float]:
     """Characteristic values of a grade row [Pa, kg/m3]. Raises JobError for one that is missing or not above zero."""
     found = {}

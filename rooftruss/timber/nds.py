@@ -188,15 +188,22 @@ class Nds:
         text = f"K_cr = {K_cr:g}, {self.moisture} service: lasting load deflects {K_cr:g} times its immediate amount"
         return Creep(coefficient=K_cr - 1, clause=f"NDS {self.edition} 3.5.2", text=text)
 
-    def service_factors(self, factors: Array, *, actions: tuple[str, ...], kinds: tuple[str, ...]) -> Array:
+    def service_factors(
+        self,
+        factors: Array,
+        *,
+        actions: tuple[str, ...],
+        kinds: tuple[str, ...],
+        lasting: Mapping[str, float] | None = None,
+    ) -> Array:
         """Factors (k, c) with K_cr on dead load in combinations of the kind "total"; NDS eq. 3.5-1.
 
         This is the whole deflection in the long run. IBC Table 1604.3, note d, would accept its creep part with live
         load only.
         """
-        lasting = np.array([action == "D" for action in actions])
+        dead = np.array([action == "D" for action in actions])
         total = np.array([kind == "total" for kind in kinds])
-        return np.where(total[:, None] & lasting, factors * (1 + self.creep().coefficient), factors)
+        return np.where(total[:, None] & dead, factors * (1 + self.creep().coefficient), factors)
 
     def deflection_ratio(self, ceiling: str, kind: str) -> float:
         """Span over the largest deflection [-]; IBC 2021 Table 1604.3."""

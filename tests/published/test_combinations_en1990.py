@@ -6,7 +6,9 @@ import numpy as np
 import pytest
 
 from rooftruss.analysis.combinations import CaseHead, combine
+from rooftruss.basis.scheme_values import resolved
 from rooftruss.basis.schemes import load_scheme
+from rooftruss.errors import JobError, TableError
 from rooftruss.timber.ec5_tables import modification_factor
 
 PSI_0 = {"S": 0.5, "W": 0.6, "L": 0.7, "Lr": 0.0}  # Table A1.1, sites up to 1000 m, loft as category A
@@ -24,9 +26,9 @@ def heads(*actions: str) -> list[CaseHead]:
     return out
 
 
-def found(scheme: str, *actions: str, kind: str = "") -> set[tuple[float, ...]]:
+def found(scheme: str, *actions: str, kind: str = "", site: dict | None = None) -> set[tuple[float, ...]]:
     """Factors of the combinations of one kind ("": strength), in the order G, then `actions`."""
-    made = combine(heads(*actions), load_scheme(scheme), {})
+    made = combine(heads(*actions), load_scheme(scheme, site=site), {})
     rows = [k for k, other in enumerate(made.kinds) if other == kind]
     return {tuple(round(float(f), 6) for f in made.factors[k]) for k in rows}
 
@@ -44,10 +46,14 @@ def expected_610(gammas: tuple[float, ...], actions: tuple[str, ...], gamma_Q: f
     return out
 
 
-def test_every_combination_of_6_10_is_there():
-    actions = ("S", "W", "L", "Lr")
-    missing = expected_610((1.35, 1.0), actions) - found("en1990-6.10", *actions)
-    assert not missing
+UPLIFT = (0.9, 0, 1.5, 0)  # Table A1.2(A): 0.9 G + 1.5 W
+
+
+@pytest.mark.parametrize("loft", [(), ("L",)])
+def test_6_10_holds_exactly_what_the_rule_says(loft):
+    actions = ("S", "W", *loft, "Lr")
+    uplift = tuple(0.9 if n == 0 else 1.5 if a == "W" else 0.0 for n, a in enumerate(("G", *actions)))
+    assert found("en1990-6.10", *actions) == expected_610((1.35, 1.0), actions) | {uplift}
 
 
 def test_the_twelve_combinations_of_snow_wind_and_maintenance():
@@ -57,12 +63,7 @@ def test_the_twelve_combinations_of_snow_wind_and_maintenance():
         for g in (1.35, 1.0)
         for rest in ((0, 0, 0), (1.5, 0, 0), (1.5, 0.9, 0), (0, 1.5, 0), (0.75, 1.5, 0), (0, 0, 1.5))
     }
-    assert twelve == expected_610((1.35, 1.0), ("S", "W", "Lr"))
-    extra = found("en1990-6.10", "S", "W", "Lr") - twelve
-    uplift = {c for c in extra if c[0] == 0.9}  # Table A1.2(A)
-    assert uplift == {(0.9, 0, 0, 0), (0.9, 0, 1.5, 0)}
-    for g, *rest in extra - uplift:  # accompanying loads without a leading one: each stands full in one of the twelve
-        assert any(g == h and all(a <= b for a, b in zip(rest, full, strict=True)) for h, *full in twelve)
+    assert found("en1990-6.10", "S", "W", "Lr") == twelve | {UPLIFT}
 
 
 def test_published_factors():
@@ -119,7 +120,7 @@ def test_envelope_of_a_member_with_three_winners():
     # by hand: N G -4.0, S -6.0 -4.2 -4.9, W 5.5 -1.2 kN; snow short-term, wind instantaneous, service class 1
     unit = np.array([-4.0, -6.0, -4.2, -4.9, 5.5, -1.2])
     made = combine(heads("S", "S", "S", "W", "W"), load_scheme("en1990-6.10"), {})
-    assert len(expected_610((1.35, 1.0), ("S", "W"))) == 10  # 36 with the three snow and two wind alternatives put in
+    assert made.strength.sum() == 36 + 2  # (6.10), and 0.9 G with either wind
     N = made.factors[made.strength] @ unit
     names = [n for n, s in zip(made.names, made.strength, strict=True) if s]
     k_mod = np.array([modification_factor(d, 1)[0] for d in np.array(made.durations)[made.strength]])
@@ -135,7 +136,79 @@ def test_duration_is_that_of_the_shortest_load_present():
     made = combine(heads("S", "W", "L", "Lr"), load_scheme("en1990-6.10"), {})
     by_name = dict(zip(made.names, made.durations, strict=True))
     assert by_name["1.35G"] == "permanent"
-    assert by_name["1.35G + 1.5Q(L1)" if "1.35G + 1.5Q(L1)" in by_name else "1.35G + 1.5Q"] == "long-term"
+    assert by_name["1.35G + 1.5Q(L1)"] == "long-term"
     assert by_name["1.35G + 1.5S(S1)"] == "short-term"
     assert by_name["1.35G + 1.5S(S1) + 0.9W(W1)"] == "instantaneous"
     assert by_name["1.35G + 1.5Q_H(Lr1) + 1.05Q(L1)"] == "short-term"
+
+
+HIGH = {"altitude": 1200.0}
+
+
+def test_snow_above_1000_m():
+    # EN 1990, Table A1.1: psi 0.7/0.5/0.2; snow then lasts for weeks
+    assert {(1.35, 1.05, 1.5), (1.35, 1.5, 0.9)} <= found("en1990-6.10", "S", "W", site=HIGH)
+    assert not any(s == 0.75 for _, s, _ in found("en1990-6.10", "S", "W", site=HIGH))
+    scheme = load_scheme("en1990-6.10", site=HIGH)
+    assert dict(scheme.lasting) == {"L": 0.3, "S": 0.2, "W": 0.0}  # quasi-permanent G + 0.2 S
+    assert ("medium-term", ("S",)) in scheme.durations
+    assert dict(load_scheme("en1990-6.10", site={"altitude": 1000.0}).lasting)["S"] == 0.0
+
+
+def test_storage_in_the_loft():
+    # EN 1990, Table A1.1, category E: psi_0 1.0, psi_2 0.8
+    assert (1.35, 1.5, 1.5) in found("en1990-6.10", "S", "L", site={"loft": "storage"})
+    assert dict(load_scheme("en1990-6.10", site={"loft": "storage"}).lasting)["L"] == 0.8
+
+
+@pytest.mark.parametrize(("consequences", "K_FI"), [("CC1", 0.9), ("CC2", 1.0), ("CC3", 1.1)])
+def test_reliability_classes_change_unfavourable_loads_only(consequences, K_FI):
+    # EN 1990, Table B3
+    made = found("en1990-6.10", "S", site={"consequence_class": consequences})
+    assert made == {(round(1.35 * K_FI, 6), s) for s in (0, round(1.5 * K_FI, 6))} | {
+        (1.0, s) for s in (0, round(1.5 * K_FI, 6))
+    }
+
+
+def test_exceptional_snow():
+    # EN 1990, (6.11b) by hand: G 2.0, A_d 5.2, loft 1.0 kN with psi_2 0.3: 7.5 kN; gamma_M = 1
+    made = combine(heads("A", "L", "W"), load_scheme("en1990-6.10"), {})
+    accidental = [k for k, d in enumerate(made.durations) if d == "accidental"]
+    effects = made.factors[accidental] @ np.array([2.0, 5.2, 1.0, 9.9])
+    assert effects.max() == pytest.approx(7.5)
+    assert (made.factors[accidental][:, 1] == 1.0).all()
+    assert modification_factor("accidental", 2) == (1.1, False)
+
+
+def test_germany_and_finland():
+    germany = load_scheme("en1990-6.10", site={"national_choices": "germany"})
+    assert ("short-term to instantaneous", ("W",)) in germany.durations
+    # Finland: 1.35 K_FI G; 1.15 K_FI G + 1.5 K_FI Q + 1.5 K_FI psi_0 Q; snow 0.7
+    finland = found("en1990-finland", "S", "W", site={"national_choices": "finland", "consequence_class": "CC3"})
+    assert {(1.485, 0, 0), (1.265, 1.65, 0.99), (1.265, 1.155, 1.65), (0.9, 0, 1.65)} <= finland
+    assert not any(g == 1.485 and (s or w) for g, s, w in finland)
+
+
+@pytest.mark.parametrize(("scheme", "country"), [("en1990-6.10", "finland"), ("en1990-6.10ab", "germany")])
+def test_a_scheme_of_another_country_is_refused(scheme, country):
+    with pytest.raises(JobError, match=f"is not that of '{country}'; it serves recommended"):
+        load_scheme(scheme, site={"national_choices": country})
+
+
+def plain(**changes: object) -> dict:
+    return {"values": {"g": 1.5}, "durations": [{"name": "short", "actions": ["S"]}], **changes}
+
+
+@pytest.mark.parametrize(
+    ("changes", "message"),
+    [
+        ({"values": {"g": "1.5"}}, "every value is a number"),
+        ({"variants": [{"key": "altitude"}]}, "either 'equals' .* or 'over'"),
+        ({"variants": [{"key": "altitude", "above": 3.0}]}, "'above' is not a key"),
+        ({"variants": [{"key": "altitude", "over": 1.0, "values": {"h": 2.0}}]}, "'h' is not under .values."),
+        ({"variants": [{"key": "altitude", "over": 1.0, "durations": {"S": "long"}}]}, "there is no duration 'long'"),
+    ],
+)
+def test_a_malformed_variant_is_told(changes, message):
+    with pytest.raises(TableError, match=message):
+        resolved(plain(**changes), {"altitude": 5.0}, "own.toml")
