@@ -170,7 +170,7 @@ def _envelope(given: argparse.Namespace) -> int:
 def _explain_arguments(command: argparse.ArgumentParser) -> None:
     _job_argument(command)
     command.add_argument("mark", help="truss, for example T1")
-    command.add_argument("member", help="member or bearing, for example 'top 1' or 'bearing A'")
+    command.add_argument("member", help="'top 1', 'bearing A', or a load case such as 'snow, balanced'")
     command.add_argument(
         "--combination", metavar="N", help="number or name of a combination; default: the governing one"
     )
@@ -200,6 +200,10 @@ def _inspect(given: argparse.Namespace) -> int:
     from rooftruss.output.terminal import print_cautions, print_grid
 
     result, design = _design(given.job, given.mark)
+    if not design.run.triangulated:
+        print(f"{design.spec.mark}: stands by its stiff chords only; with pinned joints it is a mechanism, so members")
+        print("without force cannot be found by looking at its joints")
+        return DONE
     print(f"{design.spec.mark} {design.spec.shape}: members without force, by inspection of the pin-jointed truss")
     for heading, grid in inspection_grids(design, idle_summary(design)):
         print(f"\n{heading}")
@@ -328,7 +332,7 @@ COMMANDS: dict[str, Command] = {
     "size": ("size one truss, everything not given taken from a job", _size_arguments, _size),
     "compare": ("every shape of the catalogue for one roof", _compare_arguments, _compare),
     "envelope": ("governing effects of every member, or the result file", _envelope_arguments, _envelope),
-    "explain": ("the check of one member, clause by clause", _explain_arguments, _explain),
+    "explain": ("the check of one member or bearing, or a load case, clause by clause", _explain_arguments, _explain),
     "inspect": ("zero-force members of a truss, case by case", _inspect_arguments, _inspect),
     "shapes": ("the shapes of the catalogue", _no_arguments, _shapes),
     "schemes": ("the combination schemes, or the combinations of one", _schemes_arguments, _schemes),

@@ -14,8 +14,10 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
+from rooftruss.basis.grades import Grade, find_grade
 from rooftruss.basis.job import Job, LoadSpec, TrussSpec
 from rooftruss.basis.schemes import Scheme, load_scheme
+from rooftruss.basis.sections import find_section
 from rooftruss.design.design import LIMIT, Outcome, outcome_of
 from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, run
 from rooftruss.errors import JobError
@@ -119,6 +121,7 @@ def _shared_settings(scheme: Scheme, spec: TrussSpec) -> tuple[object, ...]:
             for g, x in zip(GROUPS, restraints, strict=True)
         ),
         tuple(getattr(loads, name) for name in WORDS),
+        tuple(spec.timber.own_grades),
         tuple(getattr(loads, name) > 0 for name in NUMBERS),  # a load of zero makes no case
     )
 
@@ -144,7 +147,7 @@ def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Ite
             raise JobError(f"truss {spec.mark}: {error}") from None
     for rows in groups.values():
         family = family_of(job, [specs[k] for k in rows])
-        choice = _choice([sizes[k] for k in rows])
+        choice = _choice([sizes[k] for k in rows], {grade.name: grade for grade in specs[rows[0]].timber.own_grades})
         step = _chunk_length(family)
         for start in range(0, len(rows), step):
             part = slice(start, start + step)
@@ -153,17 +156,14 @@ def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Ite
             )
 
 
-def _choice(sizes: Sequence[Sizes]) -> Choice:
-    from rooftruss.basis.grades import find_grade
-    from rooftruss.basis.sections import find_section
-
+def _choice(sizes: Sequence[Sizes], own: Mapping[str, Grade]) -> Choice:
     options: dict[str, tuple[Option, ...]] = {}
     index: dict[str, NDArray[np.intp]] = {}
     for group in GROUPS:
         names = [s[group] for s in sizes]
         kinds = list(dict.fromkeys(names))
         number = {kind: k for k, kind in enumerate(kinds)}
-        options[group] = tuple(Option(find_section(size), find_grade(grade)) for size, grade in kinds)
+        options[group] = tuple(Option(find_section(size), own.get(grade) or find_grade(grade)) for size, grade in kinds)
         index[group] = np.array([number[name] for name in names])
     return Choice(options=options, index=index)
 

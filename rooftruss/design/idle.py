@@ -16,6 +16,7 @@ def idle_summary(design: Design) -> Summary:
 
     Self-weight is left out of what is said about combinations: it loads every joint, so it would hide that a member
     carries nothing but timber. Gravity is dead load, ceiling live load and snow over the whole roof.
+    Raises UnstableTrussError where the truss does not stand with pinned joints (`Run.triangulated`).
     """
     run = design.run
     heads = run.cases.heads
@@ -35,8 +36,13 @@ def _factors(design: Design) -> Array:
 
 
 def idle_members(design: Design) -> frozenset[str]:
-    """Members that carry nothing but self-weight in every strength combination; see `idle_summary`, tails left out."""
+    """Members that carry nothing but self-weight in every strength combination; see `idle_summary`, tails left out.
+
+    None where the truss does not stand with pinned joints.
+    """
     run = design.run
+    if not run.triangulated:
+        return frozenset()
     axial = np.abs(_factors(design) @ pin_jointed_axial(run.truss, run.stiffness_axial, run.cases))
     idle = np.all(axial <= TOLERANCE * axial.max(axis=-1, keepdims=True), axis=0)
     made = run.family.topology

@@ -7,6 +7,7 @@ stand at the start of a segment. Which member a segment belongs to is fixed; its
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cache
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -138,7 +139,7 @@ def _segments(truss: Truss, breaks: dict[int, list[Array]]) -> tuple[tuple[int, 
         cuts = [_along(truss, k, x) for x in breaks.get(k, [])]
         inner = list(np.sort(np.stack(np.broadcast_arrays(*cuts)), axis=0)) if cuts else []
         stops = [zero, *inner, length]
-        for a, b in zip(stops[:-1], stops[1:], strict=True):
+        for a, b in pairwise(stops):
             member_of.append(k)
             ends.append((a, b))
     x0, x1 = (np.stack(np.broadcast_arrays(*(pair[i] for pair in ends)), axis=-1) for i in (0, 1))

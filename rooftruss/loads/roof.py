@@ -11,7 +11,7 @@ Array = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Roof:
-    """Symmetric gable roof over one truss. Arrays `(...,)` or floats [m, rad, Pa]; x runs from the left bearing centre."""
+    """Symmetric gable roof over one truss. Arrays `(...,)` or floats [m, Pa]; x runs from the left bearing centre."""
 
     pitch: Array  # rise over run [-]
     span: Array  # out to out of bearings

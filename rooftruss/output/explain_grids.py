@@ -4,18 +4,20 @@ from collections.abc import Sequence
 
 import numpy as np
 
+from rooftruss.design.case_values import case_values
 from rooftruss.design.design import Design
 from rooftruss.design.stages import bearing_members, durations_of, take_members
 from rooftruss.errors import JobError, nearest
 from rooftruss.output.numbering import Numbering
-from rooftruss.output.schedule import Column, Grid, Measure
+from rooftruss.output.schedule import Cell, Column, Grid, Measure
 from rooftruss.timber.check import Step
+from rooftruss.units import shown
 
 BEARING = "bearing "
 
 
 def explanation(design: Design, name: str, numbering: Numbering, combination: str | None = None) -> tuple[str, Grid]:
-    """Heading and steps of the check of a member ("top 1") or of a bearing ("bearing A").
+    """Heading and steps of the check of a member ("top 1") or bearing ("bearing A"), or of a load case by its name.
 
     combination: its number in the job or its name; None is the governing one. Raises JobError for an unknown member or
     combination, or a combination of the deflections.
@@ -23,9 +25,11 @@ def explanation(design: Design, name: str, numbering: Numbering, combination: st
     if name.lower().startswith(BEARING):
         return _bearing(design, name[len(BEARING) :].strip(), numbering, combination)
     names = design.run.members.names
+    if name.casefold() in (case.casefold() for case in design.run.cases.names):
+        return _case(design, name, numbering)
     if name not in names:
-        known = [*names, *(BEARING + n for n in _bearing_names(design))]
-        raise JobError(f"truss {design.spec.mark} has no member {name!r}; {nearest(name, known)}")
+        known = [*names, *(BEARING + n for n in _bearing_names(design)), *design.run.cases.names]
+        raise JobError(f"truss {design.spec.mark} has no member, bearing or load case {name!r}; {nearest(name, known)}")
     member = names.index(name)
     governing = int(design.outcome.utilisation.combination[member])
     number = _combination(design, numbering, combination, governing)
@@ -48,12 +52,40 @@ def _bearing(design: Design, node: str, numbering: Numbering, combination: str |
     steps = run.family.timber.explain_bearing(
         np.maximum(run.reactions[..., 1], 0.0),
         take_members(run.members, bearing_members(run.family.topology)),
-        np.broadcast_to(run.truss.bearing, (len(nodes),)),
+        run.bearing_lengths,
         durations_of(run.combinations),
         support,
         run.strength.index(number),
     )
     return _heading(design, f"bearing {node}", numbering, number, number == governing), _grid(steps)
+
+
+def _case(design: Design, name: str, numbering: Numbering) -> tuple[str, Grid]:
+    """The values behind a load case, and what it puts on members and joints."""
+    found = case_values(design, name)
+    rows: list[tuple[Cell, ...]] = [
+        (v.symbol, Measure(float(v.value), v.kind), v.clause, "") for v in found.head.values
+    ]
+    for member, start, end, qx, qy in found.stretches:
+        where = f"{member}, from its start {_metres(design, start)} to {_metres(design, end)}"
+        rows += [(q, Measure(value, "line load"), "", where) for q, value in (("q_x", qx), ("q_y", qy)) if value]
+    for member, at, fx, fy in found.points:
+        where = f"{member}, {_metres(design, at)} from its start"
+        rows += [(f, Measure(value, "force"), "", where) for f, value in (("F_x", fx), ("F_y", fy)) if value]
+    for joint, fx, fy in found.joints:
+        rows += [(f, Measure(value, "force"), "", f"joint {joint}") for f, value in (("F_x", fx), ("F_y", fy)) if value]
+    rows += [
+        (letter, Measure(value, "force"), "", f"sum of all loads {way}")
+        for letter, value, way in zip(("sum F_x", "sum F_y"), found.resultant, ("to the right", "upwards"), strict=True)
+    ]
+    number = f"{design.spec.mark} load case {numbering.cases[found.head.name]}"
+    columns = (Column("symbol"), Column("value", "own"), Column("clause"), Column("where"))
+    heading = f"{number}, action {found.head.action}: {found.head.name}, unfactored"
+    return heading, Grid("Load case", columns, tuple(rows))
+
+
+def _metres(design: Design, length: float) -> str:
+    return shown(length, "length", design.run.family.job.units)
 
 
 def _bearing_names(design: Design) -> list[str]:

@@ -150,9 +150,9 @@ def _supports(design: Design) -> list[Record]:
             "node": made.nodes[s.node],
             "horizontal": s.horizontal,
             "vertical": s.vertical,
-            "bearing_length": _number(design.run.truss.bearing),
+            "bearing_length": _number(length),
         }
-        for s in made.supports
+        for s, length in zip(made.supports, design.run.bearing_lengths, strict=True)
     ]
 
 
@@ -307,12 +307,16 @@ def _deflections(design: Design) -> list[Record]:
 
 def _pin_jointed(design: Design) -> Record:
     """Axial forces of the pin-jointed truss by case and member, beside the frame's in `effects`."""
+    if not design.run.triangulated:
+        return {}
     forces = idealisations(design).pin_jointed
     names, cases = design.run.members.names, design.run.cases.names
     return {case: dict(zip(names, _numbers(row), strict=True)) for case, row in zip(cases, forces, strict=True)}
 
 
 def _zero_force(design: Design) -> Record:
+    if not design.run.triangulated:  # it stands by its stiff chords; with pins there is nothing to inspect
+        return {"by_case": {}, "in_every_combination": []}
     found = idle_summary(design)
     return {
         "by_case": {name: list(i.zero) for name, i in zip(design.run.cases.names, found.by_case, strict=True)},

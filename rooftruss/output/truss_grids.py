@@ -120,7 +120,7 @@ def reactions_grid(design: Design, numbering: Numbering) -> Grid:
             (
                 run.family.topology.nodes[support.node],
                 "down + sideways" if support.horizontal else "down",
-                float(run.truss.bearing),
+                float(run.bearing_lengths[k]),
                 *governing(found.reactions.down, k),
                 *governing(found.reactions.uplift, k),
                 *governing(found.reactions.horizontal, k),

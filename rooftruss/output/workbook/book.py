@@ -30,7 +30,8 @@ def write_workbook(job: Job, designs: Sequence[Design], path: str | Path, *, pin
     marks: list[str] = []
     for design in designs:
         marks.append(sheet_name(design.spec.mark, [*names, *marks]))
-    pinned = [sheet_name(f"{mark} pin-jointed", [*names, *marks]) for mark in marks] if pin_jointed else []
+    pairs = [(m, d) for m, d in zip(marks, designs, strict=True) if pin_jointed and d.run.triangulated]
+    pinned = [sheet_name(f"{mark} pin-jointed", [*names, *marks]) for mark, _ in pairs]
     every = (*FIRST, *marks, *pinned, *LAST)
     page = {name: Page(book.create_sheet(name), looks, job.units) for name in every}
     numbering = numbering_of(designs)
@@ -39,7 +40,7 @@ def write_workbook(job: Job, designs: Sequence[Design], path: str | Path, *, pin
     pages.quote_page(page["Quote"], job, designs)
     for mark, design in zip(marks, designs, strict=True):
         pages.truss_page(page[mark], points, job, design, numbering)
-    for name, design in zip(pinned, designs if pinned else (), strict=True):
+    for name, (_, design) in zip(pinned, pairs, strict=True):
         pages.idealisations_page(page[name], job, design, numbering)
     for_print(points.page, job, landscape=False, repeat="1:2", freeze="A3")
     pages.combinations_page(page["Combinations"], job, designs, numbering)
