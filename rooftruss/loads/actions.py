@@ -60,6 +60,7 @@ class LoadStandard:
     cases: Variable
     gable: str
     walked: str  # clause of the point load of a person on the roof
+    walked_symbol: str  # of that load
     gable_actions: tuple[str, ...] = ("S", "W")
     person: Callable[[Site], float] = lambda site: 0.0  # that load where the job gives none [N]; 0: none is required
 
@@ -79,7 +80,10 @@ def _asce7(edition: str) -> LoadStandard:
         ]
 
     return LoadStandard(
-        cases=cases, gable=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1", walked=f"ASCE {edition}, 4.4 and Table 4.3-1"
+        cases=cases,
+        gable=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1",
+        walked=f"ASCE {edition}, 4.4 and Table 4.3-1",
+        walked_symbol="P",
     )
 
 
@@ -99,6 +103,7 @@ STANDARDS: Mapping[str, LoadStandard] = {
         cases=_en1991,
         gable="EN 1991-1-3, 5.3.3 and EN 1991-1-4, 7.2.5",
         walked=f"{imposed_en1991.CLAUSE}, Table 6.10",
+        walked_symbol="Q_k",
         gable_actions=("S", "W", "A"),
         person=imposed_en1991.person_on_roof,
     ),
@@ -152,7 +157,12 @@ def walked_stops(truss: Truss, loads: AreaLoads, standard: str, site: Site) -> l
     person = np.where(loads.maintenance_load > 0, loads.maintenance_load, chosen.person(site))
     roof = stops(truss, TOP, person, action="Lr", what="person on roof", clause=chosen.walked)
     ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause=chosen.walked)
-    return [*roof, *ceiling]
+    return [_named(stop, chosen.walked_symbol) for stop in (*roof, *ceiling)]
+
+
+def _named(stop: Stop, symbol: str) -> Stop:
+    """The stop with its load under the symbol of the standard."""
+    return replace(stop, case=replace(stop.case, values=tuple(replace(v, symbol=symbol) for v in stop.case.values)))
 
 
 def _point_cases(points: Sequence[PlacedPoint]) -> list[ActionCase]:

@@ -3,20 +3,22 @@
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
-from rooftruss.basis.job import PointLoad
+import numpy as np
+
 from rooftruss.design.design import Design
 from rooftruss.loads.roof import ActionCase, SurfaceLoad
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid, Measure
 from rooftruss.output.truss_grids import ACTS
 
-ACTIONS = {"D": "dead", "L": "ceiling live", "Lr": "roof live", "S": "snow", "W": "wind"}
+ACTIONS = {"D": "dead", "L": "ceiling live", "Lr": "roof live", "S": "snow", "W": "wind", "A": "accidental"}
 SURFACES = ("left tail", "left slope", "right slope", "right tail", "ceiling", "self-weight")
 TOGETHER = {
     SURFACES[:4]: "whole roof",
     SURFACES[1:3]: "both slopes",
     (SURFACES[0], SURFACES[3]): "both tails",
 }
+FROM_LEFT = "from the middle of the left bearing"
 Quantity = tuple[str, str, str]  # what, kind, clause or how it acts
 Found = dict[Quantity, float]
 
@@ -106,28 +108,61 @@ def _values(head: ActionCase) -> Found:
 
 
 def _loads(head: ActionCase, design: Design) -> Found:
-    """Uniform loads by surface; those of equal size are listed together. Point loads by their note."""
+    """Uniform loads by surface, those of equal size together; point loads by their note; where a walked load stands.
+
+    Strips of one surface are numbered from its left end.
+    """
     out: Found = {}
-    for surfaces, load in _surfaces(head):
+    groups = _surfaces(head)
+    places = [surfaces for surfaces, _ in groups]
+    for surfaces, load in groups:
         if load.surface == "self-weight":
             out["self-weight of one truss", "mass", "volume on centre lines times density"] = float(design.outcome.mass)
             continue
-        out[f"load on {surfaces}", "pressure", ACTS[load.kind]] = float(load.pressure)
-        for word, x in (("from", load.x_from), ("to", load.x_to)):
-            if x is not None:
-                out[f"{word} x, {surfaces}", "length", "from the middle of the left bearing"] = float(x)
-    if not head.loads:
-        for k, point in enumerate(p for p in design.spec.loads.points if p.action == head.action):
-            out.update(_point(k, point, design.spec.bearing))
+        place = surfaces if places.count(surfaces) == 1 else f"{surfaces}, strip {_strip(load, surfaces, groups)}"
+        out[f"load on {place}", "pressure", ACTS[load.kind]] = float(load.pressure)
+        for word, end in (("from", load.x_from), ("to", load.x_to)):
+            if end is not None:
+                out[f"{word} x, {place}", "length", FROM_LEFT] = float(end)
+    points = list(_points(head, design))
+    if not points and not head.loads:
+        points += _stop(head, design)
+    for what, force, on, x in points:
+        out[f"{what}, force", "force", f"down, {on}"] = force
+        out[f"{what}, at x", "length", FROM_LEFT] = x
     return out
 
 
-def _point(k: int, point: PointLoad, bearing: float) -> Found:
-    what = point.note or f"point load {k + 1}"
-    return {
-        (f"{what}, force", "force", f"down, on the {point.chord} chord"): point.force,
-        (f"{what}, at x", "length", "from the middle of the left bearing"): point.position - bearing / 2,
-    }
+def _strip(load: SurfaceLoad, surfaces: str, groups: Sequence[tuple[str, SurfaceLoad]]) -> int:
+    """Number of a load among those on the same surfaces, from the left."""
+
+    def start(one: SurfaceLoad) -> float:
+        return -np.inf if one.x_from is None else float(one.x_from)
+
+    ordered = sorted((other for words, other in groups if words == surfaces), key=start)
+    return next(k for k, other in enumerate(ordered, 1) if other is load)
+
+
+def _points(head: ActionCase, design: Design) -> Iterator[tuple[str, float, str, float]]:
+    """(what, force, where, x) of the job's own point loads in a case: its own, or those that join its action."""
+    family = design.run.family
+    own = [p for p in family.points if head.name == (p.case or f"point loads, {p.action}")]
+    for k, point in enumerate(own, 1):
+        chord = "bottom" if family.topology.members[point.member].surface == "ceiling" else "top"
+        yield point.note or f"point load {k}", float(point.force), f"on the {chord} chord", float(point.x)
+
+
+def _stop(head: ActionCase, design: Design) -> Iterator[tuple[str, float, str, float]]:
+    """(what, force, where, x) of a load that is walked along a chord, at the one place of this case."""
+    run = design.run
+    made, c, what = run.family.topology, run.cases.names.index(head.name), head.name.split(",")[0]
+    for point in run.cases.points:
+        if point.case == c:
+            x = run.truss.start_xy[point.member, 0] + point.at * run.truss.direction[point.member, 0]
+            yield what, -float(point.fy), f"on {made.members[point.member].name}", float(x)
+    for node in np.flatnonzero(run.cases.nodal[c, :, 1]):
+        force, x = -float(run.cases.nodal[c, node, 1]), float(run.truss.xy[node, 0])
+        yield what, force, f"at panel point {made.nodes[node]}", x
 
 
 def _surfaces(head: ActionCase) -> list[tuple[str, SurfaceLoad]]:

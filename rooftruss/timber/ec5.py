@@ -14,6 +14,8 @@ from rooftruss.timber.check import Array, Checks, Creep, Demand, Durations, Memb
 from rooftruss.timber.ec5_check import check_members
 from rooftruss.timber.ec5_explain import explain_bearing, explain_member
 from rooftruss.timber.ec5_formulas import contact_length, final_factors, size_factor
+from rooftruss.timber.ec5_resistance import bearing_factors
+from rooftruss.timber.ec5_tables import contact_addition
 
 NAME = "EN 1995-1-1"
 SERVICE_CLASSES = (1, 2, 3)
@@ -26,6 +28,7 @@ class Ec5:
     service_class: int
     load_sharing: bool | None  # None: by the conditions of 6.6
     national_choices: str
+    load_over_bearing: bool = True  # l_1 < 2h of 6.1.5
 
     @property
     def name(self) -> str:
@@ -35,10 +38,14 @@ class Ec5:
     @property
     def notes(self) -> tuple[str, ...]:
         """Choices that belong among the printed assumptions."""
+        clear = (
+            "k_c,90 of discrete supports over the bearings: the job says that no load enters a chord within 2h of them "
+            "(EN 1995-1-1, 6.1.5(4))"
+        )
         return (
+            *(() if self.load_over_bearing else (clear,)),
             "the largest axial force and the largest moment of a member are taken together (EN 1995-1-1, 6.2.3, 6.3.2)",
             "moment constant between lateral restraints, the least favourable row of EN 1995-1-1, Table 6.1",
-            "k_c,90 = 1.0 over the bearings: the load enters at the heel (EN 1995-1-1, 6.1.5)",
             "effective length in the plane is the length between panel points (EN 1995-1-1, 9.2.1)",
             f"gamma_M and k_cr: {self.national_choices} values (EN 1995-1-1, 2.4.1 and 6.1.7)",
         )
@@ -55,6 +62,7 @@ class Ec5:
         product = tables.product(str(row.get("product", "")))
         crack = tables.national(self.national_choices, product.name, self.service_class)
         shape = {"size": product.size, "power": product.power, "most": product.most}
+        k_c_90, longest = tables.bearing_factor(product.name, over_bearing=self.load_over_bearing)
         G_05 = row.get("G_05", np.nan)
         return found | {
             "E": found["E_0_mean"],
@@ -66,6 +74,8 @@ class Ec5:
             "k_m": product.k_m,
             "gamma_M": crack.gamma_M,
             "k_cr": crack.factor(found["f_v_k"], section.depth),
+            "k_c,90": k_c_90,
+            "k_c,90 up to": longest,
         }
 
     def scale(self, members: Members, durations: Durations) -> tuple[Array, NDArray[np.intp]]:
@@ -84,14 +94,9 @@ class Ec5:
     def bearing(self, reaction: Array, members: Members, length: Array, durations: Durations) -> Array:
         """Utilisation (..., k, s) across the grain; EN 1995-1-1, 6.1.5. Uplift gives 0."""
         scale, index = self.scale(members, durations)
-        resistance = self._bearing_strength(members) * members.breadth * members.plies * self._contact(length)
+        strength = bearing_factors(members, length) * members.properties["f_c_90_k"]
+        resistance = strength * members.breadth * members.plies * contact_length(length, addition=contact_addition())
         return np.maximum(reaction, 0.0) * np.take(scale, index, axis=-2) / resistance[..., None, :]
-
-    def _bearing_strength(self, members: Members) -> Array:
-        return tables.bearing_rule()[1] * members.properties["f_c_90_k"]
-
-    def _contact(self, length: Array) -> Array:
-        return contact_length(length, addition=tables.bearing_rule()[0])
 
     def explain(
         self, members: Members, demand: Demand, durations: Durations, member: int, combination: int
@@ -162,10 +167,11 @@ class Ec5:
 
 
 def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
-    """EN 1995-1-1 with the keys service_class (1, 2, 3), load_sharing ("auto", true, false) and national_choices.
+    """EN 1995-1-1 with the keys service_class (1, 2, 3), load_sharing ("auto", true, false), load_over_bearing and
+    national_choices.
 
-    The last two may be left out: "auto", "recommended". Other keys of [timber] are not the standard's. Raises JobError
-    naming the key that is missing or wrong, OutOfScopeError for a country whose values are not at hand.
+    The last three may be left out: "auto", true, "recommended". Other keys of [timber] are not the standard's. Raises
+    JobError naming the key that is missing or wrong, OutOfScopeError for a country whose values are not at hand.
     """
     service_class = options.get("service_class")
     if isinstance(service_class, bool) or service_class not in SERVICE_CLASSES:
@@ -176,6 +182,7 @@ def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
         service_class=int(service_class),
         load_sharing=_sharing(options.get("load_sharing", "auto")),
         national_choices=country,
+        load_over_bearing=bool(options.get("load_over_bearing", True)),
     )
 
 

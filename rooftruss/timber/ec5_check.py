@@ -29,7 +29,7 @@ IN_PLANE, ACROSS, TORSION_COMPRESSION, SHEAR = range(6, 10)
 
 # Round-off of the analysis is not a force: below this share of the section's own capacity there is none.
 NEGLIGIBLE = 1e-9
-BLOCK = 16_000  # elements (combinations x members) worked on at a time: about 128 kB an array
+BLOCK = 32_000  # elements (combinations x members) worked on at a time: about 256 kB an array
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -52,19 +52,23 @@ class _Unit:
 
 
 class _Worst:
-    """The largest utilisation so far and its rule; the first of equal ones stays."""
+    """The largest utilisation so far and its rule; the first of equal ones stays.
+
+    Rules are taken in the order of RULES, so that the number to keep is the larger of two: no masked copy is needed.
+    """
 
     def __init__(self, utilisation: Array, rule: NDArray[np.int8]) -> None:
         self.utilisation, self.rule = utilisation, rule
 
-    def take(self, utilisation: Array, rule: int | NDArray[np.int8]) -> None:
-        more = utilisation > self.utilisation
-        np.copyto(self.utilisation, utilisation, where=more)
-        np.copyto(self.rule, rule, where=more, casting="unsafe")
+    def take(self, utilisation: Array, rule: int) -> None:
+        more = (utilisation > self.utilisation).view(np.int8)
+        np.maximum(self.utilisation, utilisation, out=self.utilisation)
+        more *= np.int8(rule)
+        np.maximum(self.rule, more, out=self.rule)
 
 
 def check_members(members: Members, demand: Demand, scale: Array, index: NDArray[np.intp]) -> Checks:
-    """Worst utilisation (..., k, m) for gamma_M/k_mod (..., d, m) of the distinct durations; index (k,) picks one."""
+    """_Worst utilisation (..., k, m) for gamma_M/k_mod (..., d, m) of the distinct durations; index (k,) picks one."""
     shape = demand.tension.shape
     unit = _unit_ratios(resistances(members), scale, shape[:-2])
     utilisation, rule = np.zeros(shape), np.zeros(shape, np.int8)
@@ -113,38 +117,58 @@ def _run(unit: _Unit, demand: Demand, index: NDArray[np.intp], part: slice, wors
 
     def scaled(values: Array, least: Array) -> Array:
         values = values.reshape(flat)[part]
-        return values * scale * (values > least)
+        out = (values > least).astype(np.float64)  # a product of floats, since mixed ones cost twice as much
+        out *= values
+        out *= scale
+        return out
 
     tension = scaled(demand.tension, unit.least_force) * unit.tension
     force = scaled(demand.compression, unit.least_force)
     positive = scaled(demand.moment_positive, unit.least_moment)
     negative = scaled(demand.moment_negative, unit.least_moment)
-    bending = np.maximum(positive, negative) * unit.bending
+    bending = np.maximum(positive, negative)
+    bending *= unit.bending
+    compression = force * unit.compression
     worst.take(tension, TENSION)
-    worst.take(force * unit.compression, COMPRESSION)
+    worst.take(compression, COMPRESSION)
     worst.take(bending, BENDING)
-    torsion = np.maximum(positive * unit.positive, negative * unit.negative)
+    positive *= unit.positive
+    negative *= unit.negative
+    torsion = np.maximum(positive, negative, out=positive)
     worst.take(torsion, TORSION)
     tension += bending
     worst.take(tension, BENDING_TENSION)
-    _compression(unit, force, bending, torsion, worst)
-    worst.take(demand.shear.reshape(flat)[part] * scale * unit.shear, SHEAR)
+    _compression(unit, force, compression, bending, torsion, worst)
+    shear = demand.shear.reshape(flat)[part] * scale
+    shear *= unit.shear
+    worst.take(shear, SHEAR)
 
 
-def _compression(unit: _Unit, force: Array, bending: Array, torsion: Array, worst: _Worst) -> None:
-    """6.2.4 where both relative slendernesses are up to 0.3, else 6.3.2; and 6.3.3(6) where a moment acts too."""
-    compressed = force > 0
-    section = (force * unit.compression) ** 2
-    section += bending
-    section *= compressed
-    section *= unit.stocky
-    worst.take(section, BENDING_COMPRESSION)
-    slender = compressed * (1 - unit.stocky)
-    worst.take((force * unit.in_plane + bending) * slender, IN_PLANE)
+def _compression(unit: _Unit, force: Array, compression: Array, bending: Array, torsion: Array, worst: _Worst) -> None:
+    """6.2.4 where both relative slendernesses are up to 0.3, else 6.3.2; and 6.3.3(6) where a moment acts too.
+
+    Compression alone on a stocky member is left to 6.1.4: the square in (6.19) is for the two together. `compression`,
+    `bending` and `torsion` are used up.
+    """
+    acting = (force > 0).astype(np.float64)
+    slender = acting * (1 - unit.stocky)
+    acting *= bending > 0
+    if unit.stocky.any():
+        compression *= compression
+        compression += bending
+        compression *= acting
+        compression *= unit.stocky
+        worst.take(compression, BENDING_COMPRESSION)
+    in_plane = force * unit.in_plane
+    in_plane += bending
+    in_plane *= slender
+    worst.take(in_plane, IN_PLANE)
     across = force * unit.across
-    worst.take((across + unit.k_m * bending) * slender, ACROSS)
+    bending *= unit.k_m
+    bending += across
+    bending *= slender
+    worst.take(bending, ACROSS)
     torsion *= torsion
-    torsion *= compressed
-    across *= torsion > 0
     torsion += across
+    torsion *= acting
     worst.take(torsion, TORSION_COMPRESSION)

@@ -12,8 +12,8 @@ import numpy as np
 from rooftruss.timber import ec5_check as rules
 from rooftruss.timber import ec5_formulas as ec5
 from rooftruss.timber.check import Array, Demand, Members, Step
-from rooftruss.timber.ec5_resistance import Lateral, Resistances, resistances
-from rooftruss.timber.ec5_tables import bearing_rule
+from rooftruss.timber.ec5_resistance import Lateral, Resistances, bearing_factors, resistances
+from rooftruss.timber.ec5_tables import contact_addition
 
 CODE = "EN 1995-1-1"
 Duration = tuple[str, int, float, float]  # name, service class, k_mod, gamma_M
@@ -31,6 +31,8 @@ class _Case:
     shear: float
     k_mod: float
     gamma_M: float
+    beta_c: Array
+    G_05: Array
     r: Resistances
 
     @property
@@ -67,10 +69,13 @@ def explain_member(
         shear=given(demand.shear),
         k_mod=duration[2],
         gamma_M=duration[3],
+        beta_c=members.properties["beta_c"],
+        G_05=members.properties["G_05"],
         r=r,
     )
     ratios = list(_ratios(case))
-    value, governing = max(((s.value, rules.RULES[k]) for k, s in ratios), key=lambda found: found[0])
+    found = ((s.value, rules.RULES[k]) for k, s in ratios)
+    value, governing = max(found, key=lambda pair: pair[0], default=(0.0, rules.RULES[rules.TENSION]))
     last = Step(
         symbol="utilisation",
         value=value,
@@ -93,7 +98,7 @@ def explain_bearing(
 ) -> tuple[Step, ...]:
     """Compression across the grain of the chord `support` of `members` on its wall plate; EN 1995-1-1, 6.1.5."""
     clause = f"{CODE} 6.1.5"
-    addition, k_c_90 = bearing_rule()
+    addition, k_c_90 = contact_addition(), _at(bearing_factors(members, np.asarray(length)), support)
     breadth = _at(members.breadth * members.plies, support)
     l_ef = float(ec5.contact_length(length, addition=addition))
     f_k = _at(members.properties["f_c_90_k"], support)
@@ -107,10 +112,17 @@ def explain_bearing(
         *_factors(duration),
         _stress("f_c,90,k", f_k, "grade", "characteristic strength across the grain"),
         _stress("f_c,90,d", f_d, f"{CODE} eq. (2.14)", "k_mod f_c,90,k / gamma_M"),
-        _factor("k_c,90", k_c_90, f"{clause}(2)", "the load enters at the heel"),
+        _factor("k_c,90", k_c_90, *_bearing_factor(clause, k_c_90)),
         _stress("sigma_c,90,d", sigma, f"{clause}, eq. (6.4)", "F_c,90,d / (b l_ef)"),
         _factor("utilisation", sigma / (k_c_90 * f_d), f"{clause}, eq. (6.3)", "sigma_c,90,d / (k_c,90 f_c,90,d)"),
     )
+
+
+def _bearing_factor(clause: str, k_c_90: float) -> tuple[str, str]:
+    """Clause of k_c,90 and what it rests on."""
+    if k_c_90 > 1:
+        return f"{clause}(4)", "discrete support, no load within 2h of it, as the job says"
+    return f"{clause}(2)", "the load enters at the heel"
 
 
 def _sizes(case: _Case, members: Members) -> Iterator[Step]:
@@ -176,12 +188,26 @@ def _column_values(case: _Case, members: Members) -> Iterator[Step]:
     yield _stress("f_c,0,d", case.design(r.f_c), f"{CODE} eq. (2.14)", "k_sys k_mod f_c,0,k / gamma_M")
     yield _stress("E_0,05", case.of(p["E_0_05"]), "grade", "fifth percentile of the modulus")
     yield _factor("beta_c", case.of(p["beta_c"]), f"{CODE} eq. (6.29)", "straightness")
-    for axis, slender, k_c, eq, plane in (
-        ("y", r.lambda_rel_y, r.k_c_y, ("6.21", "6.25"), "in the plane of the truss"),
-        ("z", r.lambda_rel_z, r.k_c_z, ("6.22", "6.26"), "across it, one ply"),
+    slender = (r.lambda_rel_y, r.lambda_rel_z)
+    sides = ((members.le_strong, members.depth, "h"), (members.le_weak, members.breadth, "b"))
+    for axis, (l_ef, side, letter), relative, k_c, plane in zip(
+        "yz", sides, slender, (r.k_c_y, r.k_c_z), ("in the plane of the truss", "across it, one ply"), strict=True
     ):
-        yield _factor(f"lambda_rel,{axis}", case.of(slender), f"{CODE} eq. ({eq[0]})", f"relative slenderness {plane}")
-        yield _factor(f"k_c,{axis}", case.of(k_c), f"{CODE} eq. ({eq[1]})", "instability factor")
+        ratio = case.of(l_ef) * np.sqrt(12.0) / case.of(side)
+        yield _factor(f"lambda_{axis}", ratio, f"{CODE} 6.3.2(1)", f"l_ef,{axis} sqrt(12) / {letter}, {plane}")
+        eq = {"y": ("6.21", "6.25", "6.27"), "z": ("6.22", "6.26", "6.28")}[axis]
+        text = f"lambda_{axis} / pi sqrt(f_c,0,k / E_0,05)"
+        yield _factor(f"lambda_rel,{axis}", case.of(relative), f"{CODE} eq. ({eq[0]})", text)
+        yield _factor(f"k_c,{axis}", case.of(k_c), f"{CODE} eq. ({eq[1]})", _column_text(case, axis, relative, eq[2]))
+
+
+def _column_text(case: _Case, axis: str, relative: Array, eq: str) -> str:
+    """How k_c comes about: k of eq. (6.27) or (6.28), or that the member is stocky."""
+    slender, beta_c = case.of(relative), case.of(case.beta_c)
+    if slender <= 0.3:
+        return f"1, since lambda_rel,{axis} is not above 0.3"
+    k = 0.5 * (1 + beta_c * (slender - 0.3) + slender**2)
+    return f"1 / (k + sqrt(k^2 - lambda_rel^2)), k = {k:.4g} by eq. ({eq})"
 
 
 def _lateral_values(case: _Case, sign: str, l_u: Array, lateral: Lateral) -> Iterator[Step]:
@@ -190,15 +216,26 @@ def _lateral_values(case: _Case, sign: str, l_u: Array, lateral: Lateral) -> Ite
     yield Step(symbol=f"l{sign}", value=case.of(l_u), kind="length", clause="job", text=text)
     if case.of(l_u):
         length = case.of(lateral.l_ef)
-        yield Step(
-            symbol=f"l_ef{sign}", value=length, kind="length", clause=f"{CODE} Table 6.1", text="effective length"
-        )
+        added = length > case.of(l_u)
+        text = "constant moment, l" + (" + 2h, load on the compressed edge" if added else "")
+        yield Step(symbol=f"l_ef{sign}", value=length, kind="length", clause=f"{CODE} Table 6.1", text=text)
         critical = case.of(lateral.sigma_m_crit)
-        yield _stress(f"sigma_m,crit{sign}", critical, f"{CODE} eq. (6.31), (6.32)", "critical bending stress")
-        yield _factor(
-            f"lambda_rel,m{sign}", case.of(lateral.lambda_rel_m), f"{CODE} eq. (6.30)", "relative slenderness"
-        )
-    yield _factor(f"k_crit{sign}", case.of(lateral.k_crit), f"{CODE} eq. (6.34)", "lateral torsional buckling")
+        glued = bool(np.isfinite(case.of(case.G_05)))
+        text = "pi sqrt(E_0,05 I_z G_05 I_tor) / (l_ef W_y)" if glued else "0.78 b^2 E_0,05 / (h l_ef)"
+        yield _stress(f"sigma_m,crit{sign}", critical, f"{CODE} eq. ({'6.31' if glued else '6.32'})", text)
+        text = "sqrt(k_h f_m,k / sigma_m,crit)"
+        yield _factor(f"lambda_rel,m{sign}", case.of(lateral.lambda_rel_m), f"{CODE} eq. (6.30)", text)
+    yield _factor(f"k_crit{sign}", case.of(lateral.k_crit), f"{CODE} eq. (6.34)", _torsion_text(case, lateral))
+
+
+def _torsion_text(case: _Case, lateral: Lateral) -> str:
+    """The branch of eq. (6.34)."""
+    slender = case.of(lateral.lambda_rel_m)
+    if not case.of(lateral.l_ef):
+        return "1, the compressed edge is held throughout (6.3.3(5))"
+    if slender <= 0.75:
+        return "1, since lambda_rel,m is not above 0.75"
+    return "1.56 - 0.75 lambda_rel,m" if slender <= 1.4 else "1 / lambda_rel,m^2"
 
 
 def _signs(case: _Case) -> tuple[tuple[str, float, Lateral], ...]:
@@ -210,42 +247,49 @@ def _ratios(case: _Case) -> Iterator[tuple[int, Step]]:
     r, area = case.r, case.of(case.r.area)
     sigma_t, sigma_c, sigma_m = case.tension / area, case.compression / area, case.moment / case.of(r.modulus)
     t, m = sigma_t / case.design(r.f_t), sigma_m / case.design(r.f_m)
-    yield _ratio(rules.TENSION, "sigma_t,0,d/f_t,0,d", t, _shown("sigma_t,0,d", sigma_t))
+    if case.tension:
+        yield _ratio(rules.TENSION, "sigma_t,0,d/f_t,0,d", t, _shown("sigma_t,0,d", sigma_t, "N_t,d / A"))
     if case.compression:
         c = sigma_c / case.design(r.f_c)
-        yield _ratio(rules.COMPRESSION, "sigma_c,0,d/f_c,0,d", c, _shown("sigma_c,0,d", sigma_c))
+        yield _ratio(rules.COMPRESSION, "sigma_c,0,d/f_c,0,d", c, _shown("sigma_c,0,d", sigma_c, "N_c,d / A"))
     if case.moment:
-        yield _ratio(rules.BENDING, "sigma_m,y,d/f_m,y,d", m, _shown("sigma_m,y,d", sigma_m))
+        yield _ratio(
+            rules.BENDING, "sigma_m,y,d/f_m,y,d", m, _shown("sigma_m,y,d", sigma_m, "M_y,d / W_y, the larger moment")
+        )
         for sign, moment, lateral in _signs(case):
             value = moment / case.of(r.modulus) / case.design(r.f_m) / case.of(lateral.k_crit)
             if moment:
-                yield _ratio(rules.TORSION, f"sigma_m,d{sign}/(k_crit f_m,d)", value, "with its own k_crit")
+                yield _ratio(rules.TORSION, f"sigma_m,d{sign}/(k_crit f_m,d)", value, "of this sign alone")
     if case.moment and case.tension:
         value = float(ec5.bending_and_tension(t, m))
-        yield _ratio(rules.BENDING_TENSION, "sigma_t/f_t + sigma_m,y/f_m,y", value, "left side of eq. (6.17)")
+        yield _ratio(rules.BENDING_TENSION, "sigma_t/f_t + sigma_m,y/f_m,y", value, f"{t:.4g} + {m:.4g}")
     if case.compression:
         yield from _compression_ratios(case, c, m)
     if case.shear:
         tau = float(ec5.shear_stress(case.shear, area, 1.0, k_cr=case.of(r.k_cr)))
-        yield _ratio(rules.SHEAR, "tau_d/f_v,d", tau / case.design(r.f_v), _shown("tau_d", tau))
+        yield _ratio(rules.SHEAR, "tau_d/f_v,d", tau / case.design(r.f_v), _shown("tau_d", tau, "1.5 V_d / (k_cr A)"))
 
 
 def _compression_ratios(case: _Case, c: float, m: float) -> Iterator[tuple[int, Step]]:
     """6.2.4 or 6.3.2, and 6.3.3(6), from c = sigma_c/f_c and m = sigma_m,y/f_m,y."""
-    r, k_c_y, k_c_z = case.r, case.of(case.r.k_c_y), case.of(case.r.k_c_z)
-    if case.of(r.stocky):
+    r, k_m = case.r, case.of(case.r.k_m)
+    k_c_y, k_c_z = case.of(r.k_c_y), case.of(r.k_c_z)
+    if case.of(r.stocky) and case.moment:
         value = float(ec5.bending_and_compression(c, m))
-        yield _ratio(rules.BENDING_COMPRESSION, "(sigma_c/f_c)^2 + sigma_m,y/f_m,y", value, "left side of eq. (6.19)")
-    else:
+        yield _ratio(rules.BENDING_COMPRESSION, "(sigma_c/f_c)^2 + sigma_m,y/f_m,y", value, f"{c:.4g}^2 + {m:.4g}")
+    if not case.of(r.stocky):
         value = float(ec5.column_in_plane(c, k_c_y, m))
-        yield _ratio(rules.IN_PLANE, "sigma_c/(k_c,y f_c) + sigma_m,y/f_m,y", value, "left side of eq. (6.23)")
-        value = float(ec5.column_across(c, k_c_z, m, k_m=case.of(r.k_m)))
-        yield _ratio(rules.ACROSS, "sigma_c/(k_c,z f_c) + k_m sigma_m,y/f_m,y", value, "left side of eq. (6.24)")
+        yield _ratio(rules.IN_PLANE, "sigma_c/(k_c,y f_c) + sigma_m,y/f_m,y", value, f"{c:.4g}/{k_c_y:.4g} + {m:.4g}")
+        value = float(ec5.column_across(c, k_c_z, m, k_m=k_m))
+        yield _ratio(
+            rules.ACROSS, "sigma_c/(k_c,z f_c) + k_m sigma_m,y/f_m,y", value, f"{c:.4g}/{k_c_z:.4g} + {k_m:g} x {m:.4g}"
+        )
     if case.moment:
         torsion = max(moment / (case.of(r.modulus) * case.of(v.k_crit)) for _, moment, v in _signs(case))
         value = float(ec5.torsion_and_compression(c, k_c_z, torsion / case.design(r.f_m), 1.0))
         symbol = "(sigma_m,d/(k_crit f_m,d))^2 + sigma_c,0,d/(k_c,z f_c,0,d)"
-        yield _ratio(rules.TORSION_COMPRESSION, symbol, value, "left side of eq. (6.35), the worse sign of the moment")
+        text = f"{torsion / case.design(r.f_m):.4g}^2 + {c:.4g}/{k_c_z:.4g}, the worse sign of the moment"
+        yield _ratio(rules.TORSION_COMPRESSION, symbol, value, text)
 
 
 def _ratio(rule: int, symbol: str, value: float, text: str) -> tuple[int, Step]:
@@ -260,8 +304,8 @@ def _factor(symbol: str, value: float, clause: str, text: str) -> Step:
     return Step(symbol=symbol, value=value, kind="factor", clause=clause, text=text)
 
 
-def _shown(symbol: str, stress: float) -> str:
-    return f"{symbol} = {stress / 1e6:.4g} N/mm2"
+def _shown(symbol: str, stress: float, formula: str) -> str:
+    return f"{symbol} = {formula} = {stress / 1e6:.4g} N/mm2"
 
 
 def _at(values: Array, member: int) -> float:

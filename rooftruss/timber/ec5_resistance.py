@@ -85,3 +85,9 @@ def _lateral(members: Members, l_u: Array, *, load_on_edge: bool) -> Lateral:
     critical = ec5.critical_bending_stress(l_ef, members.breadth, members.depth, E_0_05=p["E_0_05"], G_05=p["G_05"])
     slender = np.sqrt(p["k_h,m"] * p["f_m_k"] / critical)
     return Lateral(l_ef=l_ef, sigma_m_crit=critical, lambda_rel_m=slender, k_crit=ec5.torsion_factor(slender))
+
+
+def bearing_factors(members: Members, length: Array) -> Array:
+    """k_c,90 [-] of chords (..., s) on bearings of `length` (..., s) [m]; EN 1995-1-1, 6.1.5: 1 on too long ones."""
+    p = members.properties
+    return np.where(length <= p["k_c,90 up to"] + 1e-9, p["k_c,90"], 1.0)

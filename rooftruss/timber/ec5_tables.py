@@ -82,10 +82,26 @@ def creep_factor(service_class: int) -> float:
     return _number(_table("k_def").where(service_class=float(service_class)), "k_def")
 
 
-def bearing_rule() -> tuple[float, float]:
-    """(growth of the contact length on a side [m], k_c,90 [-]) of a chord on its wall plate; EN 1995-1-1, 6.1.5."""
-    row = _table("bearing").rows[0]
-    return _number(row, "addition"), _number(row, "k_c_90")
+def contact_addition() -> float:
+    """Growth of the contact length on a side [m]; EN 1995-1-1, 6.1.5(1), the same for every product."""
+    return _number(_table("bearing").rows[0], "addition")
+
+
+def bearing_factor(product_name: str, *, over_bearing: bool) -> tuple[float, float]:
+    """(k_c,90 [-], longest bearing [m] it may be taken on) of a chord on its wall plate; EN 1995-1-1, 6.1.5(2), (4).
+
+    over_bearing: a load enters the chord over the bearing or closer to it than 2h.
+
+    >>> bearing_factor("glued laminated timber", over_bearing=False)
+    (1.75, 0.4)
+    """
+    row = _table("bearing").where(product=product_name)
+    longest = _number(row, "longest")
+    return (
+        (_number(row, "k_c_90"), math.inf)
+        if over_bearing
+        else (_number(row, "k_c_90_clear"), math.inf if math.isnan(longest) else longest)
+    )
 
 
 def beam_length_rule(loading: str) -> tuple[float, float]:
