@@ -59,10 +59,9 @@ class LoadStandard:
 
     cases: Variable
     gable: str
-    walked: str  # clause of the point load of a person on the roof
+    walked: tuple[str, str]  # clauses of the point loads of a person on the roof, and on the ceiling
     walked_symbol: str  # of that load
     gable_actions: tuple[str, ...] = ("S", "W")
-    person: Callable[[Site], float] = lambda site: 0.0  # that load where the job gives none [N]; 0: none is required
 
 
 def _asce7(edition: str) -> LoadStandard:
@@ -82,7 +81,7 @@ def _asce7(edition: str) -> LoadStandard:
     return LoadStandard(
         cases=cases,
         gable=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1",
-        walked=f"ASCE {edition}, 4.4 and Table 4.3-1",
+        walked=(f"ASCE {edition}, 4.4 and Table 4.3-1",) * 2,
         walked_symbol="P",
     )
 
@@ -102,10 +101,9 @@ STANDARDS: Mapping[str, LoadStandard] = {
     "EN 1991": LoadStandard(
         cases=_en1991,
         gable="EN 1991-1-3, 5.3.3 and EN 1991-1-4, 7.2.5",
-        walked=f"{imposed_en1991.CLAUSE}, Table 6.10",
+        walked=(f"{imposed_en1991.CLAUSE}, Table 6.10", "EN 1991-1-1, 6.3.1.2, Table 6.2"),
         walked_symbol="Q_k",
         gable_actions=("S", "W", "A"),
-        person=imposed_en1991.person_on_roof,
     ),
 }
 
@@ -149,14 +147,11 @@ def action_cases(
 
 
 def walked_stops(truss: Truss, loads: AreaLoads, standard: str, site: Site) -> list[Stop]:
-    """Places of the loads that are walked along the chords; each is an alternative of its action.
-
-    The person on the roof weighs what the job says; what the standard asks for where it says nothing.
-    """
+    """Places of the loads that are walked along the chords; each is an alternative of its action."""
     chosen = STANDARDS[standard]
-    person = np.where(loads.maintenance_load > 0, loads.maintenance_load, chosen.person(site))
-    roof = stops(truss, TOP, person, action="Lr", what="person on roof", clause=chosen.walked)
-    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause=chosen.walked)
+    on_roof, on_ceiling = chosen.walked
+    roof = stops(truss, TOP, loads.maintenance_load, action="Lr", what="person on roof", clause=on_roof)
+    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause=on_ceiling)
     return [_named(stop, chosen.walked_symbol) for stop in (*roof, *ceiling)]
 
 

@@ -1,4 +1,8 @@
-"""Imposed loads to EN 1991-1-1:2002: a roof that is walked on for maintenance only (category H), and the loft."""
+"""Imposed loads to EN 1991-1-1:2002: a roof that is walked on for maintenance only (category H), and the loft.
+
+The concentrated load Q_k of category H is walked along the top chord (loads.walked) in the place of q_k, with which it
+does not act (6.3.4.2(4)).
+"""
 
 from collections.abc import Sequence
 from typing import cast
@@ -8,8 +12,7 @@ from numpy.typing import NDArray
 
 from rooftruss.basis.tables import read_table
 from rooftruss.errors import OutOfScopeError
-from rooftruss.loads.roof import ActionCase, Roof, Site, SurfaceLoad, Value
-from rooftruss.loads.site import optional_number
+from rooftruss.loads.roof import ActionCase, Roof, SurfaceLoad, Value
 from rooftruss.units import shown
 
 Array = NDArray[np.float64]
@@ -69,15 +72,6 @@ def loft_cases(loft: Array) -> list[ActionCase]:
             name="imposed in loft", short="", action="L", pattern="", loads=_on(("ceiling",), q), values=(value,)
         )
     ]
-
-
-def person_on_roof(site: Site) -> float:
-    """Concentrated load Q_k [N] of category H: the site's roof_person, the recommended value where it is left out.
-
-    It is walked along the top chord as an alternative to q_k, with which it does not act (EN 1991-1-1, 6.3.4.2(4)).
-    """
-    given = optional_number(site, "roof_person")
-    return category_h("Q")[0] if given is None else given
 
 
 def _on(surfaces: Sequence[str], pressure: Array) -> tuple[SurfaceLoad, ...]:

@@ -30,7 +30,7 @@ SURFACES = {  # from the windward eave to the leeward eave
     "left": ("left tail", "left slope", "right slope", "right tail"),
     "right": ("right tail", "right slope", "left slope", "left tail"),
 }
-INTERNAL = (("+i", "overpressure", "c_pi_over"), ("-i", "underpressure", "c_pi_under"))
+INTERNAL = (("+i", "c_pi_over"), ("-i", "c_pi_under"))  # overpressure, underpressure inside
 TERRAINS = ("0", "I", "II", "III", "IV")
 NEGLIGIBLE = 1e-9  # [m] no strip
 
@@ -172,7 +172,7 @@ def _duopitch_across(wind: _Wind, side: str, lines: tuple[str, str], here: Flags
     slope = np.where(here, wind.slope, constant("flattest"))
     line_of = (lines[0], lines[0], lines[1], lines[1])
     return _Pattern(
-        name=f"wind from the {side}, {lines[0]} to windward, {lines[1]} to leeward",
+        name=f"wind from the {side}, {lines[0]}/{lines[1]}",
         short=f"{side} {lines[0][0]}/{lines[1][0]}",
         side=side,
         stops=(0 * half, edge, half, half + edge, wind.width),
@@ -254,7 +254,7 @@ def _wall_along(wind: _Wind, zone: str, e: Array) -> Array:
 
 def _cases(wind: _Wind, pattern: _Pattern) -> Iterator[ActionCase]:
     """The case of a pattern with internal overpressure and the one with underpressure."""
-    for short, word_, key in INTERNAL:
+    for short, key in INTERNAL:
         c_pi = constant(key)
         values = [
             Value(symbol=f"c_pe, {z}", value=c, kind="ratio", clause="EN 1991-1-4, Tables 7.2 and 7.4")
@@ -267,7 +267,7 @@ def _cases(wind: _Wind, pattern: _Pattern) -> Iterator[ActionCase]:
         ]
         values.append(Value(symbol="c_pi", value=c_pi, kind="ratio", clause="EN 1991-1-4, 7.2.9(6)"))
         yield ActionCase(
-            name=f"{pattern.name}, internal {word_}",
+            name=f"{pattern.name}, c_pi {c_pi:+.1f}",
             short=f"{pattern.short}, {short}",
             action="W",
             pattern="",

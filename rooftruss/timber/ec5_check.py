@@ -68,7 +68,7 @@ class _Worst:
 
 
 def check_members(members: Members, demand: Demand, scale: Array, index: NDArray[np.intp]) -> Checks:
-    """_Worst utilisation (..., k, m) for gamma_M/k_mod (..., d, m) of the distinct durations; index (k,) picks one."""
+    """Worst utilisation (..., k, m) for gamma_M/k_mod (..., d, m) of the distinct durations; index (k,) picks one."""
     shape = demand.tension.shape
     unit = _unit_ratios(resistances(members), scale, shape[:-2])
     utilisation, rule = np.zeros(shape), np.zeros(shape, np.int8)

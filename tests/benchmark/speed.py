@@ -15,16 +15,18 @@ import time
 from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, replace
+from functools import partial
 from pathlib import Path
 
 import numpy as np
 
 from rooftruss.analysis.frame import stiffness_matrix
 from rooftruss.basis.job import Job, TrussSpec
-from rooftruss.design.batch import check_many
+from rooftruss.design.batch import Sizes, check_many
 from rooftruss.design.stages import combinations_of, family_of, run
 from tests.benchmark import obvious
 from tests.benchmark.trusses import DEMO_JOBS, SIZES, choice, finks, house, single_run
+from tests.en_jobs import EN_SIZES, barn
 
 ONE_THREAD = dict.fromkeys(("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"), "1")
 LIBRARIES = "import numpy, scipy.linalg, pandas, openpyxl, pint"
@@ -57,12 +59,12 @@ def seconds(work: Callable[[], object], times: int = 3) -> float:
     return min(found)
 
 
-def check(job: Job, specs: Sequence[TrussSpec], threads: int = 1) -> float:
+def check(job: Job, specs: Sequence[TrussSpec], threads: int = 1, sizes: Sizes = SIZES) -> float:
     """Seconds to analyse and check trusses."""
     if threads == 1:
-        return seconds(lambda: check_many(job, specs, [SIZES]))
+        return seconds(lambda: check_many(job, specs, [sizes]))
     with ThreadPoolExecutor(threads) as executor:
-        return seconds(lambda: check_many(job, specs, [SIZES], executor=executor))
+        return seconds(lambda: check_many(job, specs, [sizes], executor=executor))
 
 
 def start() -> Iterator[Line]:
@@ -85,12 +87,12 @@ def start() -> Iterator[Line]:
         yield Line(f"quote {name}: {value:.2f} s", f"{ratio:.2f} x", f"< {START_LIMIT:g}", ratio < START_LIMIT)
 
 
-def stack(specs: Sequence[TrussSpec]) -> tuple[np.ndarray, int]:
+def stack(job: Job, specs: Sequence[TrussSpec], sizes: Sizes) -> tuple[np.ndarray, int]:
     """Stiffness matrices of trusses (truss, free, free) and the number of load cases."""
     parts, cases = [], 0
     for first in range(0, len(specs), AT_A_TIME):
         some = specs[first : first + AT_A_TIME]
-        done = run(family_of(house(), some), choice(len(some)))
+        done = run(family_of(job, some), choice(len(some), sizes))
         parts.append(stiffness_matrix(done.truss, done.stiffness_axial, done.stiffness_bending))
         cases = len(done.cases.heads)
     return np.concatenate(parts), cases
@@ -98,19 +100,24 @@ def stack(specs: Sequence[TrussSpec]) -> tuple[np.ndarray, int]:
 
 def batch(count: int) -> Iterator[Line]:
     """Geometry, cases, combinations, envelope and checks of many trusses beside solving their equations alone."""
+    for job, sizes in ((house(), SIZES), (barn(), EN_SIZES)):
+        specs = finks(count, job)
+        check_many(job, specs[:300], [sizes])  # fills the caches of tables and names
+        matrices, cases = stack(job, specs, sizes)
+        right = np.random.default_rng(2).normal(size=(*matrices.shape[:2], cases))
+        bare = seconds(partial(np.linalg.solve, matrices, right))
+        whole = check(job, specs, sizes=sizes)
+        number = int(combinations_of(job, specs[0]).strength.sum())
+        size = f"{matrices.shape[1]} unknowns, {cases} cases"
+        yield Line(f"numpy.linalg.solve of {count} trusses, {size}", f"{bare / count * 1e6:.1f} us each")
+        each = f"{whole / count * 1e6:.1f} us each"
+        yield Line(f"the same trusses checked by {job.scheme}, {number} combinations", each)
+        ratio = whole / bare
+        yield Line("checked over solved", f"{ratio:.1f} x", f"< {SOLVE_LIMIT:g}", ratio < SOLVE_LIMIT)
+        yield Line("per combination and truss", f"{whole / count / number * 1e6:.2f} us")
     specs = finks(count)
-    check_many(house(), specs[:300], [SIZES])  # fills the caches of tables and names
-    matrices, cases = stack(specs)
-    right = np.random.default_rng(2).normal(size=(*matrices.shape[:2], cases))
-    bare = seconds(lambda: np.linalg.solve(matrices, right))
-    whole, two = check(house(), specs), check(house(), specs, threads=2)
-    number = int(combinations_of(house(), specs[0]).strength.sum())
-    size = f"{matrices.shape[1]} unknowns, {cases} cases"
-    yield Line(f"numpy.linalg.solve of {count} trusses, {size}", f"{bare / count * 1e6:.1f} us each")
-    yield Line(f"the same trusses checked, {number} combinations", f"{whole / count * 1e6:.1f} us each")
-    ratio = whole / bare
-    yield Line("checked over solved", f"{ratio:.1f} x", f"< {SOLVE_LIMIT:g}", ratio < SOLVE_LIMIT)
-    yield Line(f"checked with two threads on {os.cpu_count()} processors", f"{whole / two:.2f} x as fast")
+    one, two = check(house(), specs), check(house(), specs, threads=2)
+    yield Line(f"checked with two threads on {os.cpu_count()} processors", f"{one / two:.2f} x as fast")
 
 
 def against_obvious(count: int) -> Iterator[Line]:

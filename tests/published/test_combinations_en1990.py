@@ -9,6 +9,7 @@ from rooftruss.analysis.combinations import CaseHead, combine
 from rooftruss.basis.scheme_values import resolved
 from rooftruss.basis.schemes import load_scheme
 from rooftruss.errors import JobError, TableError
+from rooftruss.timber.ec5 import ec5_standard
 from rooftruss.timber.ec5_tables import modification_factor
 
 PSI_0 = {"S": 0.5, "W": 0.6, "L": 0.7, "Lr": 0.0}  # Table A1.1, sites up to 1000 m, loft as category A
@@ -64,6 +65,41 @@ def test_the_twelve_combinations_of_snow_wind_and_maintenance():
         for rest in ((0, 0, 0), (1.5, 0, 0), (1.5, 0.9, 0), (0, 1.5, 0), (0.75, 1.5, 0), (0, 0, 1.5))
     }
     assert found("en1990-6.10", "S", "W", "Lr") == twelve | {UPLIFT}
+
+
+@pytest.mark.parametrize("gamma_G", [1.35, 1.0])
+def test_number_of_combinations_of_many_arrangements(gamma_G):
+    # by hand, 3 arrangements of snow, 18 of wind, 3 of the imposed load: 1 + 3 + 18 + 3 x 18 x 2 + 3 = 133 for each G
+    many = ["S"] * 3 + ["W"] * 18 + ["Lr"] * 3
+    made = combine(heads(*many), load_scheme("en1990-6.10"), {})
+    rows = np.flatnonzero(made.strength & (made.factors[:, 0] == gamma_G))
+    assert len(rows) == 133
+    uplift = np.flatnonzero(made.strength & (made.factors[:, 0] == 0.9))  # Table A1.2(A), each wind once
+    assert len(uplift) == 18
+    assert made.strength.sum() == 2 * 133 + 18
+
+
+def test_what_lasts_is_the_quasi_permanent_combination():
+    """EN 1990, 6.16b: G + psi_2 Q. It is not checked by itself: final deflection takes k_def times it (EN 1995-1-1,
+    2.2.3(3)), so the growth of the final over the characteristic combination must be k_def times (6.16b)."""
+    quasi_permanent = {  # by hand from EN 1990, Table A1.1: S, W, loft of category A
+        300.0: (1.0, 0.0, 0.0, 0.3),
+        1200.0: (1.0, 0.2, 0.0, 0.3),
+    }
+    for altitude, expected in quasi_permanent.items():
+        scheme = load_scheme("en1990-6.10", site={"altitude": altitude})
+        made = combine(heads("S", "W", "L"), scheme, {})
+        rows = [k for k, kind in enumerate(made.kinds) if kind == "final" and made.factors[k].all()]
+        assert len(rows) == 3  # each of the three leads once
+        code = ec5_standard("EN 1995-1-1", {"service_class": 2})  # k_def = 0.8
+        final = code.service_factors(
+            made.factors[rows],
+            actions=("D", "S", "W", "L"),
+            kinds=("final",) * len(rows),
+            lasting=dict(scheme.lasting),
+        )
+        for grown in final - made.factors[rows]:
+            assert grown == pytest.approx(0.8 * np.array(expected))
 
 
 def test_published_factors():

@@ -4,11 +4,12 @@ import numpy as np
 import pytest
 
 from rooftruss.errors import OutOfScopeError
-from rooftruss.loads.imposed_en1991 import CLAUSE, category_h, loft_cases, person_on_roof, roof_live_cases
+from rooftruss.loads.imposed_en1991 import CLAUSE, category_h, loft_cases, roof_live_cases
 from rooftruss.loads.roof import Roof
 from rooftruss.loads.walked import TOP, stops
 from rooftruss.shapes.catalogue import Layout, place
 from rooftruss.shapes.outline import Outline
+from tests.en_jobs import barn
 
 ROOF = Roof(
     pitch=np.asarray(0.5),
@@ -83,10 +84,12 @@ def test_person_walks_over_every_panel():
     assert len({p.case.name for p in points}) == len(points)
 
 
-def test_the_person_of_the_site():
-    assert person_on_roof({}) == 1000.0  # recommended Q_k
-    assert person_on_roof({"roof_person": 1500.0}) == 1500.0
-    assert person_on_roof({"roof_person": 0.0}) == 0.0
+def test_the_person_of_a_job():
+    # EN 1991-1-1, Table 6.10: Q_k = 1.0 kN where the job says nothing, and the assumptions say so
+    assert barn().trusses[0].loads.maintenance_load == pytest.approx(category_h("Q")[0])
+    places = {a.place: a.text for a in barn().assumptions}
+    assert places["[loads] maintenance_load"].startswith("a person on the roof, 1 kN at every panel point")
+    assert not any("no point load is walked along the top chord" in text for text in places.values())
 
 
 def test_walk_without_tails_or_without_a_person():

@@ -7,6 +7,7 @@ import pytest
 
 from rooftruss.basis.tables import read_table
 from rooftruss.errors import JobError, OutOfScopeError
+from rooftruss.loads.cases import per_length
 from rooftruss.loads.roof import Roof
 from rooftruss.loads.wind_en1991 import wind_cases
 from rooftruss.loads.wind_en1991_factors import (
@@ -215,7 +216,13 @@ def test_line_load_normal_to_the_rafter():
     )
     first = next(load for load in case.loads if load.surface == "left slope")
     assert first.kind == "normal"
-    assert float(first.pressure) * 0.6 == pytest.approx(-273.0)
+    line = float(first.pressure) * 0.6
+    assert line == pytest.approx(-273.0)
+    # per metre of plan upwards and per metre of rise to the windward side it is the same 0.273 kN/m
+    cos, sin = math.cos(math.radians(30.0)), math.sin(math.radians(30.0))
+    right, up = (float(q) for q in per_length("normal", np.array(line), np.array(cos), np.array(sin)))
+    assert up / cos == pytest.approx(273.0)
+    assert right / sin == pytest.approx(-273.0)
 
 
 @pytest.mark.parametrize(("pitch_deg", "across"), [(3.0, 2), (5.0, 4), (45.0, 4), (46.0, 1), (60.0, 1), (75.0, 1)])
