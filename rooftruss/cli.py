@@ -6,6 +6,7 @@ Exit code 0: done; 1: done, and some truss does not meet a check; 2: the input i
 import argparse
 import sys
 from collections.abc import Callable, Sequence
+from io import TextIOWrapper
 from pathlib import Path
 from typing import TYPE_CHECKING, NoReturn
 
@@ -35,16 +36,25 @@ LIKE_KEYS = (  # options of `size` that stand for keys of [[truss]]: key, exampl
 
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command. Returns the exit code; every foreseeable mistake is one message on stderr."""
+    for stream in (sys.stdout, sys.stderr):  # a console of few letters shows a '?' for the others
+        if isinstance(stream, TextIOWrapper):
+            stream.reconfigure(errors="replace")
     parser = _parser()
     given = parser.parse_args(arguments)
     try:
-        return int(given.run(given))
+        code = int(given.run(given))
+        sys.stdout.flush()
+        return code
     except RooftrussError as error:
         print(error, file=sys.stderr)
         return WRONG_INPUT
     except BrokenPipeError:  # the reader of stdout (head, less) has gone
         sys.stderr.close()
         return DONE
+    except OSError as error:  # RooftrussError and BrokenPipeError are caught above: what is left is stdout
+        print(f"the output cannot be written: {error.strerror or error}", file=sys.stderr)
+        sys.stdout = None  # nothing more is flushed at exit
+        return WRONG_INPUT
     except KeyboardInterrupt:
         print("stopped", file=sys.stderr)
         return WRONG_INPUT
@@ -155,8 +165,10 @@ def _envelope(given: argparse.Namespace) -> int:
     from rooftruss.output.terminal import print_cautions, print_envelope, progress
     from rooftruss.run import run_file
 
+    if given.json is not None and given.json != "-":
+        _refuse_job_file(Path(given.json), given.job)
     result = run_file(given.job, progress)
-    if given.json:
+    if given.json is not None:
         from rooftruss.output.result import write_result
 
         write_result(result.job, result.designs, given.json)
@@ -165,6 +177,14 @@ def _envelope(given: argparse.Namespace) -> int:
             print_envelope(result.job, design, numbering_of(result.designs))
     print_cautions()
     return DONE if result.passes else NOT_MET
+
+
+def _refuse_job_file(path: Path, job: Path) -> None:
+    """A result file must not take the place of a job file."""
+    if not path.name:
+        raise OutputError("--json needs the name of a file, or '-' for stdout")
+    if path.suffix.lower() == ".toml" or (path.exists() and path.resolve() == job.resolve()):
+        raise OutputError(f"{path} is the name of a job file; give the result file another, such as {path.stem}.json")
 
 
 def _explain_arguments(command: argparse.ArgumentParser) -> None:

@@ -113,6 +113,7 @@ US = {
     "length": Display("ft", FOOT, "0.00"),
     "size": Display("in", INCH, "0.00"),
     "area": Display("in2", INCH**2, "0.00"),
+    "roof area": Display("ft2", FOOT**2, "0.0"),
     "inertia": Display("in4", INCH**4, "0.00"),
     "section modulus": Display("in3", INCH**3, "0.00"),
     "force": Display("lbf", POUND_FORCE, "#,##0"),
@@ -133,6 +134,7 @@ METRIC = {
     "length": Display("m", 1.0, "0.000"),
     "size": Display("mm", 1e-3, "0"),
     "area": Display("mm2", 1e-6, "#,##0"),
+    "roof area": Display("m2", 1.0, "0.00"),
     "inertia": Display("mm4", 1e-12, "#,##0"),
     "section modulus": Display("mm3", 1e-9, "#,##0"),
     "force": Display("kN", 1e3, "0.00"),
@@ -150,6 +152,15 @@ METRIC = {
     "factor": Display("-", 1.0, "0.000"),
 }
 SYSTEMS = {"US": US, "metric": METRIC}
+
+
+def both(value: float, kind: str) -> str:
+    """Text of an SI value in US and metric units, for messages that do not know the job's.
+
+    >>> both(0.3048, "size")
+    '12 in (305 mm)'
+    """
+    return f"{shown(value, kind, 'US')} ({shown(value, kind, 'metric', 3)})"
 
 
 def shown(value: float, kind: str, system: str, digits: int = 4) -> str:

@@ -5,7 +5,7 @@ same name are one grade whose values go by size: breadth_up_to and depth_up_to s
 """
 
 import math
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import cache
 
@@ -64,10 +64,20 @@ def find_grade(name: str) -> Grade:
     """
     known = _catalogue()
     if name not in known:
-        hint = nearest(name, known)
+        hint = _nearest_grade(name, known)
         hint = hint if hint.startswith("did you mean") else "`rooftruss grades` lists the known ones"
         raise JobError(f"grade {name!r} is not in tables/grades; {hint}")
     return known[name]
+
+
+def _nearest_grade(name: str, known: Iterable[str]) -> str:
+    """Nearest grade: one that holds every word of `name`, else one of its species, else any."""
+    words = name.lower().replace("#", "no.").split()
+    species = [k for k in known if words and k.lower().split()[0] == words[0]]
+    for alike in ([k for k in species if all(word in k.lower() for word in words[1:])], species):
+        if alike:
+            return nearest(alike[0] if len(alike) == 1 else name, alike)
+    return nearest(name, known)
 
 
 def user_grade(values: Mapping[str, object]) -> Grade:
@@ -92,6 +102,9 @@ def user_grade(values: Mapping[str, object]) -> Grade:
         if not row.get(key):
             raise JobError(f"a grade of the job file lacks the key {key!r}")
     name, family, species = str(row["name"]), str(row["family"]), str(row.get("species", "as given"))
+    mean, least = row.get("E"), row.get("Emin")
+    if isinstance(mean, float) and isinstance(least, float) and least > mean:
+        raise JobError(f"grade {name!r} Emin: is more than E; Emin is the lower value, for stability")
     return Grade(name=name, family=family, species=species, table="job file", rows=(row,))
 
 

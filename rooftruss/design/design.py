@@ -107,7 +107,8 @@ class Design:
             if value > LIMIT:
                 under = self.combination(int(self.outcome.bearing.combination[k]))
                 where = f"bearing at {made.nodes[support.node]}"
-                out.append((value, f"{where}: {value:.2f} in compression across the grain, {under}"))
+                need = "a longer bearing, more plies or a bottom chord of a denser species brings it down"
+                out.append((value, f"{where}: {value:.2f} in compression across the grain, {under}; {need}"))
         return out
 
     def _failed_deflections(self) -> list[tuple[float, str]]:

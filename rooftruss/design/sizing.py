@@ -64,7 +64,8 @@ def _candidates(family: Family, options: dict[str, tuple[Option, ...]]) -> NDArr
     depth = {g: np.array([o.section.depth for o in options[g]])[rows[:, k]] for k, g in enumerate(GROUPS)}
     if family.layout.raised_heel:
         room = heel_offset(family.size, depth["top chord"], depth["bottom chord"]) >= LEAST_HEEL
-        keep = np.flatnonzero(room) if np.any(room) else np.arange(len(rows))
+        shallow = np.argmin(depth["top chord"] + depth["bottom chord"])  # for a message about the least that would do
+        keep = np.flatnonzero(room) if np.any(room) else np.array([shallow])
         rows, depth = rows[keep], {g: d[keep] for g, d in depth.items()}
     length = form(family.layout, family.size, depth["top chord"], depth["bottom chord"]).length
     groups = np.array(family.topology.groups)

@@ -51,7 +51,7 @@ from rooftruss.shapes.forming import (
 from rooftruss.shapes.truss import Topology, Truss
 from rooftruss.timber.check import Checks, Demand, Durations, Members, TimberStandard, standard
 from rooftruss.timber.restraint import restraint_lengths
-from rooftruss.units import GRAVITY
+from rooftruss.units import GRAVITY, both
 
 Array = NDArray[np.float64]
 GROUPS = ("top chord", "bottom chord", "web")
@@ -195,7 +195,7 @@ def _placed(layout: AnyLayout, size: Dimensions, specs: Sequence[TrussSpec]) -> 
         if member is None:
             place = f"[[loads.case]] {case!r} points" if case else "[[loads.point]]"
             raise JobError(
-                f"{place} position: {point.position:.2f} m is outside the {point.chord} chord; "
+                f"{place} position: {both(point.position, 'length')} is outside the {point.chord} chord; "
                 "measure from the outside of the left bearing"
             )
         force = np.array([own[k][1].force for own in given])

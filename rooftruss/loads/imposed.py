@@ -63,7 +63,7 @@ def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
     L_r = roof_live_load(roof_live, R_1, R_2)
     values = (
         Value(symbol="L_o", value=roof_live, kind="pressure", clause="ASCE 7, Table 4.3-1"),
-        Value(symbol="A_t", value=np.asarray(roof.span * roof.spacing), kind="area", clause=CLAUSE),
+        Value(symbol="A_t", value=np.asarray(roof.span * roof.spacing), kind="roof area", clause=CLAUSE),
         Value(symbol="R_1", value=R_1, kind="factor", clause=CLAUSE),
         Value(symbol="R_2", value=R_2, kind="factor", clause=CLAUSE),
         Value(symbol="L_r", value=L_r, kind="pressure", clause="ASCE 7, eq. 4.8-1"),

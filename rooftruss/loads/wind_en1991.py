@@ -124,7 +124,7 @@ def _wind(roof: Roof, site: Site) -> _Wind:
         length=number(site, "building_length", "EN 1991-1-4, 7.2.5"),
         area=area,
         edge=site.get("truss_line", "interior") == "edge",
-        values=(*values, Value(symbol="A", value=area, kind="area", clause="EN 1991-1-4, 7.2.1(1)")),
+        values=(*values, Value(symbol="A", value=area, kind="roof area", clause="EN 1991-1-4, 7.2.1(1)")),
     )
 
 

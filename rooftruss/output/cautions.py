@@ -12,7 +12,9 @@ CAUTIONS = (
     "Anchors, walls, headers and foundations are not designed. The uplift and sideways reactions listed have to be "
     "held down and carried to the ground by others.",
     "Only the loads listed act. Drifts against higher walls or parapets, valleys, hips, sliding snow, ponding, solar "
-    "panels, tanks, hoists, seismic load, fire and impact are left out unless the job gives them as loads.",
+    "panels, tanks, hoists, seismic load, tornado, fire and impact are left out unless the job gives them as loads.",
+    "Wind is that of the main wind-force system. Pressures on components and cladding are higher near ridges, eaves "
+    "and corners; where they apply to a truss, its tails, members and hold-downs need more than is listed.",
     "Ground snow load and wind speed are as the job gives them; confirm them with the authority for the site.",
     "Timber is taken as graded, straight, undamaged and untreated, unless the job says otherwise; no allowance is made "
     "for notches, holes or cuts.",
@@ -22,7 +24,7 @@ CAUTIONS = (
 SHORT_CAUTIONS = (
     "A first estimate for pricing: a licensed engineer and the local building code decide what is built.",
     "Connections, bracing, handling and erection, anchors and foundations are not designed here.",
-    "Read the sheets Cautions and Assumptions before this quote is used.",
+    "Read the sheets Cautions and Assumptions of the workbook (`rooftruss quote`) before this quote is used.",
 )
 
 MODEL_ASSUMPTIONS = (

@@ -13,6 +13,7 @@ from rooftruss.output.cautions import CAUTIONS, MODEL_ASSUMPTIONS
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid
 from rooftruss.output.truss_grids import size_text
+from rooftruss.units import shown
 
 
 def quote_grid(designs: Sequence[Design]) -> Grid:
@@ -172,6 +173,9 @@ def assumptions_grid(job: Job, designs: Sequence[Design]) -> Grid:
         *((a.place, a.text) for a in job.assumptions),
         *((d.run.family.scheme.timber_standard, note) for d in designs for note in d.run.family.timber.notes),
         *((d.spec.mark, note) for d in designs for note in d.notes),
+        *((d.spec.mark, _restraint_text(job, d)) for d in designs),
+        *((d.spec.mark, _bottom_pitch_text(d)) for d in designs if find_bottom_pitch(d) > 0),
+        *((f"[site] {key}", f"as the job gives it: {word}") for key, word in job.site.items() if isinstance(word, str)),
         *(("model", text) for text in MODEL_ASSUMPTIONS),
     ]
     about: dict[str, dict[str, None]] = {}  # the places of a sentence that is said of several, in order
@@ -179,6 +183,26 @@ def assumptions_grid(job: Job, designs: Sequence[Design]) -> Grid:
         about.setdefault(text, {})[place] = None
     joined = tuple((", ".join(places), text) for text, places in about.items())
     return Grid("Assumptions", (Column("About"), Column("Taken as")), joined)
+
+
+def _restraint_text(job: Job, design: Design) -> str:
+    """What the checks took to hold each group sideways; it has to be built."""
+    parts = []
+    for group in GROUPS:
+        held = design.spec.timber.groups[group].restraint
+        far = shown(held.spacing, "size", job.units) if held.spacing else ""
+        parts.append(f"{group} {f'every {far}' if held.kind == 'spacing' else held.kind}")
+    return f"held sideways, as the job gives it: {', '.join(parts)}"
+
+
+def find_bottom_pitch(design: Design) -> float:
+    """Pitch of the bottom chord of one design."""
+    return float(design.run.family.size.bottom_pitch)
+
+
+def _bottom_pitch_text(design: Design) -> str:
+    given = "as the job gives it" if design.spec.bottom_pitch is not None else "half the roof pitch, the job gives none"
+    return f"bottom chord pitch {12 * find_bottom_pitch(design):.4g}/12 ({given})"
 
 
 @cache

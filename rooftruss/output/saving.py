@@ -14,6 +14,8 @@ def replace_file(path: Path, write: Callable[[Path], object]) -> None:
     Raises OutputError; a half-written file is removed.
     """
     part = None
+    if path.exists() and not path.is_file() and not path.is_dir():  # a rename would destroy a device or a pipe
+        raise OutputError(f"{path} is not an ordinary file; write to another place")
     try:
         handle, name = tempfile.mkstemp(prefix=f".{path.stem[:40]}-", suffix=path.suffix, dir=path.parent)
         os.close(handle)

@@ -14,6 +14,7 @@ SI_LABELS = {  # units of a frame that asks for "SI"
     "length": "m",
     "size": "m",
     "area": "m2",
+    "roof area": "m2",
     "inertia": "m4",
     "section modulus": "m3",
     "force": "N",

@@ -15,6 +15,7 @@ from rooftruss.shapes.catalogue import topology as topology_in_catalogue
 from rooftruss.shapes.custom_layout import CUSTOM, CustomLayout, custom_layout, made_of
 from rooftruss.shapes.outline import Outline
 from rooftruss.shapes.truss import Topology, Truss
+from rooftruss.units import both
 
 Array = NDArray[np.float64]
 LEAST_HEEL = 0.05  # a raised heel lower than this leaves no room for its post [m]; below, the chords meet directly
@@ -122,7 +123,8 @@ def layout_of(spec: TrussSpec) -> AnyLayout:
 
 def _too_long(piece: float, stock: float) -> JobError:
     return JobError(
-        f"longest_stock: {stock:.2f} m, but a chord piece between panel points is {piece:.2f} m long; "
+        f"longest_stock: {both(stock, 'length')}, but a chord piece between panel points is {both(piece, 'length')} "
+        "long; "
         "allow longer stock or more panels"
     )
 
@@ -193,8 +195,9 @@ def form(layout: AnyLayout, size: Dimensions, top_depth: Array | float, bottom_d
         if np.min(heel) < LEAST_HEEL:
             least = float(np.max(size.heel_height - heel)) + LEAST_HEEL
             raise JobError(
-                f"heel_height: {float(np.min(size.heel_height)):.3f} m leaves no room for a heel post with these chord "
-                f"depths; give at least {least:.3f} m, or leave it out for chords that meet at the heel"
+                f"heel_height: {both(float(np.min(size.heel_height)), 'size')} leaves no room for a heel post with "
+                f"these chord depths; give at least {both(least, 'size')}, or leave it out for chords that meet at the "
+                "heel"
             )
     outline = Outline(
         span=size.bearing_span,

@@ -177,9 +177,14 @@ class Nds:
         """
         if role == "web":
             return False
+        least_number, spacing_up_to = tables.repetitive_conditions(edition=self.edition)
+        if self.repetitive and spacing > spacing_up_to * (1 + 1e-9):
+            raise OutOfScopeError(
+                f"[timber] repetitive = true: NDS {self.edition}, 4.3.9 gives C_r to members not over 24 in apart; "
+                'set it false or "auto"'
+            )
         if self.repetitive is not None:
             return self.repetitive
-        least_number, spacing_up_to = tables.repetitive_conditions(edition=self.edition)
         return sheathed and quantity >= least_number and spacing <= spacing_up_to * (1 + 1e-9)
 
     def creep(self) -> Creep:

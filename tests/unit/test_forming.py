@@ -38,7 +38,7 @@ def test_a_scissor_truss_takes_half_the_roof_pitch_when_no_bottom_pitch_is_given
         ({"mark": "T1", "shape": "finck"}, "shape 'finck' is not in the catalogue; did you mean 'fink'?"),
         (
             {"mark": "T3", "longest_stock": 7 * FOOT},
-            "longest_stock: 2.13 m, but a chord piece between panel points is 2.",
+            "longest_stock: 7 ft (2.13 m), but a chord piece between panel points is ",
         ),
         ({"mark": "T2", "longest_stock": 3 * FOOT}, "longest_stock: 0.91 m, but a chord piece"),
     ],

@@ -49,7 +49,11 @@ def quote_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
     )
     scheme = designs[0].run.family.scheme if designs else None
     if scheme:
-        page.line(f"{scheme.title}. Loads: {scheme.load_standard}. Timber: {scheme.timber_standard}.", "note")
+        page.line(
+            f"{scheme.title}. Loads: {scheme.load_standard}. Timber: {scheme.timber_standard}. "
+            "Reactions are those of the combinations of this scheme, load factors included.",
+            "note",
+        )
     page.row += 1
     grid = quote_grid(designs)
     page.grid(grid, title="", wrap=(7, 8, 9, 17))
