@@ -12,6 +12,7 @@ from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.design.design import LIMIT, Design, Outcome, outcome_of
 from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, options_of, run, unbatched
 from rooftruss.shapes.forming import LEAST_HEEL, form, heel_offset
+from rooftruss.units import shown
 
 Array = NDArray[np.float64]
 CHUNK = 48  # candidates per batch: wide enough to share the work, small enough to stop early
@@ -27,19 +28,33 @@ def size_truss(job: Job, spec: TrussSpec) -> Design:
     family = unbatched(family_of(job, [spec]))
     options = options_of(spec)
     rows = _candidates(family, options)
+    low = _low_heel(family, options, len(rows))
     nearest: tuple[tuple[float, float], NDArray[np.intp]] = ((np.inf, np.inf), rows[0])
     for start in range(0, len(rows), CHUNK):
         chunk = rows[start : start + CHUNK]
         outcome = outcome_of(run(family, _choice(options, chunk)))
         if np.any(outcome.passes):
-            return finished(family, _choice(options, chunk[int(np.argmax(outcome.passes))]), ())
+            return finished(family, _choice(options, chunk[int(np.argmax(outcome.passes))]), low)
         failing = _failing_groups(family, outcome)
         best = int(np.lexsort((outcome.worst, failing))[0])
         score = (float(failing[best]), float(outcome.worst[best]))
         if score < nearest[0]:
             nearest = (score, chunk[best])
     note = f"none of the {len(rows)} allowed combinations of sizes and grades passes; the nearest is shown"
-    return finished(family, _choice(options, nearest[1]), (note,))
+    return finished(family, _choice(options, nearest[1]), (note, *low))
+
+
+def _low_heel(family: Family, options: dict[str, tuple[Option, ...]], left: int) -> tuple[str, ...]:
+    """Note on the choices that a raised heel is too low for."""
+    every = int(np.prod([len(options[g]) for g in GROUPS]))
+    if left == every:
+        return ()
+    deepest = [max(o.section.depth for o in options[g]) for g in GROUPS[:2]]
+    least = float(family.size.heel_height - heel_offset(family.size, *deepest)) + LEAST_HEEL
+    return (
+        f"the raised heel is too low for {every - left} of {every} combinations of sizes and grades, which were left "
+        f"out; a heel of {shown(least, 'size', family.job.units)} has room for all",
+    )
 
 
 def _failing_groups(family: Family, outcome: Outcome) -> Array:

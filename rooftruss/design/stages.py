@@ -240,6 +240,9 @@ def run(family: Family, choice: Choice) -> Run:
     durations = durations_of(combinations)
     reactions = _combined_reactions(factors, solution.reactions)
     bearing = bearing_lengths(family.layout, truss)
+    if not isinstance(family.layout, CustomLayout) and family.layout.raised_heel:
+        # the heel post stands on the bottom chord: where it is narrower than the bearing, it presses harder
+        bearing = np.minimum(bearing, depth["web"][..., None])
     return Run(
         family=family,
         choice=choice,

@@ -5,7 +5,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from rooftruss.basis.tables import read_table
 from rooftruss.loads.roof import ActionCase, Roof, SurfaceLoad, Value
-from rooftruss.units import FOOT
+from rooftruss.units import FOOT, shown
 
 Array = NDArray[np.float64]
 LEFT = ("left tail", "left slope")
@@ -61,8 +61,11 @@ def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
         return []
     R_1, R_2 = area_factor(roof.span * roof.spacing), pitch_factor(roof.pitch)
     L_r = roof_live_load(roof_live, R_1, R_2)
+    ordinary = float(read_table("loads/roof_live_asce7").rows[0]["L_o"])
+    low = bool(np.any(np.asarray(roof_live) < ordinary * (1 - SAME)))
+    asked = f", which asks for {shown(ordinary, 'pressure', 'US')} on ordinary roofs" if low else ""
     values = (
-        Value(symbol="L_o", value=roof_live, kind="pressure", clause="ASCE 7, Table 4.3-1"),
+        Value(symbol="L_o", value=roof_live, kind="pressure", clause=f"ASCE 7, Table 4.3-1{asked}"),
         Value(symbol="A_t", value=np.asarray(roof.span * roof.spacing), kind="roof area", clause=CLAUSE),
         Value(symbol="R_1", value=R_1, kind="factor", clause=CLAUSE),
         Value(symbol="R_2", value=R_2, kind="factor", clause=CLAUSE),

@@ -59,6 +59,7 @@ class _Wind:
     G: float
     GC_pi: float
     building_length: float
+    building_width: Array  # across the ridge: L for wind normal to it
     hangs_over: Bools  # (...,) a tail is longer than half the bearing
     values: tuple[Value, ...]
 
@@ -69,7 +70,8 @@ class _Wind:
 def wind_cases(roof: Roof, site: Site, edition: str) -> list[ActionCase]:
     """Wind cases (action W) of one roof or a batch; none where the wind speed is zero.
 
-    Site keys: wind_speed [m/s], exposure, enclosure, mean_roof_height [m], building_length [m], topographic_factor,
+    Site keys: wind_speed [m/s], exposure, enclosure, mean_roof_height [m], building_length [m], building_width [m]
+    (optional: the span), topographic_factor,
     ground_elevation [m]. Normal to the ridge: from either side x two windward values x both signs of internal pressure
     (8); parallel to it: two values x two signs (4); least horizontal load from either side (2).
     Raises JobError for a missing value, OutOfScopeError with the clause for an open building, one over 60 ft, and one
@@ -94,7 +96,9 @@ def _wind(roof: Roof, site: Site, edition: str) -> _Wind:
     elevation = optional_number(site, "ground_elevation")
     if elevation is None:
         raise JobError(f"[site] ground_elevation is missing; {c}26.9 asks for it (0 ft is on the safe side)")
-    _require_scope(roof, edition, enclosure, mean_height, building_length)
+    given_width = optional_number(site, "building_width")
+    width = np.asarray(roof.span, float) if given_width is None else np.maximum(given_width, roof.span)
+    _require_scope(width, edition, enclosure, mean_height, building_length)
 
     limits = rules(edition)
     h = reference_height(roof, mean_height, edition)
@@ -124,12 +128,13 @@ def _wind(roof: Roof, site: Site, edition: str) -> _Wind:
         G=G,
         GC_pi=GC_pi,
         building_length=building_length,
+        building_width=width,
         hangs_over=np.asarray(roof.overhang > (roof.span - roof.bearing_span) / 2 * (1 + 1e-9)),
         values=values,
     )
 
 
-def _require_scope(roof: Roof, edition: str, enclosure: str, height: float, length: float) -> None:
+def _require_scope(width: Array, edition: str, enclosure: str, height: float, length: float) -> None:
     if enclosure == "open":
         raise OutOfScopeError(
             f"ASCE {edition}, 27.3.2: free roofs of open buildings have their own coefficients, which are not covered"
@@ -143,7 +148,7 @@ def _require_scope(roof: Roof, edition: str, enclosure: str, height: float, leng
             f"ASCE {edition}, 26.11.2: a mean roof height over {shown(limit, 'length', 'US')} is no low-rise building, "
             "its gust effect factor follows from its natural frequency, which is not covered"
         )
-    if np.any(height > slender * np.minimum(roof.span, length)):
+    if np.any(height > slender * np.minimum(width, length)):
         raise OutOfScopeError(
             f"ASCE {edition}, 26.11.2: a building over {slender:g} times as high as wide may be flexible, "
             "which is not covered"
@@ -166,7 +171,7 @@ def reference_height(roof: Roof, mean_height: float, edition: str) -> Array:
 def _normal_to_ridge(roof: Roof, wind: _Wind) -> Iterator[ActionCase]:
     """Both directions, both windward values, both internal pressures; 27.3.1 and Fig. 27.3-1."""
     steep = np.asarray(np.asarray(roof.slope) >= rules(wind.edition)["zone_slope"] - STEEPNESS)
-    h_over_L = wind.h / roof.span
+    h_over_L = wind.h / wind.building_width
     first, second, leeward = slope_coefficients(wind.edition, roof.slope, h_over_L)
     one_value = bool(np.all(steep & (first == second)))  # from 60 deg
     for side, k in product(("left", "right"), (0, 1)):

@@ -9,11 +9,11 @@ from rooftruss.basis.job import Job
 from rooftruss.design.compare import Alternative
 from rooftruss.design.design import Design
 from rooftruss.design.stages import GROUPS
+from rooftruss.output.basis_grids import given_rows
 from rooftruss.output.cautions import CAUTIONS, MODEL_ASSUMPTIONS
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid
 from rooftruss.output.truss_grids import size_text
-from rooftruss.units import shown
 
 
 def quote_grid(designs: Sequence[Design]) -> Grid:
@@ -168,14 +168,12 @@ def _factors(acting: list[tuple[int, float]]) -> tuple[Cell, Cell]:
 
 
 def assumptions_grid(job: Job, designs: Sequence[Design]) -> Grid:
-    """What the job left open, what the timber standard notes, what is said of single trusses, and the model."""
+    """What the job left open and gives, the notes of the timber standard and of single trusses, and the model."""
     rows = [
         *((a.place, a.text) for a in job.assumptions),
         *((d.run.family.scheme.timber_standard, note) for d in designs for note in d.run.family.timber.notes),
         *((d.spec.mark, note) for d in designs for note in d.notes),
-        *((d.spec.mark, _restraint_text(job, d)) for d in designs),
-        *((d.spec.mark, _bottom_pitch_text(d)) for d in designs if find_bottom_pitch(d) > 0),
-        *((f"[site] {key}", f"as the job gives it: {word}") for key, word in job.site.items() if isinstance(word, str)),
+        *given_rows(job, designs),
         *(("model", text) for text in MODEL_ASSUMPTIONS),
     ]
     about: dict[str, dict[str, None]] = {}  # the places of a sentence that is said of several, in order
@@ -183,26 +181,6 @@ def assumptions_grid(job: Job, designs: Sequence[Design]) -> Grid:
         about.setdefault(text, {})[place] = None
     joined = tuple((", ".join(places), text) for text, places in about.items())
     return Grid("Assumptions", (Column("About"), Column("Taken as")), joined)
-
-
-def _restraint_text(job: Job, design: Design) -> str:
-    """What the checks took to hold each group sideways; it has to be built."""
-    parts = []
-    for group in GROUPS:
-        held = design.spec.timber.groups[group].restraint
-        far = shown(held.spacing, "size", job.units) if held.spacing else ""
-        parts.append(f"{group} {f'every {far}' if held.kind == 'spacing' else held.kind}")
-    return f"held sideways, as the job gives it: {', '.join(parts)}"
-
-
-def find_bottom_pitch(design: Design) -> float:
-    """Pitch of the bottom chord of one design."""
-    return float(design.run.family.size.bottom_pitch)
-
-
-def _bottom_pitch_text(design: Design) -> str:
-    given = "as the job gives it" if design.spec.bottom_pitch is not None else "half the roof pitch, the job gives none"
-    return f"bottom chord pitch {12 * find_bottom_pitch(design):.4g}/12 ({given})"
 
 
 @cache

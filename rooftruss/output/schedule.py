@@ -181,15 +181,15 @@ def frame(grid: Grid, units: str = "SI") -> "pd.DataFrame":
 def formatted(value: ShownCell, number_format: str) -> str:
     """Text of a shown cell under a spreadsheet number format, for the terminal.
 
-    >>> formatted(1234.5, "#,##0.0"), formatted(None, "0"), formatted(0.526, "General")
-    ('1,234.5', '', '0.526')
+    >>> formatted(1234.5, "#,##0.0"), formatted(None, "0"), formatted(0.526, "General"), formatted(510000.0, "")
+    ('1,234.5', '', '0.526', '510,000')
     """
     if value is None:
         return ""
     if isinstance(value, str):
         return value
     if number_format in ("", "General"):
-        return f"{value:.5g}"
+        return f"{value:,.0f}" if abs(value) >= 1e5 else f"{value:.5g}"
     decimals = len(number_format.partition(".")[2])
     return f"{value:{',' if ',' in number_format else ''}.{decimals}f}"
 

@@ -127,7 +127,7 @@ def reactions_grid(design: Design, numbering: Numbering) -> Grid:
                 value,
                 combination,
                 value <= LIMIT,
-                "chord across the grain on the wall plate",
+                "bottom chord across the grain",
             )
         )
     return Grid("Reactions and bearings", columns, tuple(rows))

@@ -175,14 +175,15 @@ def _bottom_splices(
 
 def heel_offset(size: Dimensions, top_depth: Array | float, bottom_depth: Array | float) -> Array:
     """Height of the top-chord over the bottom-chord centre line above a bearing with a raised heel (...,)."""
-    return np.asarray(size.heel_height - top_depth / 2 * np.hypot(1.0, size.pitch) - np.asarray(bottom_depth) / 2)
+    above_centre = size.heel_height + size.pitch * size.bearing / 2  # the job gives it at the outside of the bearing
+    return np.asarray(above_centre - top_depth / 2 * np.hypot(1.0, size.pitch) - np.asarray(bottom_depth) / 2)
 
 
 def form(layout: AnyLayout, size: Dimensions, top_depth: Array | float, bottom_depth: Array | float) -> Truss:
     """The layout at the dimensions of a batch.
 
     A custom truss has its own coordinates, the same in the whole batch. A raised heel is measured from the bearing to
-    the upper edge of the top chord above the bearing centre, so the chord depths [m] (...,) enter.
+    the upper edge of the top chord at the outside of the bearing, so the chord depths [m] (...,) enter.
     Raises JobError when it leaves no room for a post.
     """
     if isinstance(layout, CustomLayout):
