@@ -151,7 +151,7 @@ def _require_scope(width: Array, edition: str, enclosure: str, height: float, le
     if np.any(height > slender * np.minimum(width, length)):
         raise OutOfScopeError(
             f"ASCE {edition}, 26.11.2: a building over {slender:g} times as high as wide may be flexible, "
-            "which is not covered"
+            "which is not covered; where the building is wider than the truss, give [site] building_width"
         )
 
 

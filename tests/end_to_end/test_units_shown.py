@@ -70,6 +70,7 @@ def test_load_cases_are_the_same_in_both(shown):
     sizes = {"psf": 47.880258980, "ft": 0.3048, "lbf": 4.4482216153, "mph": 0.44704, "lb": 0.45359237, "in2": 0.0254**2}
     sizes |= {"lbf/ft": 4.4482216153 / 0.3048, "kN/m2": 1e3, "kN": 1e3, "mm2": 1e-6, "kN/m": 1e3}
     sizes |= {"lb/ft3": 0.45359237 / 0.3048**3, "kg/m3": 1.0}
+    sizes |= {"ft2": 0.3048**2, "m2": 1.0}
     sizes |= {"m": 1.0, "kg": 1.0, "m/s": 1.0, "in": 0.0254, "mm": 1e-3, "-": 1.0}
     tables = [list(quote.book["Cases"].iter_rows(values_only=True)) for quote in shown]
     compared = 0

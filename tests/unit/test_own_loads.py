@@ -154,7 +154,7 @@ def test_snow_of_the_job_accompanies_only_as_a_pattern_the_scheme_lists():
         ({}, "[loads] case 1: holds no load; give it loads = [...] or points = [...]"),
         (
             {"points": [{"chord": "top", "position": "30 ft", "force": "1 lbf"}]},
-            "'own' points position: 9.14 m is outside",
+            "'own' points position: 30 ft (9.14 m) is outside",
         ),
         ({"action": "E"}, "[loads] case 1 action: 'E' is not a choice here"),
         (
