@@ -10,6 +10,7 @@ from rooftruss.analysis.envelope import Envelope, Peak, ReactionEnvelope, peak, 
 from rooftruss.basis.job import TrussSpec
 from rooftruss.design.serviceability import Deflections, deflections
 from rooftruss.design.stages import GROUPS, Option, Run
+from rooftruss.units import shown
 
 Array = NDArray[np.float64]
 LIMIT = 1.0 + 1e-9  # a utilisation of 1.00 passes
@@ -107,7 +108,8 @@ class Design:
             if value > LIMIT:
                 under = self.combination(int(self.outcome.bearing.combination[k]))
                 where = f"bearing at {made.nodes[support.node]}"
-                need = "a longer bearing, more plies or a bottom chord of a denser species brings it down"
+                length = shown(value * float(self.run.bearing_lengths[k]), "size", self.run.family.job.units)
+                need = f"a length of {length}, more plies or a denser bottom chord would do"
                 out.append((value, f"{where}: {value:.2f} in compression across the grain, {under}; {need}"))
         return out
 
