@@ -6,8 +6,9 @@ import numpy as np
 
 from rooftruss.basis.grades import find_grade, user_grade
 from rooftruss.basis.sections import Section, find_section
-from rooftruss.timber.check import Demand, Durations, Members, standard
+from rooftruss.timber.check import standard
 from rooftruss.timber.nds import Nds
+from rooftruss.timber.terms import Demand, Durations, Members
 from rooftruss.units import INCH, POUND_FORCE, PSI
 
 OPTIONS = {"moisture": "dry", "temperature": "normal", "incised": False, "buckling_stiffness": False}

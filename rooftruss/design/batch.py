@@ -23,7 +23,8 @@ from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, r
 from rooftruss.errors import JobError
 from rooftruss.loads.actions import AreaLoads
 from rooftruss.shapes.forming import Dimensions, layout_of
-from rooftruss.timber.check import TimberStandard, standard
+from rooftruss.timber.check import standard
+from rooftruss.timber.terms import TimberStandard
 
 if TYPE_CHECKING:
     import pandas as pd

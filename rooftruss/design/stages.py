@@ -49,8 +49,9 @@ from rooftruss.shapes.forming import (
     topology_of,
 )
 from rooftruss.shapes.truss import Topology, Truss
-from rooftruss.timber.check import Checks, Demand, Durations, Members, TimberStandard, standard
+from rooftruss.timber.check import standard
 from rooftruss.timber.restraint import restraint_lengths
+from rooftruss.timber.terms import Checks, Demand, Durations, Members, TimberStandard
 from rooftruss.units import GRAVITY, both
 
 Array = NDArray[np.float64]
@@ -280,7 +281,7 @@ def _cases(family: Family, truss: Truss, weight: Array) -> LoadCases:
         *action_cases(standard_name, roof, family.loads, family.job.site, truss, fault=fault),
         *own_cases(truss, family.spec.loads.cases, size.bearing, size.spacing),
     ]
-    walked = walked_stops(truss, family.loads, standard_name, family.job.site)
+    walked = walked_stops(truss, family.loads, standard_name)
     return cases_on(truss, heads, size.spacing, weight, family.points, walked)
 
 

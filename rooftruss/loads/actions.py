@@ -146,18 +146,18 @@ def action_cases(
     return cases
 
 
-def walked_stops(truss: Truss, loads: AreaLoads, standard: str, site: Site) -> list[Stop]:
+def walked_stops(truss: Truss, loads: AreaLoads, standard: str) -> list[Stop]:
     """Places of the loads that are walked along the chords; each is an alternative of its action."""
     chosen = STANDARDS[standard]
-    on_roof, on_ceiling = chosen.walked
-    roof = stops(truss, TOP, loads.maintenance_load, action="Lr", what="person on roof", clause=on_roof)
-    ceiling = stops(truss, BOTTOM, loads.ceiling_point_load, action="L", what="load on ceiling", clause=on_ceiling)
-    return [_named(stop, chosen.walked_symbol) for stop in (*roof, *ceiling)]
-
-
-def _named(stop: Stop, symbol: str) -> Stop:
-    """The stop with its load under the symbol of the standard."""
-    return replace(stop, case=replace(stop.case, values=tuple(replace(v, symbol=symbol) for v in stop.case.values)))
+    walks = (
+        (TOP, loads.maintenance_load, "Lr", "person on roof"),
+        (BOTTOM, loads.ceiling_point_load, "L", "load on ceiling"),
+    )
+    return [
+        stop
+        for (surfaces, force, action, what), clause in zip(walks, chosen.walked, strict=True)
+        for stop in stops(truss, surfaces, force, action=action, what=what, symbol=chosen.walked_symbol, clause=clause)
+    ]
 
 
 def _point_cases(points: Sequence[PlacedPoint]) -> list[ActionCase]:

@@ -25,7 +25,9 @@ class Stop:
     force: Array  # downwards (...,) [N]
 
 
-def stops(truss: Truss, surfaces: Sequence[str], force: Array, *, action: str, what: str, clause: str) -> list[Stop]:
+def stops(
+    truss: Truss, surfaces: Sequence[str], force: Array, *, action: str, what: str, symbol: str, clause: str
+) -> list[Stop]:
     """Every panel point and every middle of a member of the chord that `surfaces` name, from the left.
 
     force (...,) [N]; none where it is zero on all trusses. A bearing below takes the load by itself and is left out.
@@ -41,7 +43,7 @@ def stops(truss: Truss, surfaces: Sequence[str], force: Array, *, action: str, w
             action=action,
             pattern="",
             loads=(),
-            values=(Value(symbol="P", value=force, kind="force", clause=clause),),
+            values=(Value(symbol=symbol, value=force, kind="force", clause=clause),),
         )
         made.append(Stop(case=case, node=node, member=member, x=x, force=np.asarray(force, float)))
     return made

@@ -10,7 +10,7 @@ from rooftruss.design.stages import bearing_members, durations_of, take_members
 from rooftruss.errors import JobError, nearest
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid, Measure
-from rooftruss.timber.check import Step
+from rooftruss.timber.terms import Step
 from rooftruss.units import shown
 
 BEARING = "bearing "

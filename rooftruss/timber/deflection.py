@@ -7,7 +7,7 @@ from numpy.typing import ArrayLike
 
 from rooftruss.basis.tables import Table, read_table
 from rooftruss.errors import JobError, nearest
-from rooftruss.timber.check import Array, Creep
+from rooftruss.timber.terms import Array, Creep
 
 KINDS = ("live", "wind_snow", "total")
 

@@ -10,12 +10,12 @@ from rooftruss.basis.grades import Grade
 from rooftruss.basis.sections import Section
 from rooftruss.errors import JobError
 from rooftruss.timber import ec5_tables as tables
-from rooftruss.timber.check import Array, Checks, Creep, Demand, Durations, Members, Step
 from rooftruss.timber.ec5_check import check_members
 from rooftruss.timber.ec5_explain import explain_bearing, explain_member
 from rooftruss.timber.ec5_formulas import contact_length, final_factors, size_factor
 from rooftruss.timber.ec5_resistance import bearing_factors
 from rooftruss.timber.ec5_tables import contact_addition
+from rooftruss.timber.terms import Array, Checks, Creep, Demand, Durations, Members, Step
 
 NAME = "EN 1995-1-1"
 SERVICE_CLASSES = (1, 2, 3)

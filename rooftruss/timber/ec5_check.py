@@ -9,8 +9,9 @@ from dataclasses import dataclass, fields
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.timber.check import Array, Checks, Demand, Members, Rule
 from rooftruss.timber.ec5_resistance import Resistances, resistances
+from rooftruss.timber.terms import Array, Checks, Demand, Members, Rule
+from rooftruss.timber.worst import Worst
 
 RULES = (
     Rule(name="tension", clause="6.1.2, eq. (6.1)"),
@@ -51,22 +52,6 @@ class _Unit:
     least_moment: Array
 
 
-class _Worst:
-    """The largest utilisation so far and its rule; the first of equal ones stays.
-
-    Rules are taken in the order of RULES, so that the number to keep is the larger of two: no masked copy is needed.
-    """
-
-    def __init__(self, utilisation: Array, rule: NDArray[np.int8]) -> None:
-        self.utilisation, self.rule = utilisation, rule
-
-    def take(self, utilisation: Array, rule: int) -> None:
-        more = (utilisation > self.utilisation).view(np.int8)
-        np.maximum(self.utilisation, utilisation, out=self.utilisation)
-        more *= np.int8(rule)
-        np.maximum(self.rule, more, out=self.rule)
-
-
 def check_members(members: Members, demand: Demand, scale: Array, index: NDArray[np.intp]) -> Checks:
     """Worst utilisation (..., k, m) for gamma_M/k_mod (..., d, m) of the distinct durations; index (k,) picks one."""
     shape = demand.tension.shape
@@ -74,10 +59,10 @@ def check_members(members: Members, demand: Demand, scale: Array, index: NDArray
     utilisation, rule = np.zeros(shape), np.zeros(shape, np.int8)
     if rule.size:
         flat = (-1, *shape[-2:])
-        worst = _Worst(utilisation.reshape(flat), rule.reshape(flat))
+        worst = Worst(utilisation.reshape(flat), rule.reshape(flat))
         for part in _parts(worst.utilisation.shape):
             whole = {f.name: getattr(unit, f.name)[part] for f in fields(_Unit)}
-            _run(_Unit(**whole), demand, index, part, _Worst(worst.utilisation[part], worst.rule[part]))
+            _run(_Unit(**whole), demand, index, part, Worst(worst.utilisation[part], worst.rule[part]))
     return Checks(rules=RULES, utilisation=utilisation, rule=rule)
 
 
@@ -111,7 +96,7 @@ def _flat(values: Array, batch: tuple[int, ...]) -> Array:
     return np.broadcast_to(values, (*batch, *values.shape[-2:])).reshape(-1, *values.shape[-2:])
 
 
-def _run(unit: _Unit, demand: Demand, index: NDArray[np.intp], part: slice, worst: _Worst) -> None:
+def _run(unit: _Unit, demand: Demand, index: NDArray[np.intp], part: slice, worst: Worst) -> None:
     flat = (-1, *demand.tension.shape[-2:])
     scale = np.take(unit.scale, index, axis=1)
 
@@ -144,7 +129,7 @@ def _run(unit: _Unit, demand: Demand, index: NDArray[np.intp], part: slice, wors
     worst.take(shear, SHEAR)
 
 
-def _compression(unit: _Unit, force: Array, compression: Array, bending: Array, torsion: Array, worst: _Worst) -> None:
+def _compression(unit: _Unit, force: Array, compression: Array, bending: Array, torsion: Array, worst: Worst) -> None:
     """6.2.4 where both relative slendernesses are up to 0.3, else 6.3.2; and 6.3.3(6) where a moment acts too.
 
     Compression alone on a stocky member is left to 6.1.4: the square in (6.19) is for the two together. `compression`,

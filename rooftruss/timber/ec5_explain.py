@@ -11,9 +11,9 @@ import numpy as np
 
 from rooftruss.timber import ec5_check as rules
 from rooftruss.timber import ec5_formulas as ec5
-from rooftruss.timber.check import Array, Demand, Members, Step
 from rooftruss.timber.ec5_resistance import Lateral, Resistances, bearing_factors, resistances
 from rooftruss.timber.ec5_tables import contact_addition
+from rooftruss.timber.terms import Array, Demand, Members, Step
 
 CODE = "EN 1995-1-1"
 Duration = tuple[str, int, float, float]  # name, service class, k_mod, gamma_M

@@ -10,7 +10,7 @@ import numpy as np
 
 from rooftruss.timber import ec5_formulas as ec5
 from rooftruss.timber import ec5_tables as tables
-from rooftruss.timber.check import Array, Members
+from rooftruss.timber.terms import Array, Members
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

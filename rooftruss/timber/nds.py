@@ -10,11 +10,11 @@ from rooftruss.basis.sections import Section
 from rooftruss.basis.tables import Cell, read_table
 from rooftruss.errors import JobError, OutOfScopeError, nearest
 from rooftruss.timber import nds_tables as tables
-from rooftruss.timber.check import Array, Checks, Creep, Demand, Durations, Members, Step
 from rooftruss.timber.deflection import limit_ratio
 from rooftruss.timber.nds_check import check_members
 from rooftruss.timber.nds_explain import explain_bearing, explain_member
 from rooftruss.timber.nds_formulas import lumber_density
+from rooftruss.timber.terms import Array, Checks, Creep, Demand, Durations, Members, Step
 
 MOISTURES = ("dry", "wet")
 TEMPERATURES = ("normal", "100 to 125 F", "125 to 150 F")

@@ -11,10 +11,11 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.timber.check import Array, Checks, Demand, Members, Rule
 from rooftruss.timber.nds_formulas import AMPLIFIER_FLOOR
 from rooftruss.timber.nds_resistance import Resistances, resistances
 from rooftruss.timber.nds_tables import limit
+from rooftruss.timber.terms import Array, Checks, Demand, Members, Rule
+from rooftruss.timber.worst import Worst
 
 RULES = (
     Rule(name="tension", clause="3.8.1"),
@@ -77,23 +78,6 @@ class _Block:
         return np.take(ratio, self.index, axis=1)
 
 
-class _Worst:
-    """The largest utilisation so far and its rule; the first of equal ones stays.
-
-    Rules are taken in the order of RULES, so a later one always has the larger number: the number to keep is then the
-    larger of two, which costs a tenth of a masked copy.
-    """
-
-    def __init__(self, utilisation: Array, rule: NDArray[np.int8]) -> None:
-        self.utilisation, self.rule = utilisation, rule
-
-    def take(self, utilisation: Array, rule: int | NDArray[np.int8]) -> None:
-        more = (utilisation > self.utilisation).view(np.int8)
-        np.maximum(self.utilisation, utilisation, out=self.utilisation)
-        more *= np.asarray(rule, np.int8)
-        np.maximum(self.rule, more, out=self.rule)
-
-
 def check_members(
     members: Members, demand: Demand, factors: Array, *, edition: str, buckling_stiffness: bool
 ) -> Checks:
@@ -106,10 +90,10 @@ def check_members(
     rule = np.zeros(shape, np.int8)
     if rule.size:
         flat = (-1, *shape[-2:])
-        worst = _Worst(utilisation.reshape(flat), rule.reshape(flat))
+        worst = Worst(utilisation.reshape(flat), rule.reshape(flat))
         for part in _parts(worst.utilisation.shape):
             block = _block(demand, unit, index, part)
-            _run(block, demand.shear.reshape(flat)[part], _Worst(worst.utilisation[part], worst.rule[part]))
+            _run(block, demand.shear.reshape(flat)[part], Worst(worst.utilisation[part], worst.rule[part]))
     return Checks(rules=RULES, utilisation=utilisation, rule=rule)
 
 
@@ -182,7 +166,7 @@ def _where(flags: NDArray[np.bool_], values: Array) -> Array:
     return out
 
 
-def _run(block: _Block, shear: Array, worst: _Worst) -> None:
+def _run(block: _Block, shear: Array, worst: Worst) -> None:
     moment = np.maximum(block.positive, block.negative)
     tension = block.tension * block.of_duration(block.unit.tension)
     worst.take(tension, TENSION)
@@ -195,7 +179,7 @@ def _run(block: _Block, shear: Array, worst: _Worst) -> None:
     worst.take(shear * block.of_duration(block.unit.shear), SHEAR)
 
 
-def _compression(block: _Block, compressed: NDArray[np.bool_], bent: NDArray[np.bool_], worst: _Worst) -> Array:
+def _compression(block: _Block, compressed: NDArray[np.bool_], bent: NDArray[np.bool_], worst: Worst) -> Array:
     """3.6.3 and 3.7.1.4; C_T only where there is bending too (4.4.2). Returns f_c/F_c."""
     ratio = block.of_duration(block.unit.compression)
     if block.unit.compression_bent is not None:
@@ -206,7 +190,7 @@ def _compression(block: _Block, compressed: NDArray[np.bool_], bent: NDArray[np.
     return ratio
 
 
-def _bending(block: _Block, worst: _Worst) -> Array:
+def _bending(block: _Block, worst: Worst) -> Array:
     """3.3.1, or 3.9-2 where there is tension, and 3.3.3.7. Returns f_b/F_b of the worse sign."""
     unit, relieved = block.unit, isinstance(block.relief, np.ndarray)
     positive = block.positive - block.relief if relieved else block.positive
@@ -222,7 +206,7 @@ def _bending(block: _Block, worst: _Worst) -> Array:
 
 
 def _compression_bending(
-    block: _Block, compression: Array, bending: Array, both: NDArray[np.bool_], worst: _Worst
+    block: _Block, compression: Array, bending: Array, both: NDArray[np.bool_], worst: Worst
 ) -> None:
     """3.9-3 with its guard and 3.9-4, only where there are both: either alone has its own rule."""
     unit = block.unit

@@ -11,9 +11,9 @@ import numpy as np
 
 from rooftruss.timber import nds_check as rules
 from rooftruss.timber import nds_formulas as nds
-from rooftruss.timber.check import Array, Demand, Members, Step
 from rooftruss.timber.nds_resistance import Lateral, Resistances, Stability, resistances
 from rooftruss.timber.nds_tables import limit
+from rooftruss.timber.terms import Array, Demand, Members, Step
 
 LETTERS = {"Fb": "F_b", "Ft": "F_t", "Fv": "F_v", "Fc_perp": "F_c_perp", "Fc": "F_c", "E": "E", "Emin": "E_min"}
 FACTORS = {  # letter -> clause, text

@@ -9,8 +9,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from rooftruss.timber import nds_formulas as nds
-from rooftruss.timber.check import Array, Members
 from rooftruss.timber.nds_tables import effective_bending_length, sheathed_chord
+from rooftruss.timber.terms import Array, Members
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -7,7 +7,7 @@ import numpy as np
 
 from rooftruss.basis.job import Restraint
 from rooftruss.errors import JobError, nearest
-from rooftruss.timber.check import Array
+from rooftruss.timber.terms import Array
 
 SHARES = {"none": 1.0, "midpoint": 1 / 2, "third points": 1 / 3}
 HELD_EDGE = {"top chord": "upper", "tail": "upper", "bottom chord": "lower"}

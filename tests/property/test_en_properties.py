@@ -14,8 +14,8 @@ from rooftruss.loads.snow_en1991 import overhang_load, shape_coefficient, snow_c
 from rooftruss.loads.wind_en1991 import wind_cases
 from rooftruss.loads.wind_en1991_factors import peak_velocity_pressure, roof_coefficient
 from rooftruss.timber import ec5_formulas as ec5
-from rooftruss.timber.check import Demand, Durations, Members
 from rooftruss.timber.ec5 import ec5_standard
+from rooftruss.timber.terms import Demand, Durations, Members
 from tests.load_resultants import force, reactions
 
 few = settings(max_examples=40, deadline=None)

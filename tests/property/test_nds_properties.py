@@ -7,7 +7,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from rooftruss.timber.check import Demand, Durations, Members
+from rooftruss.timber.terms import Demand, Durations, Members
 from tests.nds_support import members, nds
 
 GRADES = ("SPF No.1/No.2", "SPF Stud", "SP No.2", "DF-L SS", "SPF 2100f-1.8E")

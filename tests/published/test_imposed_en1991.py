@@ -69,7 +69,7 @@ def fink(tails: bool = True):
 
 def walk(truss):
     """Stops of the person of the recommended Q_k on the top chord."""
-    return stops(truss, TOP, np.asarray(1000.0), action="Lr", what="person on roof", clause=CLAUSE)
+    return stops(truss, TOP, np.asarray(1000.0), action="Lr", what="person on roof", symbol="Q_k", clause=CLAUSE)
 
 
 def test_person_walks_over_every_panel():
@@ -94,4 +94,4 @@ def test_the_person_of_a_job():
 
 def test_walk_without_tails_or_without_a_person():
     assert len(walk(fink(tails=False))) == 7
-    assert stops(fink(), TOP, np.asarray(0.0), action="Lr", what="", clause="") == []
+    assert stops(fink(), TOP, np.asarray(0.0), action="Lr", what="", symbol="", clause="") == []

@@ -5,7 +5,6 @@ import pytest
 import sympy
 
 from rooftruss.timber import nds_formulas as nds
-from rooftruss.timber.check import Creep
 from rooftruss.timber.deflection import creep_and_live_deflection, final_deflection
 from rooftruss.timber.nds_tables import (
     bearing_area,
@@ -15,6 +14,7 @@ from rooftruss.timber.nds_tables import (
     require_time_effects,
     sheathed_chord,
 )
+from rooftruss.timber.terms import Creep
 from rooftruss.units import INCH, PCF, PSI
 
 

@@ -10,11 +10,11 @@ from rooftruss.basis.grades import find_grade, user_grade
 from rooftruss.basis.sections import Section, find_section
 from rooftruss.errors import JobError, OutOfScopeError, TableError
 from rooftruss.timber import ec5_formulas as ec5
-from rooftruss.timber.check import Demand, Durations, Members
 from rooftruss.timber.ec5 import Ec5, ec5_standard
 from rooftruss.timber.ec5_check import RULES
 from rooftruss.timber.ec5_resistance import resistances
 from rooftruss.timber.ec5_tables import modification_factor
+from rooftruss.timber.terms import Demand, Durations, Members
 from tests.support import framed, load_cases
 
 NAME = "EN 1995-1-1"

@@ -6,7 +6,7 @@ import pytest
 from rooftruss.basis.grades import grades
 from rooftruss.design.stages import durations_of
 from rooftruss.errors import JobError
-from rooftruss.timber.check import Demand
+from rooftruss.timber.terms import Demand
 from tests.custom_jobs import design, job
 
 PSI = 6894.757293168361

@@ -1,0 +1,158 @@
+"""What every timber standard takes and gives: the words that all of them share.
+
+Arrays carry leading batch axes `...`; k counts combinations, m members, s bearings.
+"""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Protocol
+
+import numpy as np
+from numpy.typing import NDArray
+
+from rooftruss.basis.grades import Grade
+from rooftruss.basis.sections import Section
+
+Array = NDArray[np.float64]
+Flags = NDArray[np.bool_]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Members:
+    """Members of one topology, arrays (..., m) [m].
+
+    lu_positive is the unsupported length of the edge that a positive (sagging) moment compresses, the upper one;
+    lu_negative that of the lower edge. An effective or unsupported length of 0 means held throughout.
+    """
+
+    names: tuple[str, ...]
+    roles: tuple[str, ...]  # "top chord", "bottom chord", "web", "tail"
+    breadth: Array  # of one ply
+    depth: Array
+    plies: Array
+    length: Array
+    le_strong: Array  # effective length in the plane of the truss
+    le_weak: Array  # across it
+    lu_positive: Array
+    lu_negative: Array
+    load_sharing: Flags  # conditions of the standard for repetitive members are met
+    properties: Mapping[str, Array]  # what TimberStandard.properties returned, stacked
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Demand:
+    """Largest effects in each member under each combination, arrays (..., k, m), none negative [N, N m].
+
+    The largest axial force and the largest moment of a member are taken as acting in one place (safe side).
+    tension_least is the smallest tension along the member, the only part that may relieve bending;
+    None means no relief is taken.
+    """
+
+    tension: Array
+    compression: Array
+    moment_positive: Array
+    moment_negative: Array
+    shear: Array
+    tension_least: Array | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Durations:
+    """Duration of each strength combination (k,): its shortest load, and the time effect factor of the scheme."""
+
+    names: tuple[str, ...]
+    time_effect: Array  # NaN where the scheme has none
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Rule:
+    """One requirement of a standard."""
+
+    name: str
+    clause: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Checks:
+    """Utilisation (..., k, m) of the worst rule, and which of `rules` that is."""
+
+    rules: tuple[Rule, ...]
+    utilisation: Array
+    rule: NDArray[np.int8]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Creep:
+    """Growth of the deflection under lasting load: final = (1 + coefficient) times the immediate one."""
+
+    coefficient: float
+    clause: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Step:
+    """One line of an explained check."""
+
+    symbol: str  # as the standard writes it
+    value: float  # SI
+    kind: str  # key of units.US
+    clause: str
+    text: str
+
+
+class TimberStandard(Protocol):
+    """One edition and method of a timber standard with the service conditions of the job."""
+
+    @property
+    def name(self) -> str:
+        """Name in the register, "NDS 2018 ASD"."""
+
+    @property
+    def notes(self) -> tuple[str, ...]:
+        """Choices and limits of this standard that belong among the printed assumptions."""
+
+    def properties(self, grade: Grade, section: Section) -> dict[str, float]:
+        """Everything `check` needs of a grade in a size, SI; always with E (mean, for analysis) and density [kg/m3]."""
+
+    def check(self, members: Members, demand: Demand, durations: Durations) -> Checks:
+        """Worst utilisation of every member under every combination."""
+
+    def bearing(self, reaction: Array, members: Members, length: Array, durations: Durations) -> Array:
+        """Utilisation (..., k, s) across the grain under reactions (..., k, s) [N, upwards on the truss].
+
+        `members` are the chords (..., s) that rest on each support, `length` (..., s) the bearing lengths [m].
+        """
+
+    def explain(
+        self, members: Members, demand: Demand, durations: Durations, member: int, combination: int
+    ) -> tuple[Step, ...]:
+        """The check of one member of an unbatched truss under one combination, line by line."""
+
+    def explain_bearing(
+        self,
+        reaction: Array,
+        members: Members,
+        length: Array,
+        durations: Durations,
+        support: int,
+        combination: int,
+    ) -> tuple[Step, ...]:
+        """The bearing check of one support of an unbatched truss, line by line."""
+
+    def shares_load(self, *, role: str, sheathed: bool, quantity: int, spacing: float) -> bool:
+        """Whether a member meets the conditions for repetitive members; spacing of the trusses [m]."""
+
+    def creep(self) -> Creep:
+        """Creep of the deflection under lasting load in the service conditions of the job."""
+
+    def service_factors(
+        self, factors: Array, *, actions: tuple[str, ...], kinds: tuple[str, ...], lasting: Mapping[str, float]
+    ) -> Array:
+        """Factors (k, c) of service combinations of the given `kinds` (k,) on cases of `actions` (c,), with creep.
+
+        lasting: share of each action that lasts, from the scheme; none where the timber standard knows it itself.
+        """
+
+    def deflection_ratio(self, ceiling: str, kind: str) -> float:
+        """Span over the largest deflection [-] under a kind of service combination."""
