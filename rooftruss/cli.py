@@ -328,16 +328,20 @@ def _print(grid: "Grid", units: str = "US") -> int:
 
 def _new_arguments(command: argparse.ArgumentParser) -> None:
     command.add_argument("file", type=Path, help="job form to write (.toml); an existing file is left as it is")
+    command.add_argument(
+        "--scheme", metavar="NAME", help="combination scheme, which fixes the keys of the form; default: asce7-22-asd"
+    )
 
 
 def _new(given: argparse.Namespace) -> int:
-    from rooftruss.basis.newjob import new_job_text
+    from rooftruss.basis.newjob import USUAL_SCHEME, new_job_text
 
     if given.file.suffix.lower() != ".toml":
         raise OutputError(f"{given.file}: a job form needs a name that ends in .toml")
+    text = new_job_text(given.scheme or USUAL_SCHEME, given.file.parent)
     try:
         with given.file.open("x", encoding="utf-8") as file:
-            file.write(new_job_text())
+            file.write(text)
     except FileExistsError:
         raise OutputError(f"{given.file} exists already; choose another name") from None
     except OSError as error:

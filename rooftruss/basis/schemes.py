@@ -25,6 +25,7 @@ OPTIONS = {  # what combinations.combine understands; a scheme lists those it al
     "companion_snow": ("balanced", "any"),
     "ceiling_live": ("with roof live", "apart from roof live"),
     "ceiling_live_use": ("occupancy", "storage"),
+    "timber_edition": ("2018", "2024"),
 }
 LARGEST_FILE = 200_000  # bytes
 TOP_KEYS = {
@@ -92,6 +93,11 @@ class Scheme:
         """Choice in force for option `name`: the given one, the scheme's default, or "" if the scheme has none."""
         choices = dict(self.options).get(name, ("",))
         return str(given.get(name, choices[0]))
+
+    def timber_in_force(self, given: Mapping[str, object]) -> str:
+        """Name of the timber standard, in the edition that the options choose."""
+        edition = self.option("timber_edition", given)
+        return re.sub(r"\b\d{4}\b", edition, self.timber_standard, count=1) if edition else self.timber_standard
 
     def check_options(self, given: Mapping[str, object]) -> None:
         """Raise JobError for an option or a choice this scheme does not have."""

@@ -108,11 +108,11 @@ class _Chunk:
     marks: tuple[str, ...]
 
 
-def _shared_settings(scheme: Scheme, spec: TrussSpec) -> tuple[object, ...]:
+def _shared_settings(job: Job, scheme: Scheme, spec: TrussSpec) -> tuple[object, ...]:
     """What trusses must have in common beside their layout to be one family."""
     loads, groups = spec.loads, spec.timber.groups
     options = tuple(sorted(spec.timber.options.items()))
-    timber = _standard(scheme.timber_standard, options)
+    timber = _standard(scheme.timber_in_force(job.scheme_options), options)
     restraints = tuple(groups[group].restraint for group in GROUPS)
     return (
         options,
@@ -140,7 +140,7 @@ def _chunks(job: Job, specs: Sequence[TrussSpec], sizes: Sequence[Sizes]) -> Ite
         # trusses made from one another share these objects, so what follows from them is found once
         same = (id(spec.loads), id(spec.timber), spec.quantity, spec.spacing)
         if same not in settings:
-            settings[same] = _shared_settings(scheme, spec)
+            settings[same] = _shared_settings(job, scheme, spec)
         alone = k if spec.loads.points or spec.loads.cases else -1  # a point may stand on another member in the next
         try:
             groups.setdefault((layout_of(spec), settings[same], alone), []).append(k)

@@ -169,7 +169,7 @@ def family_of(job: Job, specs: Sequence[TrussSpec]) -> Family:
         loads=area_loads([s.loads for s in specs]),
         points=_placed(layout, size, specs),
         scheme=scheme,
-        timber=standard(scheme.timber_standard, {**job.site, **first.timber.options}),
+        timber=standard(scheme.timber_in_force(job.scheme_options), {**job.site, **first.timber.options}),
     )
 
 

@@ -171,7 +171,7 @@ def assumptions_grid(job: Job, designs: Sequence[Design]) -> Grid:
     """What the job left open and gives, the notes of the timber standard and of single trusses, and the model."""
     rows = [
         *((a.place, a.text) for a in job.assumptions),
-        *((d.run.family.scheme.timber_standard, note) for d in designs for note in d.run.family.timber.notes),
+        *((d.run.family.timber.name, note) for d in designs for note in d.run.family.timber.notes),
         *((d.spec.mark, note) for d in designs for note in d.notes),
         *given_rows(job, designs),
         *(("model", text) for text in MODEL_ASSUMPTIONS),

@@ -94,3 +94,13 @@ def test_large_numbers_are_written_out(capsys):
     assert main(["explain", str(HOUSE), "T1", "top 1"]) == 0
     assert "510,000" in capsys.readouterr().out
     assert designed(HOUSE).passes
+
+
+def test_the_edition_of_the_timber_standard_is_a_choice(tmp_path, capsys):
+    path = changed_house(
+        tmp_path / "job.toml", ('scheme = "asce7-22-asd"', 'scheme = "asce7-22-asd"\ntimber_edition = "2024"')
+    )
+    design = run_file(path).designs[0]
+    assert design.run.family.timber.name == "NDS 2024 ASD"
+    assert main(["explain", str(path), "T1", "top 1"]) == 0
+    assert "NDS 2024 eq. 3.7-1" in capsys.readouterr().out

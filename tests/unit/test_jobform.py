@@ -113,6 +113,7 @@ def test_every_default_is_an_assumption_with_its_clause_or_practice():
     assert "balanced patterns" in found["[standard] companion_snow"]
     assert set(found) == {
         "[standard] companion_snow",
+        "[standard] timber_edition",
         "[standard] ceiling_live",
         "[site] topographic_factor",
         "[site] ground_elevation",

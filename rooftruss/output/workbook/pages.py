@@ -50,7 +50,7 @@ def quote_page(page: Page, job: Job, designs: Sequence[Design]) -> None:
     scheme = designs[0].run.family.scheme if designs else None
     if scheme:
         page.line(
-            f"{scheme.title}. Loads: {scheme.load_standard}. Timber: {scheme.timber_standard}. "
+            f"{scheme.title}. Loads: {scheme.load_standard}. Timber: {designs[0].run.family.timber.name}. "
             "Reactions are those of the combinations of this scheme, load factors included.",
             "note",
         )
