@@ -264,12 +264,14 @@ def _schemes_arguments(command: argparse.ArgumentParser) -> None:
 
 def _schemes(given: argparse.Namespace) -> int:
     from rooftruss.basis.schemes import load_scheme
-    from rooftruss.output.catalogue_grids import scheme_grid, schemes_grid
+    from rooftruss.output.catalogue_grids import legend_grid, scheme_grid, schemes_grid
 
     if given.name is None:
         return _print(schemes_grid())
     folder = given.job.parent if given.job else Path()
-    _print(scheme_grid(load_scheme(given.name, folder)))
+    scheme = load_scheme(given.name, folder)
+    _print(scheme_grid(scheme))
+    _print(legend_grid(scheme))
     return _count_combinations(given.job, given.name) if given.job else DONE
 
 
@@ -329,7 +331,9 @@ def _print(grid: "Grid", units: str = "US") -> int:
 def _new_arguments(command: argparse.ArgumentParser) -> None:
     command.add_argument("file", type=Path, help="job form to write (.toml); an existing file is left as it is")
     command.add_argument(
-        "--scheme", metavar="NAME", help="combination scheme, which fixes the keys of the form; default: asce7-22-asd"
+        "--scheme",
+        metavar="NAME",
+        help="scheme (or path of a scheme file, from the folder of the form) it is for; default: asce7-22-asd",
     )
 
 

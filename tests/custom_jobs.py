@@ -11,36 +11,18 @@ from rooftruss.basis.jobform import job_from_mapping
 from rooftruss.design.design import Design
 from rooftruss.run import run_job
 from rooftruss.shapes.truss import Truss
+from tests.jobs import BASIS
 
 FOOT = 0.3048
-TEXT = """
+PLACE = BASIS.replace("40 psf", "30 psf").replace("115 mph", "110 mph")
+TEXT = f"""\
 [job]
 title = "Given joint by joint"
 units = "US"
-[standard]
-scheme = "asce7-22-asd"
-[site]
-risk_category = "II"
-ground_snow = "30 psf"
-winter_wind_parameter = 0.45
-snow_exposure = "partially exposed"
-thermal = "ventilated attic"
-roof_surface = "rough"
-wind_speed = "110 mph"
-exposure = "C"
-enclosure = "enclosed"
-mean_roof_height = "16 ft"
-building_length = "60 ft"
-[loads]
-roof_dead = "10 psf"
-roof_dead_least = "6 psf"
-ceiling_dead = "7 psf"
-roof_live = "20 psf"
-ceiling_live = "10 psf"
-[timber]
-top_chord = { grades = ["DF-L SS"], sizes = ["2x6"], restraint = "sheathed" }
-bottom_chord = { grades = ["DF-L SS"], sizes = ["2x6"], restraint = "4 ft" }
-web = { grades = ["DF-L No.2"], sizes = ["2x4"], restraint = "midpoint" }
+{PLACE}[timber]
+top_chord = {{ grades = ["DF-L SS"], sizes = ["2x6"], restraint = "sheathed" }}
+bottom_chord = {{ grades = ["DF-L SS"], sizes = ["2x6"], restraint = "4 ft" }}
+web = {{ grades = ["DF-L No.2"], sizes = ["2x4"], restraint = "midpoint" }}
 longest_stock = "40 ft"
 [[truss]]
 mark = "T1"

@@ -16,6 +16,64 @@ SIZES = {
     "web": ("2x4", "SPF No.1/No.2"),
 }
 
+# Scheme, site and loads of a job file, for those that tests put together as text
+BASIS = """\
+[standard]
+scheme = "asce7-22-asd"
+
+[site]
+risk_category = "II"
+ground_snow = "40 psf"
+winter_wind_parameter = 0.45
+snow_exposure = "partially exposed"
+thermal = "ventilated attic"
+roof_surface = "rough"
+wind_speed = "115 mph"
+exposure = "C"
+enclosure = "enclosed"
+mean_roof_height = "16 ft"
+building_length = "60 ft"
+
+[loads]
+roof_dead = "10 psf"
+roof_dead_least = "6 psf"
+ceiling_dead = "7 psf"
+roof_live = "20 psf"
+ceiling_live = "10 psf"
+"""
+JOB = f"""\
+[job]
+title = "Alder Row machine shed"
+client = "Demo client"
+number = "Q-0001"
+units = "US"
+
+{BASIS}
+[[loads.point]]
+action = "D"
+chord = "bottom"
+position = "12 ft"
+force = "250 lbf"
+note = "air handler"
+
+[timber]
+top_chord = {{ grades = ["SPF No.1/No.2", "SPF SS"], sizes = ["2x4", "2x6", "2x8"], restraint = "sheathed" }}
+bottom_chord = {{ grades = ["SPF No.1/No.2"], sizes = ["2x4", "2x6"], restraint = "120 in" }}
+web = {{ grades = ["SPF Stud"], sizes = ["2x4"] }}
+moisture = "dry"
+longest_stock = "20 ft"
+
+[[truss]]
+mark = "T1"
+shape = "fink"
+quantity = 18
+span = "28 ft"
+pitch = "6/12"
+spacing = "24 in"
+overhang = "16 in"
+bearing = "3.5 in"
+"""
+
 
 @cache
 def house() -> Job:

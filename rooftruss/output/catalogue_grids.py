@@ -10,6 +10,16 @@ from rooftruss.basis.tables import Cell
 from rooftruss.output.schedule import Column, Grid
 from rooftruss.shapes.webbing import SHAPES
 
+ACTION_WORDS = {
+    "D": "dead load of the truss, the roof and the ceiling",
+    "L": "live load of the ceiling or loft",
+    "Lr": "live load of the roof",
+    "S": "snow",
+    "R": "rain; no load case is made of it",
+    "W": "wind",
+    "A": "accidental: exceptional snow on the ground",
+}
+
 
 def shapes_grid() -> Grid:
     """The shapes of the catalogue."""
@@ -38,6 +48,15 @@ def scheme_grid(scheme: Scheme) -> Grid:
     )
     columns = (Column("clause"), Column("combination"), Column("for"), Column("dead load taken"))
     return Grid(f"{scheme.name}: {scheme.title}", columns, rows)
+
+
+def legend_grid(scheme: Scheme) -> Grid:
+    """The symbols in the rows of a scheme: the action of a job file that each one is, and how long its load lasts."""
+    used = {f.symbol: f.action for row in scheme.rows for term in row.terms for f in term}
+    duration = {action: name for name, actions in scheme.durations for action in actions}
+    rows = tuple((symbol, action, ACTION_WORDS[action], duration.get(action)) for symbol, action in used.items())
+    columns = (Column("symbol"), Column("action"), Column("what it is"), Column("load duration"))
+    return Grid("Symbols", columns, rows)
 
 
 def sections_grid(system: str, found: Sequence[Section]) -> Grid:

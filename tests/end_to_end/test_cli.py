@@ -10,6 +10,7 @@ from pathlib import Path
 import pytest
 
 from rooftruss import __version__
+from rooftruss.basis.schemes import schemes
 from rooftruss.cli import COMMANDS, main
 from rooftruss.output.explain_grids import explanation
 from rooftruss.output.numbering import numbering_of
@@ -232,6 +233,7 @@ def test_the_catalogues_print_their_names(run):
         (("shapes",), ("king post", "fink", "scissor")),
         (("schemes",), ("asce7-22-asd", "asce7-16-lrfd")),
         (("schemes", "asce7-22-asd"), ("2.4.1, 6a", "0.6D + 0.6W")),
+        (("schemes", "en1990-6.10"), ("1.35G + 1.5S", "Q_H     Lr      live load of the roof", "accidental")),
         (("grades", "spf"), ("SPF No.1/No.2", "SPF SS")),
         (("sections",), ("2x4", "2x12")),
     ):
@@ -258,16 +260,24 @@ def test_schemes_counts_the_combinations_of_a_job(run):
         assert f"{design.spec.mark}: {count} strength and {rest} deflection combinations" in out
 
 
-def test_new_writes_a_form_that_quote_accepts_and_keeps_what_is_there(tmp_path, run):
+@pytest.mark.parametrize("options", [(), *(("--scheme", name) for name in schemes())], ids=" ".join)
+def test_new_writes_a_form_that_quote_accepts_and_keeps_what_is_there(options, tmp_path, run):
     form = tmp_path / "form.toml"
-    assert run("new", form)[0] == 0
+    assert run("new", form, *options)[0] == 0
     before = form.read_bytes()
     code, _, err = run("quote", form, "-o", tmp_path / "quote.xlsx")
-    assert code in (0, 1), err
+    assert code == 0, err
     assert (tmp_path / "quote.xlsx").exists()
-    code, _, err = run("new", form)
+    code, _, err = run("new", form, *options)
     assert (code, form.read_bytes()) == (2, before)
     assert "exists already" in err
+
+
+def test_new_writes_nothing_for_a_scheme_that_does_not_exist(tmp_path, run):
+    code, out, err = run("new", tmp_path / "form.toml", "--scheme", "en1990-6.1")
+    assert (code, out) == (2, "")
+    assert "there is no scheme 'en1990-6.1'; did you mean 'en1990-6.10'" in err
+    assert not list(tmp_path.iterdir())
 
 
 def test_help_names_every_command(run):

@@ -10,7 +10,8 @@ from hypothesis import strategies as st
 
 from rooftruss.basis.jobform import job_from_mapping, read_job
 from rooftruss.errors import JobError, RooftrussError
-from tests.damaged import JOB, damaged_jobs, damages
+from tests.damaged import damaged_jobs, damages
+from tests.jobs import JOB
 
 DAMAGES = damages()
 

@@ -17,6 +17,7 @@ from rooftruss.timber import ec5_formulas as ec5
 from rooftruss.timber.ec5 import ec5_standard
 from rooftruss.timber.terms import Demand, Durations, Members
 from tests.load_resultants import force, reactions
+from tests.roofs import roof_of
 
 few = settings(max_examples=40, deadline=None)
 NAMES = ("permanent", "long-term", "medium-term", "short-term", "instantaneous", "accidental")
@@ -26,13 +27,12 @@ NAMES = ("permanent", "long-term", "medium-term", "short-term", "instantaneous",
 def roofs(draw):
     span = draw(st.floats(4.0, 20.0))
     pitch = math.tan(math.radians(draw(st.floats(2.0, 58.0))))
-    return Roof(
-        pitch=np.asarray(pitch),
-        span=np.asarray(span),
-        bearing_span=np.asarray(span - 0.1),
-        overhang=np.asarray(draw(st.floats(0.05, 1.0))),
-        rise=np.asarray(pitch * (span - 0.1) / 2),
-        spacing=np.asarray(draw(st.floats(0.3, 2.0))),
+    return roof_of(
+        pitch=pitch,
+        span=span,
+        bearing_span=span - 0.1,
+        overhang=draw(st.floats(0.05, 1.0)),
+        spacing=draw(st.floats(0.3, 2.0)),
     )
 
 

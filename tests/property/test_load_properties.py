@@ -17,6 +17,7 @@ from rooftruss.loads.wind_asce7 import wind_cases
 from rooftruss.loads.wind_asce7_factors import between_like_signs, exposure_coefficient, slope_coefficients
 from rooftruss.units import FOOT, PSF
 from tests.load_resultants import force, reactions
+from tests.roofs import roof_of
 
 editions = st.sampled_from(["7-16", "7-22"])
 few = settings(max_examples=40, deadline=None)
@@ -27,13 +28,8 @@ def roofs(draw):
     span = draw(st.floats(3.0, 25.0))
     pitch = draw(st.floats(0.5, 20.0)) / 12
     overhang = draw(st.floats(0.05, 1.0))
-    return Roof(
-        pitch=np.asarray(pitch),
-        span=np.asarray(span),
-        bearing_span=np.asarray(span - 0.1),
-        overhang=np.asarray(overhang),
-        rise=np.asarray(pitch * (span - 0.1) / 2),
-        spacing=np.asarray(draw(st.floats(0.3, 2.0))),
+    return roof_of(
+        pitch=pitch, span=span, bearing_span=span - 0.1, overhang=overhang, spacing=draw(st.floats(0.3, 2.0))
     )
 
 

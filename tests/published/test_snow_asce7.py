@@ -1,10 +1,11 @@
 """Snow loads of ASCE 7-16 and 7-22, chapter 7, against printed examples and hand arithmetic."""
 
+from functools import partial
+
 import numpy as np
 import pytest
 
 from rooftruss.errors import JobError, OutOfScopeError, TableError
-from rooftruss.loads.roof import Roof
 from rooftruss.loads.snow_asce7 import snow_cases
 from rooftruss.loads.snow_asce7_factors import (
     drift_height_16,
@@ -26,21 +27,12 @@ from rooftruss.loads.snow_asce7_factors import (
 )
 from rooftruss.units import FOOT, GRAVITY, PCF, PSF
 from tests.load_resultants import reactions
+from tests.roofs import named, roof_in_feet, values
 
 R_UNIT = 0.1761101838  # m2 K/W in one ft2 h F/Btu (3600 s x 0.09290304 m2 / 1055.056 J x 5/9 K)
 
 
-def roof(pitch=0.5, span=60.0, bearing_span=None, overhang=0.0, spacing=2.0):
-    """Roof [ft]; pitch as rise over run."""
-    bearing_span = span if bearing_span is None else bearing_span
-    return Roof(
-        pitch=np.asarray(pitch, float),
-        span=np.asarray(span) * FOOT,
-        bearing_span=np.asarray(bearing_span) * FOOT,
-        overhang=np.asarray(overhang) * FOOT,
-        rise=np.asarray(pitch) * np.asarray(bearing_span) / 2 * FOOT,
-        spacing=np.asarray(spacing) * FOOT,
-    )
+roof = partial(roof_in_feet, span=60.0)
 
 
 def site(**changes):
@@ -54,14 +46,6 @@ def site(**changes):
         "roof_surface": "rough",
     }
     return base | changes
-
-
-def named(cases, short):
-    return next(case for case in cases if case.short == short)
-
-
-def values(case):
-    return {value.symbol: np.asarray(value.value) for value in case.values}
 
 
 def psf(case, surface):

@@ -2,27 +2,19 @@
 
 import math
 
-import numpy as np
 import pytest
 
 from rooftruss.errors import JobError, OutOfScopeError
 from rooftruss.loads.national_en1991 import national_choices
 from rooftruss.loads.roof import Roof
 from rooftruss.loads.snow_en1991 import arrangements, overhang_load, roof_snow, shape_coefficient, snow_cases
+from tests.roofs import gable_in_metres
 
 SITE = {"ground_snow": 1200.0, "altitude": 300.0, "exposure_coefficient": 1.0, "thermal_coefficient": 1.0}
 
 
-def gable(pitch_deg: float = 25.0, overhang: float = 0.5, span: float = 8.0, bearing: float = 0.1) -> Roof:
-    pitch = math.tan(math.radians(pitch_deg))
-    return Roof(
-        pitch=np.asarray(pitch),
-        span=np.asarray(span),
-        bearing_span=np.asarray(span - bearing),
-        overhang=np.asarray(overhang + bearing / 2),
-        rise=np.asarray(pitch * (span - bearing) / 2),
-        spacing=np.asarray(0.6),
-    )
+def gable(pitch_deg: float = 25.0, overhang: float = 0.5) -> Roof:
+    return gable_in_metres(pitch_deg, overhang=overhang, span=8.0)
 
 
 @pytest.mark.parametrize(

@@ -1,12 +1,13 @@
 """Wind loads of ASCE 7-16 and 7-22, chapters 26 and 27, against printed examples and hand arithmetic."""
 
+from functools import partial
+
 import numpy as np
 import pytest
 
 from rooftruss.analysis.combinations import CaseHead, combine
 from rooftruss.basis.schemes import load_scheme
 from rooftruss.errors import JobError, OutOfScopeError
-from rooftruss.loads.roof import Roof
 from rooftruss.loads.wind_asce7 import reference_height, wind_cases
 from rooftruss.loads.wind_asce7_factors import (
     between_like_signs,
@@ -20,21 +21,10 @@ from rooftruss.loads.wind_asce7_factors import (
 )
 from rooftruss.units import FOOT, MILE_PER_HOUR, PSF
 from tests.load_resultants import force, reactions
+from tests.roofs import named, roof_in_feet, values
 
 POUND_FORCE = PSF * FOOT**2
-
-
-def roof(pitch=0.5, span=30.0, bearing_span=None, overhang=0.0, spacing=2.0):
-    """Roof [ft]; pitch as rise over run."""
-    bearing_span = span if bearing_span is None else bearing_span
-    return Roof(
-        pitch=np.asarray(pitch, float),
-        span=np.asarray(span) * FOOT,
-        bearing_span=np.asarray(bearing_span) * FOOT,
-        overhang=np.asarray(overhang) * FOOT,
-        rise=np.asarray(pitch) * np.asarray(bearing_span) / 2 * FOOT,
-        spacing=np.asarray(spacing) * FOOT,
-    )
+roof = partial(roof_in_feet, span=30.0)
 
 
 def site(**changes):
@@ -48,14 +38,6 @@ def site(**changes):
         "ground_elevation": 0.0,
     }
     return base | changes
-
-
-def named(cases, short):
-    return next(case for case in cases if case.short == short)
-
-
-def values(case):
-    return {value.symbol: np.asarray(value.value) for value in case.values}
 
 
 def psf(case, surface):

@@ -19,6 +19,7 @@ from rooftruss.loads.wind_en1991_factors import (
     turbulence_intensity,
     wall_coefficient,
 )
+from tests.roofs import gable_in_metres
 
 TERRAIN = {"0": (0.003, 1.0), "I": (0.01, 1.0), "II": (0.05, 2.0), "III": (0.3, 5.0), "IV": (1.0, 10.0)}  # Table 4.1
 SITE = {
@@ -31,16 +32,8 @@ SITE = {
 }
 
 
-def gable(pitch_deg: float = 23.0, overhang: float = 0.0, span: float = 7.6, bearing: float = 0.1) -> Roof:
-    pitch = math.tan(math.radians(pitch_deg))
-    return Roof(
-        pitch=np.asarray(pitch),
-        span=np.asarray(span),
-        bearing_span=np.asarray(span - bearing),
-        overhang=np.asarray(overhang + bearing / 2),
-        rise=np.asarray(pitch * (span - bearing) / 2),
-        spacing=np.asarray(0.6),
-    )
+def gable(pitch_deg: float = 23.0, overhang: float = 0.0) -> Roof:
+    return gable_in_metres(pitch_deg, overhang=overhang, span=7.6)
 
 
 PEAK = [  # v_b [m/s], terrain, z [m], then printed values; rel is the rounding of the print

@@ -9,37 +9,18 @@ from rooftruss.basis.job import Job
 from rooftruss.basis.jobform import job_from_mapping
 from rooftruss.design.design import Design
 from rooftruss.design.sizing import size_truss
+from tests.jobs import BASIS
 
-TEXT = """
+TEXT = f"""\
 [job]
 title = "=1+1 & more"
 client = "@client"
 number = "Q-7"
 units = "UNITS"
-[standard]
-scheme = "asce7-22-asd"
-[site]
-risk_category = "II"
-ground_snow = "40 psf"
-winter_wind_parameter = 0.45
-snow_exposure = "partially exposed"
-thermal = "ventilated attic"
-roof_surface = "rough"
-wind_speed = "115 mph"
-exposure = "C"
-enclosure = "enclosed"
-mean_roof_height = "16 ft"
-building_length = "60 ft"
-[loads]
-roof_dead = "10 psf"
-roof_dead_least = "6 psf"
-ceiling_dead = "7 psf"
-roof_live = "20 psf"
-ceiling_live = "10 psf"
-[timber]
-top_chord = { grades = ["SPF No.1/No.2"], sizes = ["2x4", "2x6"], restraint = "sheathed" }
-bottom_chord = { grades = ["SPF No.1/No.2"], sizes = ["2x6"], restraint = "6 ft" }
-web = { grades = ["SPF Stud"], sizes = ["2x4"], restraint = "midpoint" }
+{BASIS}[timber]
+top_chord = {{ grades = ["SPF No.1/No.2"], sizes = ["2x4", "2x6"], restraint = "sheathed" }}
+bottom_chord = {{ grades = ["SPF No.1/No.2"], sizes = ["2x6"], restraint = "6 ft" }}
+web = {{ grades = ["SPF Stud"], sizes = ["2x4"], restraint = "midpoint" }}
 longest_stock = "20 ft"
 moisture = "dry"
 [[truss]]

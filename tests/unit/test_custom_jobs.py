@@ -10,6 +10,7 @@ import pytest
 
 from rooftruss.basis.jobform import job_from_mapping, with_overrides
 from rooftruss.basis.newjob import new_job_text
+from rooftruss.basis.schemes import schemes
 from rooftruss.errors import JobError, OutOfScopeError, UnstableTrussError
 from rooftruss.output.result import truss_record
 from rooftruss.run import run_job
@@ -248,8 +249,9 @@ def test_a_shape_of_the_catalogue_takes_the_place_of_a_custom_one_without_its_jo
     assert (other.trusses[0].shape, other.trusses[0].custom) == ("fink", None)
 
 
-def test_the_custom_truss_of_the_fresh_form_runs():
-    text = "\n".join(line.removeprefix("#| ") for line in new_job_text().splitlines())
+@pytest.mark.parametrize("scheme", schemes())
+def test_the_custom_truss_of_the_fresh_form_runs(scheme):
+    text = "\n".join(line.removeprefix("#| ") for line in new_job_text(scheme).splitlines())
     made = job_from_mapping(tomllib.loads(text), "new.toml", Path())
     assert [t.mark for t in made.trusses] == ["T1", "C1"]
     found = run_job(replace(made, trusses=made.trusses[1:])).designs[0]

@@ -9,11 +9,10 @@ import pytest
 from rooftruss.basis.job import Assumption, Job, PointLoad, Restraint
 from rooftruss.basis.jobform import job_from_mapping, read_job, with_overrides
 from rooftruss.basis.jobkeys import common_form, form_for
-from rooftruss.basis.newjob import new_job_text
 from rooftruss.basis.tablereader import TableReader, entries
 from rooftruss.basis.tables import data_folder, read_settings, read_table
 from rooftruss.errors import JobError, TableError
-from tests.damaged import JOB
+from tests.jobs import JOB
 
 FOOT, INCH, PSF, POUND_FORCE, MPH = 0.3048, 0.0254, 47.88025898033584, 4.4482216152605, 0.44704
 
@@ -398,34 +397,7 @@ def test_overrides_that_are_refused(mark, changes, text):
     assert str(error.value).startswith(text)
 
 
-# --- the fresh form and the keys ------------------------------------------------------------------------------------
-
-
-def test_the_fresh_form_is_a_right_job_that_says_it_is_invented():
-    made = job_from_mapping(tomllib.loads(new_job_text()), "new.toml", Path())
-    assert "invented example" in new_job_text()
-    assert [t.mark for t in made.trusses] == ["T1"]
-
-
-def test_the_fresh_form_is_right_with_every_line_in_use():
-    lines = [
-        line[2:] if line.startswith(("# [[", "# ")) and "=" in line.split("#")[1] else line
-        for line in new_job_text().splitlines()
-    ]
-    text = "\n".join(lines)
-    for head in ("[[loads.point]] ", "[[loads.case]] ", "[[grade]] "):
-        text = text.replace(f"# {head}", head)
-    data = tomllib.loads(text)
-    form = form_for("ASCE 7-22", "NDS 2018 ASD")
-    assert form["site"].keys() <= data["site"].keys()
-    assert form["loads"].keys() | {"point", "case"} == data["loads"].keys()
-    assert form["point"].keys() == data["loads"]["point"][0].keys()
-    assert form["case"].keys() | {"loads", "points"} == data["loads"]["case"][0].keys()
-    assert form["grade"].keys() == data["grade"][0].keys()
-    assert form["timber"].keys() <= data["timber"].keys()
-    assert form["deflection"].keys() == data["deflection"].keys()
-    assert form["truss"].keys() <= data["truss"][0].keys()
-    job_from_mapping(data, "new.toml", Path())
+# --- the keys -------------------------------------------------------------------------------------------------------
 
 
 FORMS = [("ASCE 7-22", "NDS 2018 ASD"), ("ASCE 7-16", "NDS 2024 LRFD"), ("EN 1991", "EN 1995-1-1")]

@@ -195,3 +195,23 @@ def test_sheet_names_and_running_text():
     assert sheet_name("a" * 40, ["a" * 31]) == "a" * 27 + " (2)"
     assert running("A & B\nC" + "x" * 200).startswith("A && B C")
     assert len(running("x" * 200)) == 90
+
+
+def test_the_pitch_of_a_truss_is_written_in_the_manner_of_its_units(book, tmp_path):
+    """8/12 is 33.69 deg, 4/12 is 18.43 deg."""
+    job, designs = job_and_designs("metric")
+    sloping = replace(designs[2], spec=replace(designs[2].spec, bottom_pitch=4 / 12))
+    write_workbook(job, [sloping], tmp_path / "m.xlsx")
+    metric = openpyxl.load_workbook(tmp_path / "m.xlsx")
+    assert "   pitch 8/12   spacing" in book["T3"]["A2"].value
+    assert "   pitch 33.69 deg   bottom pitch 18.43 deg   spacing" in metric["T3"]["A2"].value
+
+
+def test_names_of_service_combinations_have_empty_columns_beside_them(book):
+    """So that no long one is cut off: up to the result there is nothing on their right."""
+    for row in table(book["T1"], "Deflections"):
+        filled = [cell.column for cell in row if cell.value is not None]
+        name = next(cell for cell in row if ": " in str(cell.value))
+        assert filled[-2:] == [name.column, 17]
+        assert row[16].value in ("met", "NOT met")
+        assert 17 - name.column >= 8

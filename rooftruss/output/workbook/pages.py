@@ -1,6 +1,7 @@
 """The sheets of the quote workbook, each written by one function."""
 
 from collections.abc import Sequence
+from math import atan, degrees
 
 from rooftruss.basis.job import Job
 from rooftruss.design.design import Design
@@ -26,7 +27,7 @@ from rooftruss.units import shown
 QUOTE_WIDTHS = (7, 8.5, 10, 7, 7, 8, 9, 15.5, 15.5, 15.5, 9, 9.5, 9.5, 10, 8.5, 8.5, 7, 17)
 TRUSS_WIDTHS = (11, 11, 8, 13.5, 7.5, 8.5, 5.5, 11.5, 5.5, 8.5, 5.5, 8.5, 5.5, 9.5, 5.5, 9, 24.5, 15.5, 9.5)
 REACTION_SLOTS = (1, 2, 5, 6, 7, 8, 9, 10, 11, 14, 15, 16, 17)
-DEFLECTION_SLOTS = (1, 2, 6, 8, 14, 15, 16, 17)
+DEFLECTION_SLOTS = (1, 2, 3, 4, 6, 7, 17, 8)  # the result last, so that the names of combinations have room
 LOADING_SLOTS = (1, 2, 5, 6, 8, 10, 12, 14, 17)
 NAMED_SLOTS = (1, 2, 12, 17)
 HEAD_ROWS = 5  # title, headings, units and a free row of a grid
@@ -118,16 +119,27 @@ def _facts(job: Job, design: Design) -> str:
         f"{spec.quantity} off",
         spec.shape,
         f"span {shown(spec.span, 'length', job.units)}",
-        f"pitch {12 * spec.pitch:.4g}/12",
+        f"pitch {_pitch(spec.pitch, job.units)}",
         f"spacing {shown(spec.spacing, 'size', job.units)}",
         f"overhang {shown(spec.overhang, 'size', job.units)}",
         f"bearing {shown(spec.bearing, 'size', job.units)}",
     ]
+    if spec.bottom_pitch is not None:
+        parts.insert(4, f"bottom pitch {_pitch(spec.bottom_pitch, job.units)}")
     if spec.heel_height is not None:
         parts.append(f"heel height {shown(spec.heel_height, 'size', job.units)}")
     if spec.plies > 1:
         parts.append(f"{spec.plies} plies")
     return "   ".join(parts)
+
+
+def _pitch(rise_over_run: float, units: str) -> str:
+    """Pitch as the trade of the job writes it.
+
+    >>> _pitch(0.5, "US"), _pitch(0.5, "metric")
+    ('6/12', '26.57 deg')
+    """
+    return f"{12 * rise_over_run:.4g}/12" if units == "US" else f"{degrees(atan(rise_over_run)):.4g} deg"
 
 
 def _result(design: Design) -> str:
@@ -149,7 +161,7 @@ def _drawing(page: Page, points: PointSheet, design: Design) -> None:
 def combinations_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbering) -> None:
     """Every combination of the job once."""
     grid = combinations_grid(numbering, designs)
-    wide = {"No.": 6, "Clause": 13, "Combination": 54, "Limit state": 22, "Load duration": 14, "Trusses": 14}
+    wide = {"No.": 6, "Clause": 18, "Combination": 54, "Limit state": 22, "Load duration": 14, "Trusses": 14}
     page.widths([wide.get(c.heading, 9) for c in grid.columns])
     page.line(grid.title, "title", 24)
     page.line(
