@@ -1,6 +1,7 @@
 """What the job gives: the choices an engineer has to review beside the numbers, in the job's units."""
 
 from collections.abc import Iterator, Sequence
+from math import atan
 
 from rooftruss.basis.job import Job
 from rooftruss.basis.jobkeys import Keys, form_for
@@ -26,7 +27,7 @@ def given_rows(job: Job, designs: Sequence[Design]) -> Iterator[Given]:
         yield design.spec.mark, _restraint(job, design)
         yield design.spec.mark, _timber(job, design, form["timber"], assumed)
         if float(design.run.family.size.bottom_pitch) > 0:
-            yield design.spec.mark, _bottom_pitch(design)
+            yield design.spec.mark, _bottom_pitch(job, design)
 
 
 def _text(keys: Keys, key: str, value: object, units: str) -> str:
@@ -56,7 +57,8 @@ def _timber(job: Job, design: Design, keys: Keys, assumed: set[str]) -> str:
     return ", ".join([*said, f"longest stock {shown(timber.longest_stock, 'length', job.units)}"])
 
 
-def _bottom_pitch(design: Design) -> str:
-    pitch = 12 * float(design.run.family.size.bottom_pitch)
+def _bottom_pitch(job: Job, design: Design) -> str:
+    rise = float(design.run.family.size.bottom_pitch)
+    pitch = f"{12 * rise:.4g}/12" if job.units == "US" else shown(atan(rise), "angle", job.units)
     given = "as the job gives it" if design.spec.bottom_pitch is not None else "half the roof pitch, the job gives none"
-    return f"bottom chord pitch {pitch:.4g}/12 ({given})"
+    return f"bottom chord pitch {pitch} ({given})"

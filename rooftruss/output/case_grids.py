@@ -123,7 +123,7 @@ def _loads(head: ActionCase, design: Design) -> Found:
         out[f"load on {place}", "pressure", ACTS[load.kind]] = float(load.pressure)
         for word, end in (("from", load.x_from), ("to", load.x_to)):
             if end is not None:
-                out[f"{word} x, {place}", "length", FROM_LEFT] = float(end)
+                out[f"{word} x, {place}", "length", FROM_LEFT] = round(float(end), 9)  # without the round-off
     points = list(_points(head, design))
     if not points and not head.loads:
         points += _stop(head, design)

@@ -177,7 +177,7 @@ def loading_grid(design: Design, numbering: Numbering) -> Grid:
     )
     cases = design.run.cases
     right, down = _totals(design, cases)
-    rows = tuple(
+    rows = sorted(
         (
             numbering.cases[head.name],
             head.name,
@@ -190,7 +190,7 @@ def loading_grid(design: Design, numbering: Numbering) -> Grid:
         )
         for k, head in enumerate(cases.heads)
     )
-    return Grid("Loading", columns, rows)
+    return Grid("Loading", columns, tuple(rows))
 
 
 def _totals(design: Design, cases: LoadCases) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
@@ -198,7 +198,8 @@ def _totals(design: Design, cases: LoadCases) -> tuple[NDArray[np.float64], NDAr
     total = np.einsum("csx,s->cx", cases.q, cases.x1 - cases.x0) + cases.nodal.sum(axis=-2)
     for p in cases.points:
         total[p.case] += (float(p.fx), float(p.fy))
-    return total[:, 0], -total[:, 1]
+    total = np.round(total, 6) + 0.0  # round-off is no force
+    return total[:, 0], 0.0 - total[:, 1]
 
 
 def _pressures(head: ActionCase) -> list[float]:

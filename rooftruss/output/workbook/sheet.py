@@ -164,7 +164,7 @@ class Page:
 
     def _height(self, texts: Sequence[tuple[str, float]]) -> None:
         """Make the current row high enough for texts in columns of these widths."""
-        lines = max((-(-len(text) // max(int(1.25 * width - 1), 1)) for text, width in texts), default=1)
+        lines = max((-(-len(text) // max(int(1.4 * width - 1), 1)) for text, width in texts), default=1)
         if lines > 1:
             self.sheet.row_dimensions[self.row].height = LINE_HEIGHT * lines + 1
 
