@@ -11,6 +11,7 @@ from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid, Measure
 from rooftruss.output.truss_grids import ACTS
 
+ROUND_OFF = 1e-9  # [m] less is zero
 ACTIONS = {"D": "dead", "L": "ceiling live", "Lr": "roof live", "S": "snow", "W": "wind", "A": "accidental"}
 SURFACES = ("left tail", "left slope", "right slope", "right tail", "ceiling", "self-weight")
 TOGETHER = {
@@ -123,7 +124,7 @@ def _loads(head: ActionCase, design: Design) -> Found:
         out[f"load on {place}", "pressure", ACTS[load.kind]] = float(load.pressure)
         for word, end in (("from", load.x_from), ("to", load.x_to)):
             if end is not None:
-                out[f"{word} x, {place}", "length", FROM_LEFT] = round(float(end), 9)  # without the round-off
+                out[f"{word} x, {place}", "length", FROM_LEFT] = float(end) if abs(end) > ROUND_OFF else 0.0
     points = list(_points(head, design))
     if not points and not head.loads:
         points += _stop(head, design)
