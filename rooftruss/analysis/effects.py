@@ -41,11 +41,12 @@ def unit_effects(truss: Truss, cases: LoadCases, solution: Solution) -> UnitEffe
     count = len(member)
     values = np.empty((*cases.q.shape[:-2], 5 * count))
     moment0, moment1, load, axial0, axial1 = (values[..., i * count : (i + 1) * count] for i in range(5))
-    shear_step, moment_step = across * run, across * (run**2 / 2)
+    axial_step, shear_step = along * run, across * run
+    moment_step = shear_step * (run / 2)
     load[...] = across
     at_start = (solution.end_forces[..., k][..., member] for k in range(3))
     axial0[...], shear0, moment0[...] = (sign * force for sign, force in zip((-1, 1, -1), at_start, strict=True))
-    axial1[...] = axial0 - along * run
+    axial1[...] = axial0 - axial_step
     moment1[...] = moment0 + shear0 * run + moment_step
     jumps = _jumps(truss, cases)
     _, rest = first_segments(cases.member_of)
@@ -56,8 +57,8 @@ def unit_effects(truss: Truss, cases: LoadCases, solution: Solution) -> UnitEffe
         for case, axial, shear in jumps.get(s, []):
             axial0[..., case, s] += axial
             shear0[..., case, s] += shear
-        axial1[..., s] = axial0[..., s] - (along * run)[..., s]
-        moment1[..., s] = moment0[..., s] + (shear0 * run + moment_step)[..., s]
+        axial1[..., s] = axial0[..., s] - axial_step[..., s]
+        moment1[..., s] = moment0[..., s] + shear0[..., s] * run[..., s] + moment_step[..., s]
     return UnitEffects(member_of=cases.member_of, members=truss.length.shape[-1], run=run[..., 0, :], values=values)
 
 

@@ -47,7 +47,8 @@ def solve(truss: Truss, stiffness_axial: Array, stiffness_bending: Array, cases:
     nodal = _flat(cases.nodal, batch, 3)
     on_member = _equivalent_forces(made, cases, length, direction, batch)
     load = _to_nodes(number, _rotate(on_member, direction, back=True))
-    load[..., number.of_node] += nodal
+    if np.any(nodal):
+        load[..., number.of_node] += nodal
     movement = np.zeros((*load.shape[:2], number.total + 1))
     movement[..., : number.free] = _factor_and_solve(made, _stiffness(made, ea, ei, length, direction), load)
     at_ends = np.stack([movement[..., column] for column in number.of_member.T])

@@ -24,7 +24,12 @@ CAUTIONS = (
 SHORT_CAUTIONS = (
     "A first estimate for pricing: a licensed engineer and the local building code decide what is built.",
     "Connections, bracing, handling and erection, anchors and foundations are not designed here.",
-    "Read the sheets Cautions and Assumptions of the workbook (`rooftruss quote`) before this quote is used.",
+    "Read the sheets Cautions and Assumptions before this quote is used.",
+)
+# a terminal has no sheets to read
+TERMINAL_CAUTIONS = (
+    *SHORT_CAUTIONS[:2],
+    "`rooftruss quote` writes all cautions and assumptions into the workbook: read them.",
 )
 
 MODEL_ASSUMPTIONS = (

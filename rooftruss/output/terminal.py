@@ -9,7 +9,7 @@ from rooftruss.basis.job import Job
 from rooftruss.design.compare import Alternative
 from rooftruss.design.design import Design
 from rooftruss.design.idle import idle_members
-from rooftruss.output.cautions import SHORT_CAUTIONS
+from rooftruss.output.cautions import TERMINAL_CAUTIONS
 from rooftruss.output.job_grids import comparison_grid, quote_grid
 from rooftruss.output.numbering import Numbering, numbering_of
 from rooftruss.output.schedule import MET, Grid, ShownColumn, ShownGrid, shown_grid, texts
@@ -81,7 +81,7 @@ def _print_failures(design: Design) -> None:
 
 def print_cautions() -> None:
     """The short cautions, on stderr."""
-    print("\n" + "\n".join(SHORT_CAUTIONS), file=sys.stderr)
+    print("\n" + "\n".join(TERMINAL_CAUTIONS), file=sys.stderr)
 
 
 def progress(mark: str) -> None:
