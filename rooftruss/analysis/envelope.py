@@ -60,9 +60,12 @@ def larger_of_signs(high: Peak, low: Peak) -> Peak:
 
 def reaction_envelope(reactions: Array) -> ReactionEnvelope:
     """Envelope of support forces (..., k, support, 2) on the truss [N], up positive."""
-    sideways, up = reactions[..., 0], reactions[..., 1]
+    forces = np.ascontiguousarray(np.moveaxis(reactions, -3, -1))  # (..., support, 2, k)
+    high, low = peak(np.maximum(forces, 0.0), -1), peak(np.maximum(-forces, 0.0), -1)
     return ReactionEnvelope(
-        down=peak(np.maximum(up, 0.0), -2),
-        uplift=peak(np.maximum(-up, 0.0), -2),
-        horizontal=larger_of_signs(peak(np.maximum(sideways, 0.0), -2), peak(np.maximum(-sideways, 0.0), -2)),
+        down=_part(high, 1), uplift=_part(low, 1), horizontal=larger_of_signs(_part(high, 0), _part(low, 0))
     )
+
+
+def _part(found: Peak, direction: int) -> Peak:
+    return Peak(value=found.value[..., direction], combination=found.combination[..., direction])

@@ -56,6 +56,7 @@ from rooftruss.units import GRAVITY, both
 
 Array = NDArray[np.float64]
 GROUPS = ("top chord", "bottom chord", "web")
+BREADTH, DEPTH = "breadth of a ply", "depth of the section"  # beside the properties of a timber standard
 
 
 @dataclass(frozen=True, slots=True)
@@ -351,18 +352,17 @@ def take_members(members: Members, rows: Sequence[int]) -> Members:
 def _members(family: Family, choice: Choice, truss: Truss) -> Members:
     """Sizes, restraint and timber properties of every member (..., m)."""
     made = family.topology
-    batch = truss.length.shape[:-1]
-    spread = _Spread(made, choice, batch)
+    batch = np.broadcast_shapes(truss.length.shape[:-1], *(i.shape for i in choice.index.values()))
     restraints = [family.spec.timber.groups[g].restraint for g in made.groups]
     across = restraint_lengths(truss.length, made.roles, restraints)
     per_length = [float(cast(float, read_table("timber/effective_length").where(role=r)["factor"])) for r in made.roles]
-    kinds = {g: [family.timber.properties(o.grade, o.section) for o in choice.options[g]] for g in GROUPS}
+    values = _spread(made, choice, batch, {g: [_numbers(family, o) for o in choice.options[g]] for g in GROUPS})
     shape = (*np.broadcast_shapes(batch, np.shape(family.size.plies)), len(made.members))
     return Members(
         names=made.names,
         roles=made.roles,
-        breadth=spread({g: [o.section.breadth for o in choice.options[g]] for g in GROUPS}),
-        depth=spread({g: [o.section.depth for o in choice.options[g]] for g in GROUPS}),
+        breadth=values.pop(BREADTH),
+        depth=values.pop(DEPTH),
         plies=np.broadcast_to(np.asarray(family.size.plies)[..., None], shape),
         length=truss.length,
         le_strong=truss.length * np.array(per_length),
@@ -370,7 +370,7 @@ def _members(family: Family, choice: Choice, truss: Truss) -> Members:
         lu_positive=across.lu_positive,
         lu_negative=across.lu_negative,
         load_sharing=np.array([load_sharing(family, r, x) for r, x in zip(made.roles, restraints, strict=True)]),
-        properties={n: spread({g: [k[n] for k in kinds[g]] for g in GROUPS}) for n in kinds["web"][0]},
+        properties=values,
     )
 
 
@@ -385,16 +385,19 @@ def load_sharing(family: Family, role: str, restraint: Restraint) -> bool:
     )
 
 
-class _Spread:
-    """Spreads one value per option of each group over the members of the batch."""
+def _numbers(family: Family, option: Option) -> dict[str, float]:
+    """Size of an option and its properties by the timber standard."""
+    size = {BREADTH: option.section.breadth, DEPTH: option.section.depth}
+    return {**size, **family.timber.properties(option.grade, option.section)}
 
-    def __init__(self, made: Topology, choice: Choice, batch: tuple[int, ...]) -> None:
-        self.made, self.choice = made, choice
-        self.batch = np.broadcast_shapes(batch, *(i.shape for i in choice.index.values()))
-        self.columns = {g: [k for k, x in enumerate(made.groups) if x == g] for g in GROUPS}
 
-    def __call__(self, values: Mapping[str, Sequence[float]]) -> Array:
-        out = np.empty((*self.batch, len(self.made.members)))
-        for group, columns in self.columns.items():
-            out[..., columns] = self.choice.column(group, values[group])[..., None]
-        return out
+def _spread(
+    made: Topology, choice: Choice, batch: tuple[int, ...], numbers: Mapping[str, Sequence[Mapping[str, float]]]
+) -> dict[str, Array]:
+    """Numbers of the options taken, spread from the groups over the members: name -> (..., m)."""
+    names = list(numbers["web"][0])
+    out = np.empty((len(names), *batch, len(made.members)))
+    for group in GROUPS:
+        table = np.array([[kind[name] for kind in numbers[group]] for name in names])
+        out[..., [g == group for g in made.groups]] = table[:, choice.index[group]][..., None]
+    return dict(zip(names, out, strict=True))
