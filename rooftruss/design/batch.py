@@ -19,7 +19,8 @@ from rooftruss.basis.job import Job, LoadSpec, TrussSpec
 from rooftruss.basis.schemes import Scheme, load_scheme
 from rooftruss.basis.sections import find_section
 from rooftruss.design.design import LIMIT, Outcome, outcome_of
-from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, run
+from rooftruss.design.family import GROUPS, Choice, Family, Option, family_of
+from rooftruss.design.stages import run
 from rooftruss.errors import JobError
 from rooftruss.loads.actions import AreaLoads
 from rooftruss.shapes.forming import Dimensions, layout_of

@@ -8,8 +8,9 @@ from numpy.typing import NDArray
 
 from rooftruss.analysis.envelope import Envelope, Peak, ReactionEnvelope, peak, reaction_envelope
 from rooftruss.basis.job import TrussSpec
+from rooftruss.design.family import GROUPS, Option
 from rooftruss.design.serviceability import Deflections, deflections
-from rooftruss.design.stages import GROUPS, Option, Run
+from rooftruss.design.stages import Run
 from rooftruss.units import shown
 
 Array = NDArray[np.float64]

@@ -10,7 +10,8 @@ from numpy.typing import NDArray
 
 from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.design.design import LIMIT, Design, Outcome, outcome_of
-from rooftruss.design.stages import GROUPS, Choice, Family, Option, family_of, options_of, run, unbatched
+from rooftruss.design.family import GROUPS, Choice, Family, Option, family_of, options_of, unbatched
+from rooftruss.design.stages import run
 from rooftruss.shapes.forming import LEAST_HEEL, form, heel_offset
 from rooftruss.units import shown
 

@@ -7,7 +7,7 @@ from rooftruss.basis.job import Job
 from rooftruss.basis.jobkeys import Keys, form_for
 from rooftruss.basis.kinds import Quantity
 from rooftruss.design.design import Design
-from rooftruss.design.stages import GROUPS
+from rooftruss.design.family import GROUPS
 from rooftruss.units import SYSTEMS, shown
 
 Given = tuple[str, str]  # where it stands in the job file, what it says

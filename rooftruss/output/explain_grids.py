@@ -6,7 +6,8 @@ import numpy as np
 
 from rooftruss.design.case_values import case_values
 from rooftruss.design.design import Design
-from rooftruss.design.stages import bearing_members, durations_of, take_members
+from rooftruss.design.members import take_members
+from rooftruss.design.stages import bearing_members, durations_of
 from rooftruss.errors import JobError, nearest
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid, Measure

@@ -8,7 +8,7 @@ import numpy as np
 from rooftruss.basis.job import Job
 from rooftruss.design.compare import Alternative
 from rooftruss.design.design import Design
-from rooftruss.design.stages import GROUPS
+from rooftruss.design.family import GROUPS
 from rooftruss.output.basis_grids import given_rows
 from rooftruss.output.cautions import CAUTIONS, MODEL_ASSUMPTIONS
 from rooftruss.output.numbering import Numbering

@@ -7,7 +7,7 @@ from numpy.typing import NDArray
 
 from rooftruss.analysis.envelope import Peak
 from rooftruss.design.design import LIMIT, Design
-from rooftruss.design.stages import GROUPS
+from rooftruss.design.family import GROUPS
 from rooftruss.loads.cases import LoadCases
 from rooftruss.loads.roof import ActionCase
 from rooftruss.output.numbering import Numbering

@@ -36,7 +36,7 @@ def test_the_python_of_the_readme_runs(monkeypatch, capsys):
     exec(compile(code, "README.md", "exec"), {})
     out = capsys.readouterr().out
     assert "governing" in out
-    assert "C_P" in out
+    assert "utilisation" in out
 
 
 @pytest.mark.parametrize("library", ["rich", "hypothesis", "sympy", "defusedxml"])

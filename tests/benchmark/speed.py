@@ -23,7 +23,8 @@ import numpy as np
 from rooftruss.analysis.frame import stiffness_matrix
 from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.design.batch import Sizes, check_many
-from rooftruss.design.stages import combinations_of, family_of, run
+from rooftruss.design.family import family_of
+from rooftruss.design.stages import combinations_of, run
 from tests.benchmark import obvious
 from tests.benchmark.trusses import DEMO_JOBS, SIZES, choice, finks, house, single_run
 from tests.en_jobs import EN_SIZES, barn

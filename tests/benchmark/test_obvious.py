@@ -6,7 +6,8 @@ import numpy as np
 import pytest
 
 from rooftruss.basis.job import Restraint, TrussSpec
-from rooftruss.design.stages import family_of, run, unbatched
+from rooftruss.design.family import family_of, unbatched
+from rooftruss.design.stages import run
 from tests.benchmark.obvious import utilisations
 from tests.benchmark.trusses import choice, finks, house
 

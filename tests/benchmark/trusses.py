@@ -11,7 +11,8 @@ from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.basis.jobform import read_job
 from rooftruss.basis.sections import find_section
 from rooftruss.design.batch import Sizes
-from rooftruss.design.stages import Choice, Option, Run, family_of, run, unbatched
+from rooftruss.design.family import Choice, Option, family_of, unbatched
+from rooftruss.design.stages import Run, run
 
 DEMO_JOBS = sorted((Path(__file__).parents[2] / "demo_jobs").glob("*.toml"))
 SIZES: Sizes = {

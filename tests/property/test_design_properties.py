@@ -13,7 +13,8 @@ from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.basis.sections import find_section
 from rooftruss.design.batch import Report, check_many
 from rooftruss.design.design import Outcome, outcome_of
-from rooftruss.design.stages import Choice, Option, Run, family_of, run, unbatched
+from rooftruss.design.family import Choice, Option, family_of, unbatched
+from rooftruss.design.stages import Run, run
 from rooftruss.shapes.webbing import SHAPES
 from tests.jobs import SIZES, at_site, calm, house, spec
 from tests.strategies import numbers

@@ -12,7 +12,8 @@ import rooftruss
 from rooftruss.basis.grades import Grade, user_grade
 from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.basis.sections import find_section
-from rooftruss.design.stages import GROUPS, Choice, Option, Run, family_of, run, unbatched
+from rooftruss.design.family import GROUPS, Choice, Option, family_of, unbatched
+from rooftruss.design.stages import Run, run
 from rooftruss.shapes.webbing import SHAPES
 from tests.en_jobs import barn
 from tests.jobs import house, spec

@@ -13,7 +13,8 @@ from rooftruss.basis.sections import find_section
 from rooftruss.design import batch
 from rooftruss.design.batch import Report, check_many
 from rooftruss.design.design import outcome_of
-from rooftruss.design.stages import Choice, Option, family_of, run, unbatched
+from rooftruss.design.family import Choice, Option, family_of, unbatched
+from rooftruss.design.stages import run
 from rooftruss.errors import JobError
 from tests.jobs import SIZES, house, spec
 

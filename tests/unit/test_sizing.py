@@ -10,8 +10,8 @@ from rooftruss.basis.job import GroupTimber, TrussSpec
 from rooftruss.design.batch import check_many
 from rooftruss.design.compare import alternatives, compare_shapes
 from rooftruss.design.design import LIMIT, Design
+from rooftruss.design.family import GROUPS, options_of
 from rooftruss.design.sizing import size_truss
-from rooftruss.design.stages import GROUPS, options_of
 from rooftruss.errors import JobError
 from rooftruss.shapes.webbing import SHAPES
 from tests.jobs import house, spec
