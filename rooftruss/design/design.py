@@ -115,9 +115,15 @@ class Design:
         return out
 
     def _failed_deflections(self) -> list[tuple[float, str]]:
-        found = self.outcome.deflection
+        found, units = self.outcome.deflection, self.run.family.job.units
         return [
-            (float(r), f"{p.direction} deflection at {p.name}: {float(r):.2f} of its limit, {self.combination(int(c))}")
-            for p, r, c in zip(found.places, found.ratio, found.combination, strict=True)
+            (
+                float(r),
+                f"{p.direction} deflection at {p.name}: {shown(abs(float(v)), 'deflection', units)} of "
+                f"{shown(float(w), 'deflection', units)}, {float(r):.2f} of its limit, {self.combination(int(c))}",
+            )
+            for p, v, w, r, c in zip(
+                found.places, found.value, found.limit, found.ratio, found.combination, strict=True
+            )
             if r > LIMIT
         ]

@@ -9,6 +9,7 @@ from rooftruss.analysis.effects import mid_deflections
 from rooftruss.design.stages import Run
 
 Array = NDArray[np.float64]
+NO_CEILING = "none"  # row of the deflection limits for tail ends: no ceiling hangs there
 SAME_PLACE = 1e-6  # [m]
 
 
@@ -81,10 +82,22 @@ def _reach(run: Run, places: tuple[Place, ...]) -> Array:
     return np.where(beyond > SAME_PLACE, 2 * beyond, between)
 
 
+def _tail_ends(run: Run, places: tuple[Place, ...]) -> set[int]:
+    """Numbers of the places that are ends of tails: joints of no other member."""
+    made = run.family.topology
+    tails = {n for m in made.members if m.role == "tail" for n in (m.start, m.end)}
+    tips = tails - {n for m in made.members if m.role != "tail" for n in (m.start, m.end)}
+    return {k for k, p in enumerate(places) if p.kind == "node" and p.number in tips}
+
+
 def deflections(run: Run) -> Deflections:
-    """Deflections of all places under all service combinations against the limit of each combination's kind."""
+    """Deflections of all places under all service combinations against the limit of each combination's kind.
+
+    The ceiling of the job decides on the limits, but for the ends of tails, under which none hangs.
+    """
     places = places_of(run)
     unit, reach = _unit(run, places), _reach(run, places)
+    ceiling, tips = run.family.job.limits.ceiling, _tail_ends(run, places)
     sideways = np.array([p.direction == "horizontal" for p in places])
     service = np.flatnonzero(~run.combinations.strength)
     kinds = [run.combinations.kinds[k] for k in service]
@@ -93,8 +106,9 @@ def deflections(run: Run) -> Deflections:
         run.combinations.factors[service], actions=actions, kinds=tuple(kinds), lasting=dict(run.family.scheme.lasting)
     )
     value = np.matmul(factors, unit)
-    divisor = np.array([run.family.timber.deflection_ratio(run.family.job.limits.ceiling, kind) for kind in kinds])
-    limit = reach[..., None, :] / divisor[:, None]
+    ratios = {c: [run.family.timber.deflection_ratio(c, kind) for kind in kinds] for c in {ceiling, NO_CEILING}}
+    divisor = np.array([ratios[NO_CEILING if k in tips else ceiling] for k in range(len(places))]).T
+    limit = reach[..., None, :] / divisor
     limit = np.where(sideways, run.family.job.limits.horizontal, limit)
     ratio = np.abs(value) / limit
     worst = ratio.argmax(axis=-2)

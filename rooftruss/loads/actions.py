@@ -87,6 +87,11 @@ def _asce7(edition: str) -> LoadStandard:
 
 
 def _en1991(roof: Roof, loads: AreaLoads, site: Site, truss: Truss) -> list[ActionCase]:
+    height = site.get("building_height")
+    if isinstance(height, float) and np.any(height < roof.rise):
+        raise JobError(
+            "[site] building_height is less than the rise of the roof; measure it from the ground to the ridge"
+        )
     return [
         *imposed_en1991.loft_cases(loads.ceiling_live),
         *imposed_en1991.roof_live_cases(roof, loads.roof_live),

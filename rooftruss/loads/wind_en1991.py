@@ -30,6 +30,7 @@ SURFACES = {  # from the windward eave to the leeward eave
     "left": ("left tail", "left slope", "right slope", "right tail"),
     "right": ("right tail", "right slope", "left slope", "left tail"),
 }
+LINES = {"interior": ("H", "I"), "edge": ("F", "H"), "both": ("F", "H", "I")}  # zones met by wind along the ridge
 INTERNAL = (("+i", "c_pi_over"), ("-i", "c_pi_under"))  # overpressure, underpressure inside
 TERRAINS = ("0", "I", "II", "III", "IV")
 NEGLIGIBLE = 1e-9  # [m] no strip
@@ -48,7 +49,8 @@ class _Wind:
     height: float
     length: float  # of the building along the ridge
     area: Array  # loaded area
-    edge: bool  # the truss stands within e/4 of a gable
+    line: str  # "interior", "edge" (next to a gable) or "both"
+    c_pi: tuple[float, ...]  # overpressure and underpressure inside
     values: tuple[Value, ...]
 
     def internal(self, c_pi: float) -> Array:
@@ -89,8 +91,9 @@ def wind_cases(roof: Roof, site: Site) -> list[ActionCase]:
 
     Site keys: basic_wind_velocity v_b,0 [m/s], direction_factor, season_factor, terrain, orography_factor, air_density,
     building_height (to the ridge) [m], building_length [m], national_choices; optional peak_velocity_pressure q_p [Pa],
-    in the place of what follows from the first six; wind_loaded_area [m2], else the roof area of one truss; truss_line
-    "interior" or "edge" (within e/4 of a gable: zones F and G). Raises JobError for a missing value, OutOfScopeError
+    in the place of what follows from the first six; wind_loaded_area [m2], else the roof area of one truss; c_pi_over and
+    c_pi_under, else 7.2.9(6) note 2; truss_line "interior", "edge" (next to a gable: zones F and G) or "both" (a mark
+    that stands in either). Raises JobError for a missing value, OutOfScopeError
     with the clause for a building of 15 m or more, a slope over 75 deg and an annex with its own wind profile.
     """
     velocity = number(site, "basic_wind_velocity", "EN 1991-1-4, 4.2")
@@ -123,9 +126,16 @@ def _wind(roof: Roof, site: Site) -> _Wind:
         height=height,
         length=number(site, "building_length", "EN 1991-1-4, 7.2.5"),
         area=area,
-        edge=site.get("truss_line", "interior") == "edge",
+        line=str(site.get("truss_line") or "interior"),
+        c_pi=tuple(_internal(site, key) for _, key in INTERNAL),
         values=(*values, Value(symbol="A", value=area, kind="roof area", clause="EN 1991-1-4, 7.2.1(1)")),
     )
+
+
+def _internal(site: Site, key: str) -> float:
+    """Internal coefficient of the site, the one of 7.2.9(6) note 2 (no dominant opening) where it gives none."""
+    given = optional_number(site, key)
+    return constant(key) if given is None else given
 
 
 def _velocity_pressure(site: Site, height: float) -> tuple[float, tuple[Value, ...]]:
@@ -168,7 +178,7 @@ def _across(wind: _Wind, side: str) -> Iterator[_Pattern]:
 def _duopitch_across(wind: _Wind, side: str, lines: tuple[str, str], here: Flags) -> _Pattern:
     """Zones G (or F), H, J, I from the windward eave on; EN 1991-1-4, Fig. 7.8b) and Table 7.4a."""
     half, edge = wind.width / 2, np.minimum(_e_across(wind) / 10, wind.width / 2)
-    zones = ("F" if wind.edge else "G", "H", "J", "I")
+    zones = ("F" if wind.line != "interior" else "G", "H", "J", "I")
     slope = np.where(here, wind.slope, constant("flattest"))
     line_of = (lines[0], lines[0], lines[1], lines[1])
     return _Pattern(
@@ -186,7 +196,7 @@ def _duopitch_across(wind: _Wind, side: str, lines: tuple[str, str], here: Flags
 def _flat_across(wind: _Wind, side: str, line: str, here: Flags) -> _Pattern:
     """Zones G (or F), H, I from the windward eave on, I of either sign; EN 1991-1-4, Fig. 7.6 and Table 7.2."""
     e = _e_across(wind)
-    zones = ("F" if wind.edge else "G", "H", "I")
+    zones = ("F" if wind.line != "interior" else "G", "H", "I")
     return _Pattern(
         name=f"wind from the {side}, flat roof, {line} in zone I",
         short=f"{side} flat {line[0]}",
@@ -215,7 +225,7 @@ def _along(wind: _Wind) -> Iterator[_Pattern]:
     e = np.minimum(wind.span, 2 * wind.height)
     reach = {"F": e > 0, "H": e > 0, "I": wind.length > e / 2}
     flat = wind.slope < constant("flattest")
-    for zone in ("F", "H") if wind.edge else ("H", "I"):
+    for zone in LINES[wind.line]:
         if np.any(reach[zone]):
             yield _along_pattern(wind, zone, e, "suction", reach[zone])
         if zone == "I" and np.any(reach[zone] & flat):
@@ -254,8 +264,7 @@ def _wall_along(wind: _Wind, zone: str, e: Array) -> Array:
 
 def _cases(wind: _Wind, pattern: _Pattern) -> Iterator[ActionCase]:
     """The case of a pattern with internal overpressure and the one with underpressure."""
-    for short, key in INTERNAL:
-        c_pi = constant(key)
+    for (short, _), c_pi in zip(INTERNAL, wind.c_pi, strict=True):
         values = [
             Value(symbol=f"c_pe, {z}", value=c, kind="ratio", clause="EN 1991-1-4, Tables 7.2 and 7.4")
             for z, c in dict(zip(pattern.zones, pattern.c_pe, strict=True)).items()
@@ -267,7 +276,7 @@ def _cases(wind: _Wind, pattern: _Pattern) -> Iterator[ActionCase]:
         ]
         values.append(Value(symbol="c_pi", value=c_pi, kind="ratio", clause="EN 1991-1-4, 7.2.9(6)"))
         yield ActionCase(
-            name=f"{pattern.name}, c_pi {c_pi:+.1f}",
+            name=f"{pattern.name}, c_pi {c_pi:+.2g}",
             short=f"{pattern.short}, {short}",
             action="W",
             pattern="",
