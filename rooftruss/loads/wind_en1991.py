@@ -87,14 +87,14 @@ def wind_cases(roof: Roof, site: Site) -> list[ActionCase]:
     Wind across the ridge from the left and from the right: all zones of the windward slope at their smaller or larger
     values with all of the leeward slope at theirs (four patterns up to 45 deg, one above: 7.2.5, note 1 to Table 7.4a;
     two under 5 deg: 7.2.3). Wind along the ridge: a truss in zone H and one in zone I. Each with internal overpressure
-    and underpressure (7.2.9(6), openings not assessed).
+    and underpressure (7.2.9).
 
     Site keys: basic_wind_velocity v_b,0 [m/s], direction_factor, season_factor, terrain, orography_factor, air_density,
     building_height (to the ridge) [m], building_length [m], national_choices; optional peak_velocity_pressure q_p [Pa],
-    in the place of what follows from the first six; wind_loaded_area [m2], else the roof area of one truss; c_pi_over and
-    c_pi_under, else 7.2.9(6) note 2; truss_line "interior", "edge" (next to a gable: zones F and G) or "both" (a mark
-    that stands in either). Raises JobError for a missing value, OutOfScopeError
-    with the clause for a building of 15 m or more, a slope over 75 deg and an annex with its own wind profile.
+    in the place of what follows from the first six; wind_loaded_area [m2], else the roof area of one truss; c_pi_over
+    and c_pi_under, else 7.2.9(6) note 2; truss_line "interior", "edge" (next to a gable: zones F and G) or "both" (a
+    mark that stands in either). Raises JobError for a missing value, OutOfScopeError with the clause for a building of
+    15 m or more, a slope over 75 deg and an annex with its own wind profile.
     """
     velocity = number(site, "basic_wind_velocity", "EN 1991-1-4, 4.2")
     if velocity == 0.0 and not optional_number(site, "peak_velocity_pressure"):

@@ -120,7 +120,7 @@ def deflection_ratio(ceiling: str, kind: str) -> float:
     """Length over the largest deflection [-]; EN 1995-1-1, Table 7.2. Raises JobError for an unknown ceiling or kind.
 
     >>> deflection_ratio("plaster", "final")
-    300.0
+    350.0
     """
     table = _table("deflection_limits")
     kinds = [c for c in table.columns if c not in ("ceiling", "source")]

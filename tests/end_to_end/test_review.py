@@ -104,3 +104,23 @@ def test_the_edition_of_the_timber_standard_is_a_choice(tmp_path, capsys):
     assert design.run.family.timber.name == "NDS 2024 ASD"
     assert main(["explain", str(path), "T1", "top 1"]) == 0
     assert "NDS 2024 eq. 3.7-1" in capsys.readouterr().out
+
+
+def test_a_building_lower_than_its_roof_is_refused(tmp_path, capsys):
+    job = tmp_path / "low.toml"
+    text = (HOUSE.parent / "birch_lane_barn.toml").read_text("utf-8")
+    job.write_text(text.replace('building_height = "6 m"', 'building_height = "2 m"'), "utf-8")
+    assert main(["quote", str(job), "-o", str(tmp_path / "q.xlsx")]) == 2
+    assert "building_height is less than the rise of the roof" in capsys.readouterr().err
+
+
+def test_no_ceiling_hangs_under_a_tail(tmp_path):
+    """IBC Table 1604.3: 180/180/120 where no ceiling hangs, whatever the ceiling of the room inside."""
+    plaster = ("[timber]\ntop_chord", '[deflection]\nceiling = "plaster"\n\n[timber]\ntop_chord')
+    found = run_file(changed_house(tmp_path / "job.toml", plaster)).designs[0].outcome.deflection
+    limits = {p.name: float(w) for p, w in zip(found.places, found.limit, strict=True)}
+    overhang = (16 + 1.75) * 0.0254
+    assert 2 * overhang / limits["H"] in [pytest.approx(n) for n in (120, 180)]
+    assert (28 * 12 - 3.5) * 0.0254 / limits["mid top 1" if "mid top 1" in limits else "top 1"] in [
+        pytest.approx(n) for n in (240, 360)
+    ]

@@ -61,7 +61,7 @@ def test_a_batch_is_its_trusses_one_by_one(many, country):
 
 
 @few
-@given(st.lists(st.tuples(numbers(5.0, 11.0), numbers(0.05, 1.6)), min_size=3, max_size=6))
+@given(st.lists(st.tuples(numbers(5.0, 7.4), numbers(0.05, 1.6)), min_size=3, max_size=6))
 def test_one_layout_in_many_pitches_is_its_trusses_one_by_one(sizes):
     """Pitches on both sides of 5, 45 and 58 deg share one set of wind cases."""
     specs = [en_spec(mark=f"B{k}", panels=4, span=span, pitch=pitch) for k, (span, pitch) in enumerate(sizes)]

@@ -288,3 +288,23 @@ def test_countries_with_their_own_profile_need_q_p(country):
 def test_an_unknown_terrain_is_told_the_known_ones():
     with pytest.raises(JobError, match=r"terrain: 'C' is not in EN 1991-1-4, Table 4\.1"):
         wind_cases(gable(), SITE | {"terrain": "C"})
+
+
+def test_a_mark_that_stands_anywhere_meets_the_zones_of_both_places():
+    both, edge, inner = (
+        {c.short: c for c in wind_cases(gable(), SITE | {"truss_line": line})} for line in ("both", "edge", "interior")
+    )
+    assert {s for s in both if s.startswith("along")} == {s for s in (*edge, *inner) if s.startswith("along")}
+    assert any(v.symbol == "c_pe, F" for v in both["left s/s, +i"].values)
+
+
+def test_internal_pressure_of_a_building_with_large_openings_is_the_jobs_to_give():
+    # EN 1991-1-4, 7.2.9(5): c_pi = 0.75 c_pe at a dominant face; with c_pe = +0.7 to +0.8, about +0.6
+    usual, open_ = (
+        {c.short: c for c in wind_cases(gable(), SITE | {"peak_velocity_pressure": 1000.0} | given)}
+        for given in ({}, {"c_pi_over": 0.6, "c_pi_under": -0.4})
+    )
+    for short, change in (("along H, +i", -0.4), ("along H, -i", 0.1)):
+        a, b = (next(x for x in found[short].loads if x.surface == "left slope") for found in (usual, open_))
+        assert float(b.pressure - a.pressure) / 1000.0 == pytest.approx(change)
+    assert len({c.name for c in open_.values()}) == len(open_)

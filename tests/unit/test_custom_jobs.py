@@ -95,7 +95,7 @@ def test_a_cantilever_beyond_its_bearing_is_limited_by_twice_its_length():
     assert effects_agree(made)
     found = made.outcome.deflection
     tip = [p.name for p in found.places].index("T")
-    assert 2 * (1 + 1.75 / 12) * FOOT / float(found.limit[tip]) in [pytest.approx(n) for n in (180, 240)]
+    assert 2 * (1 + 1.75 / 12) * FOOT / float(found.limit[tip]) in [pytest.approx(n) for n in (120, 180)]  # no ceiling
 
 
 def test_a_shed_roof_runs_where_neither_snow_nor_wind_acts():

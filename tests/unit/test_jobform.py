@@ -441,7 +441,8 @@ def test_the_site_of_a_eurocode_job_in_si():
     assert (values["ground_snow"], values["altitude"], values["basic_wind_velocity"]) == (1500.0, 350.0, 26.0)
     assert (values["exposure_coefficient"], values["thermal_coefficient"], values["air_density"]) == (1.0, 1.0, 1.25)
     assert (values["snow_guards"], values["terrain"], values["national_choices"]) == (False, "II", "recommended")
-    assert (values["exceptional_snow"], values["wind_loaded_area"], values["truss_line"]) == (None, None, "interior")
+    assert (values["exceptional_snow"], values["wind_loaded_area"], values["truss_line"]) == (None, None, "both")
+    assert (values["c_pi_over"], values["c_pi_under"]) == (0.2, -0.3)
     assert Assumption(
         place="[site] thermal_coefficient", text="thermal coefficient of snow C_t = 1.0 (EN 1991-1-3, 5.2(8))"
     ) in list(reader.assumptions)
