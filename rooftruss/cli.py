@@ -4,6 +4,7 @@ Exit code 0: done; 1: done, and some truss does not meet a check; 2: the input i
 """
 
 import argparse
+import gc
 import sys
 from collections.abc import Callable, Sequence
 from io import TextIOWrapper
@@ -19,6 +20,7 @@ if TYPE_CHECKING:
     from rooftruss.run import Result
 
 DONE, NOT_MET, WRONG_INPUT = 0, 1, 2
+FEW_COLLECTIONS = 200_000  # a workbook is many objects and no cycles: looking for those takes a twentieth of a quote
 LIKE_KEYS = (  # options of `size` that stand for keys of [[truss]]: key, example
     ("shape", "fink"),
     ("span", '"28 ft"'),
@@ -96,6 +98,7 @@ def _quote_arguments(command: argparse.ArgumentParser) -> None:
 
 
 def _quote(given: argparse.Namespace) -> int:
+    gc.set_threshold(FEW_COLLECTIONS)
     from rooftruss.output.terminal import print_cautions, print_quote, progress
     from rooftruss.output.workbook.book import write_workbook
     from rooftruss.run import run_file
