@@ -33,7 +33,7 @@ def trusses(draw: st.DrawFn) -> TrussSpec:
     return en_spec(
         shape=shape,
         span=draw(numbers(4.0, 11.0)),
-        pitch=draw(numbers(0.2, 1.3)),
+        pitch=draw(numbers(0.2, 1.05)),  # the barn is 6 m high: its roof cannot rise more
         bottom_pitch=0.15 if SHAPES[shape].sloping_bottom else None,
         overhang=draw(st.sampled_from([0.0, 0.3, 0.6])),
         panels=draw(st.sampled_from(SHAPES[shape].panel_counts)),
