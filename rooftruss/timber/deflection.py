@@ -1,7 +1,5 @@
 """Deflection limits of roof members and growth of deflection under lasting load."""
 
-from collections.abc import Sequence
-
 import numpy as np
 from numpy.typing import ArrayLike
 
@@ -45,12 +43,6 @@ def final_deflection(lasting: ArrayLike, passing: ArrayLike, creep: Creep) -> Ar
     0.8
     """
     return (1 + creep.coefficient) * np.asarray(lasting, dtype=np.float64) + np.asarray(passing, dtype=np.float64)
-
-
-def with_creep(factors: Array, actions: Sequence[str], kinds: Sequence[str], creep: Creep) -> Array:
-    """Factors (k, c) of service combinations with the growth of lasting load: dead load in those of kind "total"."""
-    lasting = np.outer([kind == "total" for kind in kinds], [action == "D" for action in actions])
-    return np.asarray(factors * np.where(lasting, 1 + creep.coefficient, 1.0))
 
 
 def creep_and_live_deflection(lasting: ArrayLike, passing: ArrayLike, creep: Creep) -> Array:
