@@ -1,6 +1,7 @@
 """Members, demands and durations for tests of timber checks, in inches and pounds as the published examples are."""
 
 from collections.abc import Mapping, Sequence
+from dataclasses import fields
 
 import numpy as np
 
@@ -8,7 +9,7 @@ from rooftruss.basis.grades import find_grade, user_grade
 from rooftruss.basis.sections import Section, find_section
 from rooftruss.timber.check import standard
 from rooftruss.timber.nds import Nds
-from rooftruss.timber.terms import Demand, Durations, Members
+from rooftruss.timber.terms import Checks, Demand, Durations, Members
 from rooftruss.units import INCH, POUND_FORCE, PSI
 
 OPTIONS = {"moisture": "dry", "temperature": "normal", "incised": False, "buckling_stiffness": False}
@@ -79,3 +80,13 @@ def demand(*rows: Mapping[str, float]) -> Demand:
 def durations(*names: str, time_effect: Sequence[float] | None = None) -> Durations:
     effects = np.full(len(names), np.nan) if time_effect is None else np.array(time_effect, dtype=float)
     return Durations(names=names, time_effect=effects)
+
+
+def each_combination(code, made: Members, load: Demand, lasting: Durations) -> list[Checks]:
+    """The checks of each combination by itself: what governs it is then the rule of that combination."""
+    out = []
+    for k, name in enumerate(lasting.names):
+        parts = {f.name: getattr(load, f.name) for f in fields(Demand)}
+        one = Demand(**{n: None if v is None else v[..., k : k + 1, :] for n, v in parts.items()})
+        out.append(code.check(made, one, Durations(names=(name,), time_effect=lasting.time_effect[k : k + 1])))
+    return out

@@ -11,7 +11,7 @@ from functools import cache
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.analysis.frame import pin_jointed, solve
+from rooftruss.analysis.frame import Solution, pin_jointed, solve
 from rooftruss.loads.cases import LoadCases
 from rooftruss.shapes.truss import Support, Topology, Truss
 
@@ -123,14 +123,25 @@ def pin_jointed_axial(truss: Truss, ea: Array, cases: LoadCases) -> Array:
     ea (..., m) [N] matters only where the truss is statically indeterminate.
     Raises UnstableTrussError when the pin-jointed truss is a mechanism.
     """
-    part = triangulation(truss.topology)
+    return joint_forces(truss, ea, joint_loads(truss, cases), cases).end_forces[..., 3]
+
+
+def joint_forces(truss: Truss, ea: Array, loads: Array, like: LoadCases) -> Solution:
+    """The pin-jointed truss under `loads` (..., c, node, 2) [N] at its joints in every case of `like`.
+
+    Members and joints are numbered as in `truss`; nothing is kept of tails and their tips, whose loads must be 0.
+    Raises UnstableTrussError when the pin-jointed truss is a mechanism.
+    """
+    part, made = triangulation(truss.topology), truss.topology
+    members, nodes = list(part.members), list(part.nodes)
     inner = _part(truss)
-    loads = joint_loads(truss, cases)
-    stiffness = np.asarray(ea)[..., list(part.members)]
-    solution = solve(inner, stiffness, 0.0 * stiffness, nodal_cases(inner, loads[..., list(part.nodes), :], cases))
-    out = np.zeros((*loads.shape[:-2], len(truss.topology.members)))
-    out[..., list(part.members)] = solution.end_forces[..., 3]
-    return out
+    stiffness = np.asarray(ea)[..., members]
+    found = solve(inner, stiffness, 0.0 * stiffness, nodal_cases(inner, loads[..., nodes, :], like))
+    forces = np.zeros((*found.end_forces.shape[:-2], len(made.members), 6))
+    forces[..., members, :] = found.end_forces
+    moved = np.zeros((*found.displacements.shape[:-2], len(made.nodes), 2))
+    moved[..., nodes, :] = found.displacements
+    return Solution(displacements=moved, end_forces=forces, reactions=found.reactions)
 
 
 def nodal_cases(truss: Truss, loads: Array, like: LoadCases) -> LoadCases:

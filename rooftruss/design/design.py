@@ -44,15 +44,12 @@ class Outcome:
 
 def outcome_of(run: Run) -> Outcome:
     """Envelopes and governing checks of a run."""
-    utilisation = peak(run.checks.utilisation, -2)
-    row = np.maximum(utilisation.combination, 0)
-    rule = np.take_along_axis(run.checks.rule, row[..., None, :], -2).squeeze(-2)
     solid = run.members.breadth * run.members.depth * run.members.plies * run.members.length
     return Outcome(
         envelope=run.envelope,
         reactions=reaction_envelope(run.reactions),
-        utilisation=utilisation,
-        rule=rule,
+        utilisation=run.checks.governing,
+        rule=run.checks.rule,
         bearing=peak(run.bearing, -2),
         deflection=deflections(run),
         volume=solid.sum(axis=-1),

@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.design.design import LIMIT, Design, Outcome, outcome_of
 from rooftruss.design.family import GROUPS, Choice, Family, Option, family_of, options_of, unbatched
+from rooftruss.design.profile import deepest_chord
 from rooftruss.design.stages import run
 from rooftruss.shapes.forming import LEAST_HEEL, form, heel_offset
 from rooftruss.units import shown
@@ -28,34 +29,71 @@ def size_truss(job: Job, spec: TrussSpec) -> Design:
     """
     family = unbatched(family_of(job, [spec]))
     options = options_of(spec)
-    rows = _candidates(family, options)
-    low = _low_heel(family, options, len(rows))
+    rows, low = _with_room(family, options, _every(options))
+    rows, deep = _with_profile(family, options, rows)
+    rows, notes = _by_volume(family, options, rows), (*low, *deep)
     nearest: tuple[tuple[float, float], NDArray[np.intp]] = ((np.inf, np.inf), rows[0])
     for start in range(0, len(rows), CHUNK):
         chunk = rows[start : start + CHUNK]
         outcome = outcome_of(run(family, _choice(options, chunk)))
         if np.any(outcome.passes):
-            return finished(family, _choice(options, chunk[int(np.argmax(outcome.passes))]), low)
+            return finished(family, _choice(options, chunk[int(np.argmax(outcome.passes))]), notes)
         failing = _failing_groups(family, outcome)
         best = int(np.lexsort((outcome.worst, failing))[0])
         score = (float(failing[best]), float(outcome.worst[best]))
         if score < nearest[0]:
             nearest = (score, chunk[best])
     note = f"none of the {len(rows)} allowed combinations of sizes and grades passes; the nearest is shown"
-    return finished(family, _choice(options, nearest[1]), (note, *low))
+    return finished(family, _choice(options, nearest[1]), (note, *notes))
 
 
-def _low_heel(family: Family, options: dict[str, tuple[Option, ...]], left: int) -> tuple[str, ...]:
-    """Note on the choices that a raised heel is too low for."""
-    every = int(np.prod([len(options[g]) for g in GROUPS]))
-    if left == every:
-        return ()
-    deepest = [max(o.section.depth for o in options[g]) for g in GROUPS[:2]]
+def _every(options: dict[str, tuple[Option, ...]]) -> NDArray[np.intp]:
+    """All choices (candidate, group) in the order the job lists them."""
+    return np.array(list(product(*(range(len(options[g])) for g in GROUPS))))
+
+
+def _with_room(
+    family: Family, options: dict[str, tuple[Option, ...]], rows: NDArray[np.intp]
+) -> tuple[NDArray[np.intp], tuple[str, ...]]:
+    """The choices that a raised heel has room for, and a note on those left out; the shallowest where it has for none,
+    for a message about the least that would do."""
+    if not family.layout.raised_heel:
+        return rows, ()
+    depth = _depths(options, rows)
+    room = heel_offset(family.size, depth["top chord"], depth["bottom chord"]) >= LEAST_HEEL
+    if np.all(room):
+        return rows, ()
+    keep = np.flatnonzero(room) if np.any(room) else [int(np.argmin(depth["top chord"] + depth["bottom chord"]))]
+    deepest = [float(depth[g].max()) for g in GROUPS[:2]]
     least = float(family.size.heel_height - heel_offset(family.size, *deepest)) + LEAST_HEEL
-    return (
-        f"the raised heel is too low for {every - left} of {every} combinations of sizes and grades, which were left "
-        f"out; a heel of {shown(least, 'size', family.job.units)} has room for all",
+    return rows[keep], (
+        f"the raised heel is too low for {len(rows) - len(keep)} of {len(rows)} combinations of sizes and grades, "
+        f"which were left out; a heel of {shown(least, 'size', family.job.units)} has room for all",
     )
+
+
+def _with_profile(
+    family: Family, options: dict[str, tuple[Option, ...]], rows: NDArray[np.intp]
+) -> tuple[NDArray[np.intp], tuple[str, ...]]:
+    """The choices whose chords are shallow enough for the simplified analysis, where the job asks for it, and a note on
+    those left out; all where none is, since the run says what is wrong."""
+    rules = family.timber.simplified
+    if rules is None:
+        return rows, ()
+    depth = _depths(options, rows)
+    most = deepest_chord(form(family.layout, family.size, depth["top chord"], depth["bottom chord"]), rules)
+    keep = np.flatnonzero(np.maximum(depth["top chord"], depth["bottom chord"]) < most)
+    if len(keep) in (0, len(rows)):
+        return rows, ()
+    return rows[keep], (
+        f"{len(rows) - len(keep)} of {len(rows)} combinations of sizes and grades have a chord too deep for the "
+        f"simplified analysis ({rules.clause}(1)) and were left out",
+    )
+
+
+def _depths(options: dict[str, tuple[Option, ...]], rows: NDArray[np.intp]) -> dict[str, Array]:
+    """Depth of each group in every choice (candidate,) [m]."""
+    return {g: np.array([o.section.depth for o in options[g]])[rows[:, k]] for k, g in enumerate(GROUPS)}
 
 
 def _failing_groups(family: Family, outcome: Outcome) -> Array:
@@ -71,18 +109,12 @@ def _choice(options: dict[str, tuple[Option, ...]], rows: NDArray[np.intp]) -> C
     return Choice(options=options, index={g: rows[..., k] for k, g in enumerate(GROUPS)})
 
 
-def _candidates(family: Family, options: dict[str, tuple[Option, ...]]) -> NDArray[np.intp]:
-    """All choices (candidate, group), least timber volume first; equal volumes in the order the job lists them.
+def _by_volume(family: Family, options: dict[str, tuple[Option, ...]], rows: NDArray[np.intp]) -> NDArray[np.intp]:
+    """Choices (candidate, group), least timber volume first; equal volumes stay in order.
 
     Raises JobError when no chord depth fits under a raised heel.
     """
-    rows = np.array(list(product(*(range(len(options[g])) for g in GROUPS))))
-    depth = {g: np.array([o.section.depth for o in options[g]])[rows[:, k]] for k, g in enumerate(GROUPS)}
-    if family.layout.raised_heel:
-        room = heel_offset(family.size, depth["top chord"], depth["bottom chord"]) >= LEAST_HEEL
-        shallow = np.argmin(depth["top chord"] + depth["bottom chord"])  # for a message about the least that would do
-        keep = np.flatnonzero(room) if np.any(room) else np.array([shallow])
-        rows, depth = rows[keep], {g: d[keep] for g, d in depth.items()}
+    depth = _depths(options, rows)
     length = form(family.layout, family.size, depth["top chord"], depth["bottom chord"]).length
     groups = np.array(family.topology.groups)
     volume = np.zeros(len(rows))

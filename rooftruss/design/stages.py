@@ -11,9 +11,11 @@ from rooftruss.analysis.effects import UnitEffects, demands_and_envelope, unit_e
 from rooftruss.analysis.envelope import Envelope
 from rooftruss.analysis.frame import Solution, require_stable, solve, stiffness_matrix
 from rooftruss.analysis.inspection import triangulation
+from rooftruss.analysis.simplified import simplified_solution
 from rooftruss.basis.job import Job, TrussSpec
 from rooftruss.design.family import GROUPS, Choice, Family, family_of, options_of, unbatched
 from rooftruss.design.members import members_of, take_members
+from rooftruss.design.profile import require_profile
 from rooftruss.errors import UnstableTrussError
 from rooftruss.loads.actions import (
     action_cases,
@@ -49,8 +51,9 @@ class Run:
     combinations: Combinations
     stiffness_axial: Array
     stiffness_bending: Array
-    solution: Solution
-    effects: UnitEffects
+    solution: Solution  # of the frame, which deflections are of
+    forces: Solution  # what is checked: that of the frame, or of the simplified analysis of the timber standard
+    effects: UnitEffects  # of `forces`
     demand: Demand  # under the strength combinations
     envelope: Envelope
     checks: Checks
@@ -62,6 +65,11 @@ class Run:
     def strength(self) -> list[int]:
         """Numbers of the strength combinations."""
         return [int(k) for k in np.flatnonzero(self.combinations.strength)]
+
+    @cached_property
+    def frame_effects(self) -> UnitEffects:
+        """Internal forces of the frame, whichever analysis is checked."""
+        return self.effects if self.forces is self.solution else unit_effects(self.truss, self.cases, self.solution)
 
     @cached_property
     def triangulated(self) -> bool:
@@ -95,13 +103,17 @@ def run(family: Family, choice: Choice) -> Run:
     if isinstance(family.layout, CustomLayout):
         require_stable(truss.topology, _first(stiffness_matrix(truss, ea, ei), 2)[None])
     solution = solve(truss, ea, ei, cases)
-    effects = unit_effects(truss, cases, solution)
+    forces, simplified = solution, family.timber.simplified
+    if simplified is not None:
+        require_profile(family, truss, np.maximum(depth["top chord"], depth["bottom chord"]), simplified)
+        forces = simplified_solution(truss, ea, ei, cases, support_moments=simplified.support_moments)
+    effects = unit_effects(truss, cases, forces)
     strength = np.flatnonzero(combinations.strength)
     factors = combinations.factors[strength]
     demands, envelope = demands_and_envelope(effects, factors)
     demand = Demand(**{f.name: getattr(demands, f.name) for f in fields(demands)})
     durations = durations_of(combinations)
-    reactions = _combined_reactions(factors, solution.reactions)
+    reactions = _combined_reactions(factors, forces.reactions)
     bearing = bearing_lengths(family.layout, truss)
     if not isinstance(family.layout, CustomLayout) and family.layout.raised_heel:
         # the heel post stands on the bottom chord: where it is narrower than the bearing, it presses harder
@@ -116,6 +128,7 @@ def run(family: Family, choice: Choice) -> Run:
         stiffness_axial=ea,
         stiffness_bending=ei,
         solution=solution,
+        forces=forces,
         effects=effects,
         demand=demand,
         envelope=envelope,

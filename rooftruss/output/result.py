@@ -57,10 +57,11 @@ def result_dict(job: Job, designs: Sequence[Design]) -> Record:
 
 def truss_record(design: Design) -> Record:
     """Everything about one truss."""
-    spec = design.spec
+    spec, simplified = design.spec, design.run.family.timber.simplified
     return {
         "mark": spec.mark,
         "shape": spec.shape,
+        "analysis": "frame" if simplified is None else f"simplified, {simplified.clause}",
         "quantity": spec.quantity,
         "span": _number(spec.span),
         "pitch": _number(spec.pitch),
@@ -211,7 +212,7 @@ def _effects(design: Design) -> Record:
     held = [made.nodes[s.node] for s in made.supports]
     out: Record = {}
     for c, name in enumerate(run.cases.names):
-        ends = run.solution.end_forces[c]
+        ends = run.forces.end_forces[c]
         out[name] = {
             "members": {
                 member: {
@@ -221,7 +222,7 @@ def _effects(design: Design) -> Record:
                 }
                 for member, e in zip(made.names, ends, strict=True)
             },
-            "reactions": {n: _numbers(r) for n, r in zip(held, run.solution.reactions[c], strict=True)},
+            "reactions": {n: _numbers(r) for n, r in zip(held, run.forces.reactions[c], strict=True)},
             "displacements": {n: _numbers(u) for n, u in zip(made.nodes, run.solution.displacements[c], strict=True)},
         }
     return out

@@ -1,6 +1,6 @@
 """Timber by EN 1995-1-1:2004+A1:2008+A2:2014, solid and glued laminated softwood."""
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -8,14 +8,17 @@ from numpy.typing import NDArray
 
 from rooftruss.basis.grades import Grade
 from rooftruss.basis.sections import Section
-from rooftruss.errors import JobError
+from rooftruss.errors import JobError, nearest
 from rooftruss.timber import ec5_tables as tables
-from rooftruss.timber.ec5_check import check_members
+from rooftruss.timber import ec5_truss
+from rooftruss.timber.ec5_check import RULES, rule_ratios, utilisations
 from rooftruss.timber.ec5_explain import explain_bearing, explain_member
 from rooftruss.timber.ec5_formulas import contact_length, final_factors, size_factor
-from rooftruss.timber.ec5_resistance import bearing_factors
+from rooftruss.timber.ec5_resistance import bearing_factors, resistances
 from rooftruss.timber.ec5_tables import contact_addition
-from rooftruss.timber.terms import Array, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.ec5_truss import TrussRules
+from rooftruss.timber.terms import Array, Bays, Checks, Creep, Demand, Durations, Members, Simplified, Step
+from rooftruss.timber.worst import governing_checks
 
 NAME = "EN 1995-1-1"
 SERVICE_CLASSES = (1, 2, 3)
@@ -29,6 +32,8 @@ class Ec5:
     load_sharing: bool | None  # None: by the conditions of 6.6
     national_choices: str
     load_over_bearing: bool = True  # l_1 < 2h of 6.1.5
+    truss_analysis: str = ec5_truss.FRAME  # or SIMPLIFIED
+    node_loaded: bool = False  # loads act mainly at the panel points
 
     @property
     def name(self) -> str:
@@ -46,9 +51,31 @@ class Ec5:
             *(() if self.load_over_bearing else (clear,)),
             "the largest axial force and the largest moment of a member are taken together (EN 1995-1-1, 6.2.3, 6.3.2)",
             "moment constant between lateral restraints, the least favourable row of EN 1995-1-1, Table 6.1",
-            "effective length in the plane is the length between panel points (EN 1995-1-1, 9.2.1)",
+            *ec5_truss.notes(self.truss_analysis, self.rules),
             f"gamma_M and k_cr: {self.national_choices} values (EN 1995-1-1, 2.4.1 and 6.1.7)",
         )
+
+    @property
+    def rules(self) -> TrussRules:
+        """What 9.2.1 makes of the checks."""
+        return ec5_truss.truss_rules(self.truss_analysis, node_loaded=self.node_loaded)
+
+    @property
+    def simplified(self) -> Simplified | None:
+        """The simplified analysis where the job asks for it; EN 1995-1-1, 5.4.3."""
+        return ec5_truss.simplified_analysis() if self.truss_analysis == ec5_truss.SIMPLIFIED else None
+
+    def truss_notes(self, length: float) -> tuple[str, ...]:
+        """The force that every joint has to pass on; EN 1995-1-1, 9.2.1(9)."""
+        force = ec5_truss.joint_force(length) / 1e3
+        return (
+            f"joints, which are not designed here, have to pass on F_r,d = {force:.2f} kN in any direction in the "
+            "plane, short-term, service class 2 (EN 1995-1-1, 9.2.1(9))",
+        )
+
+    def effective_lengths(self, bays: Bays) -> Array:
+        """Effective lengths (..., m) [m] in the plane of the truss; EN 1995-1-1, 9.2.1(3) and (4)."""
+        return ec5_truss.effective_lengths(bays, self.truss_analysis)
 
     def properties(self, grade: Grade, section: Section) -> dict[str, float]:
         """Characteristic values and what depends on the size [Pa, -] of a grade; E is E_0,mean, density rho_mean.
@@ -89,7 +116,16 @@ class Ec5:
 
     def check(self, members: Members, demand: Demand, durations: Durations) -> Checks:
         """Worst utilisation (..., k, m) of every member under every combination; EN 1995-1-1, chapter 6."""
-        return check_members(members, demand, *self.scale(members, durations))
+        r = resistances(members)
+        scale, index = self.scale(members, durations)
+        flat = np.broadcast_to(scale, (*demand.tension.shape[:-2], *scale.shape[-2:]))
+
+        def ratios(force: Demand, row: NDArray[np.intp]) -> Iterator[tuple[int, Array]]:
+            here = np.take_along_axis(flat, index[row][..., None, :], -2)[..., 0, :]
+            return rule_ratios(r, force, here, self.rules)
+
+        found = utilisations(r, demand, scale, index, self.rules)
+        return governing_checks(RULES, found, demand, ratios)
 
     def bearing(self, reaction: Array, members: Members, length: Array, durations: Durations) -> Array:
         """Utilisation (..., k, s) across the grain; EN 1995-1-1, 6.1.5. Uplift gives 0."""
@@ -102,9 +138,8 @@ class Ec5:
         self, members: Members, demand: Demand, durations: Durations, member: int, combination: int
     ) -> tuple[Step, ...]:
         """The check of one member of an unbatched truss, line by line; its last step is the utilisation of `check`."""
-        return explain_member(
-            members, demand, self._duration(members, durations, member, combination), member, combination
-        )
+        duration = self._duration(members, durations, member, combination)
+        return explain_member(members, demand, duration, member, combination, self.rules)
 
     def explain_bearing(
         self,
@@ -167,11 +202,12 @@ class Ec5:
 
 
 def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
-    """EN 1995-1-1 with the keys service_class (1, 2, 3), load_sharing ("auto", true, false), load_over_bearing and
-    national_choices.
+    """EN 1995-1-1 with the keys service_class (1, 2, 3), load_sharing ("auto", true, false), load_over_bearing,
+    truss_analysis ("frame", "simplified"), node_loaded and national_choices.
 
-    The last three may be left out: "auto", true, "recommended". Other keys of [timber] are not the standard's. Raises
-    JobError naming the key that is missing or wrong, OutOfScopeError for a country whose values are not at hand.
+    All but the first may be left out: "auto", true, "frame", false, "recommended". Other keys of [timber] are not the
+    standard's. Raises JobError naming the key that is missing or wrong, OutOfScopeError for a country whose values are
+    not at hand.
     """
     service_class = options.get("service_class")
     if isinstance(service_class, bool) or service_class not in SERVICE_CLASSES:
@@ -183,7 +219,15 @@ def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
         load_sharing=_sharing(options.get("load_sharing", "auto")),
         national_choices=country,
         load_over_bearing=bool(options.get("load_over_bearing", True)),
+        truss_analysis=_analysis(str(options.get("truss_analysis", ec5_truss.FRAME))),
+        node_loaded=bool(options.get("node_loaded", False)),
     )
+
+
+def _analysis(given: str) -> str:
+    if given not in ec5_truss.ANALYSES:
+        raise JobError(f"[timber] truss_analysis: {given!r} is not known; {nearest(given, ec5_truss.ANALYSES)}")
+    return given
 
 
 def _sharing(given: object) -> bool | None:

@@ -1,6 +1,7 @@
 """All rules of EN 1995-1-1 for all members under all combinations: the inner loop of sizing and span tables.
 
-Demands are divided by k_mod/gamma_M first; then every rule compares them with one characteristic resistance.
+`utilisations` finds the largest ratio under every combination with as few array passes as it takes; `rule_ratios` gives
+each rule by itself, for the combination that governs.
 """
 
 from collections.abc import Iterator
@@ -9,9 +10,10 @@ from dataclasses import dataclass, fields
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.timber.ec5_resistance import Resistances, resistances
-from rooftruss.timber.terms import Array, Checks, Demand, Members, Rule
-from rooftruss.timber.worst import Worst
+from rooftruss.timber.ec5_resistance import Resistances
+from rooftruss.timber.ec5_truss import TrussRules
+from rooftruss.timber.terms import Array, Demand, Rule
+from rooftruss.timber.worst import blocks, by_member
 
 RULES = (
     Rule(name="tension", clause="6.1.2, eq. (6.1)"),
@@ -30,12 +32,11 @@ IN_PLANE, ACROSS, TORSION_COMPRESSION, SHEAR = range(6, 10)
 
 # Round-off of the analysis is not a force: below this share of the section's own capacity there is none.
 NEGLIGIBLE = 1e-9
-BLOCK = 32_000  # elements (combinations x members) worked on at a time: about 256 kB an array
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Unit:
-    """Stress ratios per unit of force or moment before k_mod/gamma_M, (b, 1, m); `scale` is (b, d, m)."""
+    """Stress ratios per unit of force or moment before k_mod/gamma_M, (b, m, 1); `scale` is (b, m, d)."""
 
     scale: Array  # gamma_M/k_mod
     tension: Array
@@ -49,111 +50,131 @@ class _Unit:
     stocky: Array
     shear: Array
     least_force: Array
-    least_moment: Array
 
 
-def check_members(members: Members, demand: Demand, scale: Array, index: NDArray[np.intp]) -> Checks:
-    """Worst utilisation (..., k, m) for gamma_M/k_mod (..., d, m) of the distinct durations; index (k,) picks one."""
-    shape = demand.tension.shape
-    unit = _unit_ratios(resistances(members), scale, shape[:-2])
-    utilisation, rule = np.zeros(shape), np.zeros(shape, np.int8)
-    if rule.size:
-        flat = (-1, *shape[-2:])
-        worst = Worst(utilisation.reshape(flat), rule.reshape(flat))
-        for part in _parts(worst.utilisation.shape):
-            whole = {f.name: getattr(unit, f.name)[part] for f in fields(_Unit)}
-            _run(_Unit(**whole), demand, index, part, Worst(worst.utilisation[part], worst.rule[part]))
-    return Checks(rules=RULES, utilisation=utilisation, rule=rule)
+def utilisations(r: Resistances, demand: Demand, scale: Array, index: NDArray[np.intp], rules: TrussRules) -> Array:
+    """Largest ratio (..., k, m) of all rules; gamma_M/k_mod (..., d, m) of each duration, index (k,) picks one.
+
+    What cannot be the largest is left out: (6.1) beside (6.17), (6.11) beside (6.33), (6.2) of a slender member beside
+    (6.23). Members come before combinations in memory, as in the effects, so that every pass is over long rows.
+    """
+    unit = _unit_ratios(r, scale, demand.tension.shape[:-2], rules)
+    forces = [by_member(getattr(demand, name)) for name in _FORCES]
+    out = np.empty(forces[0].shape)
+    for part in blocks(out.shape):
+        own = _Unit(**{f.name: getattr(unit, f.name)[part] for f in fields(_Unit)})
+        _largest(own, [values[part] for values in forces], index, rules, out[part])
+    return np.swapaxes(out, -1, -2).reshape(demand.tension.shape)
 
 
-def _parts(shape: tuple[int, ...]) -> Iterator[slice]:
-    step = max(1, BLOCK // (shape[1] * shape[2]))
-    return (slice(start, start + step) for start in range(0, shape[0], step))
+_FORCES = ("tension", "compression", "moment_positive", "moment_negative", "shear")
 
 
-def _unit_ratios(r: Resistances, scale: Array, batch: tuple[int, ...]) -> _Unit:
-    """Reciprocals of the resistances, so that the inner loop only multiplies."""
+def _unit_ratios(r: Resistances, scale: Array, batch: tuple[int, ...], rules: TrussRules) -> _Unit:
+    """Reciprocals of the resistances, so that the inner loop only multiplies. Stocky members do not buckle: 0."""
+    slender = 1 - r.stocky
+    pressed = rules.compression / (r.area * r.f_c)
     ratios = {
         "tension": 1 / (r.area * r.f_t),
-        "compression": 1 / (r.area * r.f_c),
+        "compression": pressed,
         "bending": 1 / (r.modulus * r.f_m),
         "positive": 1 / (r.modulus * r.positive.k_crit * r.f_m),
         "negative": 1 / (r.modulus * r.negative.k_crit * r.f_m),
-        "in_plane": 1 / (r.area * r.k_c_y * r.f_c),
-        "across": 1 / (r.area * r.k_c_z * r.f_c),
+        "in_plane": slender * pressed / r.k_c_y,
+        "across": pressed / r.k_c_z,
         "k_m": r.k_m,
         "stocky": r.stocky,
         "shear": 1.5 / (r.area * r.k_cr * r.f_v),
         "least_force": NEGLIGIBLE * r.area * r.f_c,
-        "least_moment": NEGLIGIBLE * r.modulus * r.f_m,
     }
-    flat = {name: _flat(values[..., None, :], batch) for name, values in ratios.items()}
-    return _Unit(scale=_flat(scale, batch), **flat)
+    flat = {name: _flat(values[..., None], batch) for name, values in ratios.items()}
+    return _Unit(scale=_flat(np.swapaxes(scale, -1, -2), batch), **flat)
 
 
 def _flat(values: Array, batch: tuple[int, ...]) -> Array:
-    """(..., d, m), broadcast over the batch, as (b, d, m)."""
+    """(..., m, d), broadcast over the batch, as (b, m, d)."""
     return np.broadcast_to(values, (*batch, *values.shape[-2:])).reshape(-1, *values.shape[-2:])
 
 
-def _run(unit: _Unit, demand: Demand, index: NDArray[np.intp], part: slice, worst: Worst) -> None:
-    flat = (-1, *demand.tension.shape[-2:])
-    scale = np.take(unit.scale, index, axis=1)
-
-    def scaled(values: Array, least: Array) -> Array:
-        values = values.reshape(flat)[part]
-        out = (values > least).astype(np.float64)  # a product of floats, since mixed ones cost twice as much
-        out *= values
-        out *= scale
-        return out
-
-    tension = scaled(demand.tension, unit.least_force) * unit.tension
-    force = scaled(demand.compression, unit.least_force)
-    positive = scaled(demand.moment_positive, unit.least_moment)
-    negative = scaled(demand.moment_negative, unit.least_moment)
+def _largest(unit: _Unit, forces: list[Array], index: NDArray[np.intp], rules: TrussRules, out: Array) -> None:
+    """Largest ratio of one block of trusses into `out` (b, m, k). Linear rules first; they share gamma_M/k_mod."""
+    tension, compression, positive, negative, shear = forces
+    scale = np.take(unit.scale, index, axis=-1)
+    torsion = positive * unit.positive
+    np.maximum(torsion, np.multiply(negative, unit.negative, out=out), out=torsion)
     bending = np.maximum(positive, negative)
     bending *= unit.bending
-    compression = force * unit.compression
-    worst.take(tension, TENSION)
-    worst.take(compression, COMPRESSION)
-    worst.take(bending, BENDING)
-    positive *= unit.positive
-    negative *= unit.negative
-    torsion = np.maximum(positive, negative, out=positive)
-    worst.take(torsion, TORSION)
-    tension += bending
-    worst.take(tension, BENDING_TENSION)
-    _compression(unit, force, compression, bending, torsion, worst)
-    shear = demand.shear.reshape(flat)[part] * scale
-    shear *= unit.shear
-    worst.take(shear, SHEAR)
-
-
-def _compression(unit: _Unit, force: Array, compression: Array, bending: Array, torsion: Array, worst: Worst) -> None:
-    """6.2.4 where both relative slendernesses are up to 0.3, else 6.3.2; and 6.3.3(6) where a moment acts too.
-
-    Compression alone on a stocky member is left to 6.1.4: the square in (6.19) is for the two together. `compression`,
-    `bending` and `torsion` are used up.
-    """
-    acting = (force > 0).astype(np.float64)
-    slender = acting * (1 - unit.stocky)
-    acting *= bending > 0
-    if unit.stocky.any():
-        compression *= compression
-        compression += bending
-        compression *= acting
-        compression *= unit.stocky
-        worst.take(compression, BENDING_COMPRESSION)
-    in_plane = force * unit.in_plane
+    in_plane = compression * unit.in_plane
     in_plane += bending
-    in_plane *= slender
-    worst.take(in_plane, IN_PLANE)
-    across = force * unit.across
-    bending *= unit.k_m
-    bending += across
-    bending *= slender
-    worst.take(bending, ACROSS)
+    across = compression * unit.across
+    pressed = np.multiply(bending, unit.k_m, out=out)
+    pressed += across * (1 - unit.stocky) if unit.stocky.any() else across
+    np.maximum(pressed, in_plane, out=in_plane)
+    if rules.combined < 1:
+        in_plane *= (compression > unit.least_force) * (1 / rules.combined - 1) + 1
+    np.multiply(tension, unit.tension, out=out)
+    out += bending
+    if rules.axial < 1:
+        out *= (tension > unit.least_force) * (1 / rules.axial - 1) + 1
+    np.maximum(out, in_plane, out=out)
+    np.maximum(out, torsion, out=out)
+    np.maximum(out, np.multiply(shear, unit.shear, out=in_plane), out=out)
+    out *= scale
+    _squares(unit, compression, bending, torsion, across, scale, rules, out)
+
+
+def _squares(
+    unit: _Unit,
+    compression: Array,
+    bending: Array,
+    torsion: Array,
+    across: Array,
+    scale: Array,
+    rules: TrussRules,
+    out: Array,
+) -> None:
+    """(6.35), and (6.2) and (6.19) of stocky members; the arrays are used up.
+
+    (6.35) is for compression and moment together; without a moment it is no more than (6.24).
+    """
+    torsion *= scale
     torsion *= torsion
+    across *= scale
     torsion += across
-    torsion *= acting
-    worst.take(torsion, TORSION_COMPRESSION)
+    torsion *= (compression > unit.least_force).astype(np.float64)
+    np.maximum(out, torsion, out=out)
+    if unit.stocky.any() or rules.axial < 1:
+        alone = compression * unit.compression
+        alone *= scale
+        np.maximum(out, alone / rules.axial, out=out)
+        alone *= alone
+        alone += bending * scale
+        both = (compression > unit.least_force) & (bending > NEGLIGIBLE)
+        alone *= unit.stocky * both / rules.combined
+        np.maximum(out, alone, out=out)
+
+
+def rule_ratios(r: Resistances, force: Demand, scale: Array, rules: TrussRules) -> Iterator[tuple[int, Array]]:
+    """Ratio (..., m) of each rule under one combination a member: demands (..., m), gamma_M/k_mod (..., m)."""
+
+    def acting(values: Array, least: Array) -> Array:
+        return np.where(values > least, values, 0.0) * scale
+
+    least_force, least_moment = NEGLIGIBLE * r.area * r.f_c, NEGLIGIBLE * r.modulus * r.f_m
+    N_t = acting(force.tension, least_force)
+    N_c = rules.compression * acting(force.compression, least_force)
+    positive, negative = (acting(m, least_moment) for m in (force.moment_positive, force.moment_negative))
+    t, c = N_t / (r.area * r.f_t), N_c / (r.area * r.f_c)
+    m = np.maximum(positive, negative) / (r.modulus * r.f_m)
+    torsion = np.maximum(positive / r.positive.k_crit, negative / r.negative.k_crit) / (r.modulus * r.f_m)
+    slender, both = (N_c > 0) * (1 - r.stocky), (N_c > 0) & (m > 0)
+    yield TENSION, t / rules.axial
+    yield COMPRESSION, c / rules.axial
+    yield BENDING, m
+    yield TORSION, torsion
+    yield BENDING_TENSION, np.where(N_t > 0, (t + m) / rules.axial, m)
+    yield BENDING_COMPRESSION, both * r.stocky * (c**2 + m) / rules.combined
+    yield IN_PLANE, slender * (c / r.k_c_y + m) / rules.combined
+    yield ACROSS, slender * (c / r.k_c_z + r.k_m * m) / rules.combined
+    yield TORSION_COMPRESSION, both * (torsion**2 + c / r.k_c_z)
+    yield SHEAR, 1.5 * force.shear * scale / (r.area * r.k_cr * r.f_v)

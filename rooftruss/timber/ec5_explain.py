@@ -13,6 +13,7 @@ from rooftruss.timber import ec5_check as rules
 from rooftruss.timber import ec5_formulas as ec5
 from rooftruss.timber.ec5_resistance import Lateral, Resistances, bearing_factors, resistances
 from rooftruss.timber.ec5_tables import contact_addition
+from rooftruss.timber.ec5_truss import TrussRules
 from rooftruss.timber.terms import Array, Demand, Members, Step
 
 CODE = "EN 1995-1-1"
@@ -34,6 +35,7 @@ class _Case:
     beta_c: Array
     G_05: Array
     r: Resistances
+    rules: TrussRules
 
     @property
     def moment(self) -> float:
@@ -49,7 +51,7 @@ class _Case:
 
 
 def explain_member(
-    members: Members, demand: Demand, duration: Duration, member: int, combination: int
+    members: Members, demand: Demand, duration: Duration, member: int, combination: int, rules_of_truss: TrussRules
 ) -> tuple[Step, ...]:
     """Every demand, factor, design strength and ratio of one member of an unbatched truss, and its utilisation."""
     r = resistances(members)
@@ -63,7 +65,7 @@ def explain_member(
     case = _Case(
         member=member,
         tension=given(demand.tension, least_force),
-        compression=given(demand.compression, least_force),
+        compression=rules_of_truss.compression * given(demand.compression, least_force),
         positive=given(demand.moment_positive, least_moment),
         negative=given(demand.moment_negative, least_moment),
         shear=given(demand.shear),
@@ -72,6 +74,7 @@ def explain_member(
         beta_c=members.properties["beta_c"],
         G_05=members.properties["G_05"],
         r=r,
+        rules=rules_of_truss,
     )
     ratios = list(_ratios(case))
     found = ((s.value, rules.RULES[k]) for k, s in ratios)
@@ -141,9 +144,11 @@ def _sizes(case: _Case, members: Members) -> Iterator[Step]:
 
 
 def _demands(case: _Case) -> Iterator[Step]:
+    more = case.rules.compression
+    pressed = "largest compression" + (f", {more:g} times what the analysis gives (9.2.1(5))" if more != 1 else "")
     for symbol, value, kind, text in (
         ("N_t,d", case.tension, "force", "largest tension"),
-        ("N_c,d", case.compression, "force", "largest compression"),
+        ("N_c,d", case.compression, "force", pressed),
         ("M_y,d+", case.positive, "moment", "largest sagging moment, upper edge compressed"),
         ("M_y,d-", case.negative, "moment", "largest hogging moment, lower edge compressed"),
         ("V_d", case.shear, "force", "largest shear"),
@@ -247,11 +252,12 @@ def _ratios(case: _Case) -> Iterator[tuple[int, Step]]:
     r, area = case.r, case.of(case.r.area)
     sigma_t, sigma_c, sigma_m = case.tension / area, case.compression / area, case.moment / case.of(r.modulus)
     t, m = sigma_t / case.design(r.f_t), sigma_m / case.design(r.f_m)
+    axial = (case.rules.axial, case.rules.clause)
     if case.tension:
-        yield _ratio(rules.TENSION, "sigma_t,0,d/f_t,0,d", t, _shown("sigma_t,0,d", sigma_t, "N_t,d / A"))
+        yield _ratio(rules.TENSION, "sigma_t,0,d/f_t,0,d", t, _shown("sigma_t,0,d", sigma_t, "N_t,d / A"), *axial)
     if case.compression:
         c = sigma_c / case.design(r.f_c)
-        yield _ratio(rules.COMPRESSION, "sigma_c,0,d/f_c,0,d", c, _shown("sigma_c,0,d", sigma_c, "N_c,d / A"))
+        yield _ratio(rules.COMPRESSION, "sigma_c,0,d/f_c,0,d", c, _shown("sigma_c,0,d", sigma_c, "N_c,d / A"), *axial)
     if case.moment:
         yield _ratio(
             rules.BENDING, "sigma_m,y,d/f_m,y,d", m, _shown("sigma_m,y,d", sigma_m, "M_y,d / W_y, the larger moment")
@@ -262,7 +268,7 @@ def _ratios(case: _Case) -> Iterator[tuple[int, Step]]:
                 yield _ratio(rules.TORSION, f"sigma_m,d{sign}/(k_crit f_m,d)", value, "of this sign alone")
     if case.moment and case.tension:
         value = float(ec5.bending_and_tension(t, m))
-        yield _ratio(rules.BENDING_TENSION, "sigma_t/f_t + sigma_m,y/f_m,y", value, f"{t:.4g} + {m:.4g}")
+        yield _ratio(rules.BENDING_TENSION, "sigma_t/f_t + sigma_m,y/f_m,y", value, f"{t:.4g} + {m:.4g}", *axial)
     if case.compression:
         yield from _compression_ratios(case, c, m)
     if case.shear:
@@ -274,16 +280,19 @@ def _compression_ratios(case: _Case, c: float, m: float) -> Iterator[tuple[int, 
     """6.2.4 or 6.3.2, and 6.3.3(6), from c = sigma_c/f_c and m = sigma_m,y/f_m,y."""
     r, k_m = case.r, case.of(case.r.k_m)
     k_c_y, k_c_z = case.of(r.k_c_y), case.of(r.k_c_z)
+    limit = (case.rules.combined, case.rules.clause)
     if case.of(r.stocky) and case.moment:
         value = float(ec5.bending_and_compression(c, m))
-        yield _ratio(rules.BENDING_COMPRESSION, "(sigma_c/f_c)^2 + sigma_m,y/f_m,y", value, f"{c:.4g}^2 + {m:.4g}")
+        yield _ratio(
+            rules.BENDING_COMPRESSION, "(sigma_c/f_c)^2 + sigma_m,y/f_m,y", value, f"{c:.4g}^2 + {m:.4g}", *limit
+        )
     if not case.of(r.stocky):
         value = float(ec5.column_in_plane(c, k_c_y, m))
-        yield _ratio(rules.IN_PLANE, "sigma_c/(k_c,y f_c) + sigma_m,y/f_m,y", value, f"{c:.4g}/{k_c_y:.4g} + {m:.4g}")
+        text = f"{c:.4g}/{k_c_y:.4g} + {m:.4g}"
+        yield _ratio(rules.IN_PLANE, "sigma_c/(k_c,y f_c) + sigma_m,y/f_m,y", value, text, *limit)
         value = float(ec5.column_across(c, k_c_z, m, k_m=k_m))
-        yield _ratio(
-            rules.ACROSS, "sigma_c/(k_c,z f_c) + k_m sigma_m,y/f_m,y", value, f"{c:.4g}/{k_c_z:.4g} + {k_m:g} x {m:.4g}"
-        )
+        text = f"{c:.4g}/{k_c_z:.4g} + {k_m:g} x {m:.4g}"
+        yield _ratio(rules.ACROSS, "sigma_c/(k_c,z f_c) + k_m sigma_m,y/f_m,y", value, text, *limit)
     if case.moment:
         torsion = max(moment / (case.of(r.modulus) * case.of(v.k_crit)) for _, moment, v in _signs(case))
         value = float(ec5.torsion_and_compression(c, k_c_z, torsion / case.design(r.f_m), 1.0))
@@ -292,7 +301,10 @@ def _compression_ratios(case: _Case, c: float, m: float) -> Iterator[tuple[int, 
         yield _ratio(rules.TORSION_COMPRESSION, symbol, value, text)
 
 
-def _ratio(rule: int, symbol: str, value: float, text: str) -> tuple[int, Step]:
+def _ratio(rule: int, symbol: str, value: float, text: str, limit: float = 1.0, clause: str = "") -> tuple[int, Step]:
+    """limit: what the sum may reach where 9.2.1 asks for less than 1; the ratio is taken to it."""
+    if limit != 1:
+        symbol, value, text = f"({symbol})/{limit:g}", value / limit, f"{text}; up to {limit:g} by {clause}"
     return rule, _factor(symbol, value, f"{CODE} {rules.RULES[rule].clause}", text)
 
 

@@ -1,9 +1,10 @@
 """Timber by the NDS (ANSI/AWC), editions 2018 and 2024, by allowable stress (ASD) or load and resistance (LRFD)."""
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from rooftruss.basis.grades import Grade
 from rooftruss.basis.sections import Section
@@ -11,10 +12,12 @@ from rooftruss.basis.tables import Cell, read_table
 from rooftruss.errors import JobError, OutOfScopeError, nearest
 from rooftruss.timber import nds_tables as tables
 from rooftruss.timber.deflection import limit_ratio
-from rooftruss.timber.nds_check import check_members
+from rooftruss.timber.nds_check import RULES, rule_ratios, utilisations
 from rooftruss.timber.nds_explain import explain_bearing, explain_member
 from rooftruss.timber.nds_formulas import lumber_density
-from rooftruss.timber.terms import Array, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.nds_resistance import at_durations, resistances
+from rooftruss.timber.terms import Array, Bays, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.worst import governing_checks
 
 MOISTURES = ("dry", "wet")
 TEMPERATURES = ("normal", "100 to 125 F", "125 to 150 F")
@@ -58,6 +61,20 @@ class Nds:
         if self.edition == "2024":
             notes.append("NDS 2024: reference values, factors and shear rules are those of 2018; check 3.4 for changes")
         return tuple(notes)
+
+    @property
+    def simplified(self) -> None:
+        """The NDS leaves the analysis to 3.1.3: forces are those of the frame."""
+        return None
+
+    def truss_notes(self, length: float) -> tuple[str, ...]:
+        """Nothing beside the notes of every truss."""
+        return ()
+
+    def effective_lengths(self, bays: Bays) -> Array:
+        """K_e times the length from panel point to panel point (..., m) [m]; NDS 3.7.1 and Appendix G."""
+        K_e = np.array([tables.effective_length(role, edition=self.edition) for role in bays.roles])
+        return np.asarray(K_e * bays.length)
 
     def properties(self, grade: Grade, section: Section) -> dict[str, float]:
         """Reference values, their factors and the products [Pa, -] of a grade in a size; NDS Table 4.3.1.
@@ -125,8 +142,14 @@ class Nds:
 
     def check(self, members: Members, demand: Demand, durations: Durations) -> Checks:
         """Worst utilisation (..., k, m) of every member under every combination; NDS chapter 3."""
-        factors = self.duration_factors(durations)
-        return check_members(members, demand, factors, edition=self.edition, buckling_stiffness=self.buckling_stiffness)
+        distinct, index = np.unique(self.duration_factors(durations), return_inverse=True)
+        r = resistances(members, distinct, edition=self.edition, buckling_stiffness=self.buckling_stiffness)
+        batch = demand.tension.shape[:-2]
+
+        def ratios(force: Demand, row: NDArray[np.intp]) -> Iterator[tuple[int, Array]]:
+            return rule_ratios(at_durations(r, index[row], batch), force, self.edition)
+
+        return governing_checks(RULES, utilisations(r, demand, index, self.edition), demand, ratios)
 
     def bearing(self, reaction: Array, members: Members, length: Array, durations: Durations) -> Array:
         """Utilisation (..., k, s) across the grain; NDS 3.10.2. Neither C_D nor lambda applies; uplift gives 0.

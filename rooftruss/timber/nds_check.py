@@ -1,21 +1,22 @@
 """All rules of the NDS for all members under all combinations: the inner loop of sizing and span tables.
 
-Per combination and member only a few dozen elementwise operations remain; they run over blocks of trusses whose
-arrays stay in the processor's cache.
+`utilisations` finds the largest ratio under every combination with as few array passes as it takes; `rule_ratios` gives
+each rule by itself, for the combination that governs.
 """
 
 from collections.abc import Iterator
 from dataclasses import dataclass, fields
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.timber.nds_formulas import AMPLIFIER_FLOOR
-from rooftruss.timber.nds_resistance import Resistances, resistances
+from rooftruss.timber.nds_resistance import Resistances
 from rooftruss.timber.nds_tables import limit
-from rooftruss.timber.terms import Array, Checks, Demand, Members, Rule
-from rooftruss.timber.worst import Worst
+from rooftruss.timber.terms import Array, Demand, Rule
+from rooftruss.timber.worst import blocks, by_member
 
 RULES = (
     Rule(name="tension", clause="3.8.1"),
@@ -35,21 +36,21 @@ RULES = (
 
 # Round-off of the analysis is not a force: below this share of the section's own capacity there is none.
 NEGLIGIBLE = 1e-9
-BLOCK = 48_000  # elements (combinations x members) worked on at a time: about 384 kB an array
+_FORCES = ("tension", "compression", "moment_positive", "moment_negative", "shear")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Unit:
-    """Stress ratios per unit of force or moment, (b, d, m) unless noted; Euler ratios are 0 for held members."""
+    """Stress ratios per unit of force or moment (b, m, 1), or as noted; Euler ratios are 0 for held members."""
 
-    tension: Array
-    compression: Array
-    compression_bent: Array | None  # with C_T; None where no member takes it
-    positive: Array
-    negative: Array
-    star: Array
-    shear: Array
-    slender: Array  # (b, 1, m) and so on
+    tension: Array  # (b, m, d)
+    compression: Array  # (b, m, d)
+    compression_bent: Array  # (b, m, d), with C_T
+    positive: Array  # (b, m, d)
+    negative: Array  # (b, m, d)
+    star: Array  # (b, m, d)
+    shear: Array  # (b, m, d)
+    slender: Array
     slender_positive: Array
     slender_negative: Array
     euler: Array
@@ -60,57 +61,40 @@ class _Unit:
     least_force: Array
     least_moment: Array
 
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class _Block:
-    """One block of trusses: demands cleaned of round-off (b, k, m), unit ratios, index of the duration of each k."""
-
-    unit: _Unit
-    index: NDArray[np.intp]
-    tension: Array
-    compression: Array
-    positive: Array
-    negative: Array
-    relief: Array | float
-
-    def of_duration(self, ratio: Array) -> Array:
-        """(b, d, m) -> (b, k, m)."""
-        return np.take(ratio, self.index, axis=1)
+    def at(self, trusses: slice, duration: int) -> "_Unit":
+        """Of some trusses and one duration."""
+        every = {f.name: getattr(self, f.name) for f in fields(_Unit)}
+        one = slice(duration, duration + 1)
+        return _Unit(**{n: v[trusses] if v.shape[-1] == 1 else v[trusses, :, one] for n, v in every.items()})
 
 
-def check_members(
-    members: Members, demand: Demand, factors: Array, *, edition: str, buckling_stiffness: bool
-) -> Checks:
-    """Worst utilisation (..., k, m) by chapter 3 for duration `factors` (k,): C_D of ASD, lambda of LRFD."""
-    distinct, index = np.unique(factors, return_inverse=True)
-    r = resistances(members, distinct, edition=edition, buckling_stiffness=buckling_stiffness)
-    shape = demand.tension.shape
-    unit = _unit_ratios(r, shape[:-2], edition)
-    utilisation = np.zeros(shape)
-    rule = np.zeros(shape, np.int8)
-    if rule.size:
-        flat = (-1, *shape[-2:])
-        worst = Worst(utilisation.reshape(flat), rule.reshape(flat))
-        for part in _parts(worst.utilisation.shape):
-            block = _block(demand, unit, index, part)
-            _run(block, demand.shear.reshape(flat)[part], Worst(worst.utilisation[part], worst.rule[part]))
-    return Checks(rules=RULES, utilisation=utilisation, rule=rule)
+def utilisations(r: Resistances, demand: Demand, index: NDArray[np.intp], edition: str) -> Array:
+    """Largest ratio (..., k, m) of all rules; index (k,) tells which duration of `r` each combination has.
 
-
-def _parts(shape: tuple[int, ...]) -> Iterator[slice]:
-    step = max(1, BLOCK // (shape[1] * shape[2]))
-    return (slice(start, start + step) for start in range(0, shape[0], step))
+    Rules that cannot be the largest are left out: 3.8.1 beside eq. 3.9-1. Members come before combinations in memory,
+    as in the effects, and neighbouring combinations of one duration are taken together: every pass is over long rows.
+    """
+    unit = _unit_ratios(r, demand.tension.shape[:-2], edition)
+    names = (*_FORCES, *(("tension_least",) if demand.tension_least is not None else ()))
+    forces = [by_member(getattr(demand, name)) for name in names]
+    out = np.empty(forces[0].shape)
+    stops = [0, *(np.flatnonzero(np.diff(index)) + 1), len(index)]
+    for part in blocks(out.shape):
+        for first, end in pairwise(stops):
+            own = unit.at(part, int(index[first]) if first < end else 0)
+            here = [values[part, :, first:end] for values in forces]
+            _largest(own, here, out[part, :, first:end], stiffened=r.stiffened is not r.plain)
+    return np.swapaxes(out, -1, -2).reshape(demand.tension.shape)
 
 
 def _unit_ratios(r: Resistances, batch: tuple[int, ...], edition: str) -> _Unit:
     """Reciprocals of the resistances, so that the inner loop only multiplies."""
     area, modulus = r.area[..., None, :], r.modulus[..., None, :]
     column, beam = limit("column slenderness", edition=edition), limit("bending slenderness", edition=edition)
-    plain, bent = r.plain, r.stiffened
     ratios: dict[str, Any] = {
         "tension": 1 / (area * r.F_t),
-        "compression": 1 / (area * plain.F_c),
-        "compression_bent": None if bent is plain else 1 / (area * bent.F_c),
+        "compression": 1 / (area * r.plain.F_c),
+        "compression_bent": 1 / (area * r.stiffened.F_c),
         "positive": 1 / (modulus * r.positive.F_b),
         "negative": 1 / (modulus * r.negative.F_b),
         "star": 1 / (modulus * r.F_b_star),
@@ -118,7 +102,7 @@ def _unit_ratios(r: Resistances, batch: tuple[int, ...], edition: str) -> _Unit:
         "slender": r.slenderness[..., None, :] / column,
         "slender_positive": r.positive.R_B[..., None, :] / beam,
         "slender_negative": r.negative.R_B[..., None, :] / beam,
-        "euler": 1 / (area * bent.F_cE1[..., None, :]),
+        "euler": 1 / (area * r.stiffened.F_cE1[..., None, :]),
         "euler_weak": 1 / (area * r.F_cE2[..., None, :]),
         "twist_positive": 1 / (modulus * r.positive.F_bE[..., None, :]),
         "twist_negative": 1 / (modulus * r.negative.F_bE[..., None, :]),
@@ -126,100 +110,97 @@ def _unit_ratios(r: Resistances, batch: tuple[int, ...], edition: str) -> _Unit:
         "least_force": NEGLIGIBLE * area * r.F_c_star.min(axis=-2, keepdims=True),
         "least_moment": NEGLIGIBLE * modulus * r.F_b_star.min(axis=-2, keepdims=True),
     }
-    flat: dict[str, Any] = {name: None if v is None else _flat(v, batch) for name, v in ratios.items()}
-    return _Unit(**flat)
+    return _Unit(**{name: _flat(np.swapaxes(v, -1, -2), batch) for name, v in ratios.items()})
 
 
 def _flat(values: Array, batch: tuple[int, ...]) -> Array:
-    """(..., d, m), broadcast over the batch, as (b, d, m)."""
+    """(..., m, d), broadcast over the batch, as (b, m, d)."""
     return np.broadcast_to(values, (*batch, *values.shape[-2:])).reshape(-1, *values.shape[-2:])
 
 
-def _block(demand: Demand, unit: _Unit, index: NDArray[np.intp], part: slice) -> _Block:
-    whole = {f.name: getattr(unit, f.name) for f in fields(_Unit)}
-    own: dict[str, Any] = {name: None if v is None else v[part] for name, v in whole.items()}
-    u = _Unit(**own)
-    flat = (-1, *demand.tension.shape[-2:])
+def _largest(unit: _Unit, forces: list[Array], out: Array, *, stiffened: bool) -> None:
+    """Largest ratio of one block of trusses under combinations of one duration, into `out` (b, m, k).
 
-    def clean(values: Array, least: Array) -> Array:
-        values = values.reshape(flat)[part]
-        return _where(values > least, values)
-
-    relief: Array | float = 0.0
-    if demand.tension_least is not None:
-        relief = clean(demand.tension_least, u.least_force) * u.relief
-    return _Block(
-        unit=u,
-        index=index,
-        tension=clean(demand.tension, u.least_force),
-        compression=clean(demand.compression, u.least_force),
-        positive=clean(demand.moment_positive, u.least_moment),
-        negative=clean(demand.moment_negative, u.least_moment),
-        relief=relief,
-    )
-
-
-def _where(flags: NDArray[np.bool_], values: Array) -> Array:
-    """`values` where the flag is set, else 0; a product of floats, since mixed products cost twice as much."""
-    out = flags.astype(np.float64)
-    out *= values
-    return out
-
-
-def _run(block: _Block, shear: Array, worst: Worst) -> None:
-    moment = np.maximum(block.positive, block.negative)
-    tension = block.tension * block.of_duration(block.unit.tension)
-    worst.take(tension, TENSION)
-    compressed, bent = block.compression > 0, moment > 0
-    compression = _compression(block, compressed, bent, worst)
-    bending = _bending(block, worst)
-    tension += moment * block.of_duration(block.unit.star)  # 3.9-1; with no tension it cannot exceed 3.3.1
-    worst.take(tension, TENSION_BENDING)
-    _compression_bending(block, compression, bending, compressed & bent, worst)
-    worst.take(shear * block.of_duration(block.unit.shear), SHEAR)
-
-
-def _compression(block: _Block, compressed: NDArray[np.bool_], bent: NDArray[np.bool_], worst: Worst) -> Array:
-    """3.6.3 and 3.7.1.4; C_T only where there is bending too (4.4.2). Returns f_c/F_c."""
-    ratio = block.of_duration(block.unit.compression)
-    if block.unit.compression_bent is not None:
-        np.copyto(ratio, block.of_duration(block.unit.compression_bent), where=bent)
-    ratio *= block.compression
-    worst.take(ratio, COMPRESSION)
-    worst.take(_where(compressed, block.unit.slender), SLENDER_COLUMN)
-    return ratio
-
-
-def _bending(block: _Block, worst: Worst) -> Array:
-    """3.3.1, or 3.9-2 where there is tension, and 3.3.3.7. Returns f_b/F_b of the worse sign."""
-    unit, relieved = block.unit, isinstance(block.relief, np.ndarray)
-    positive = block.positive - block.relief if relieved else block.positive
-    negative = block.negative - block.relief if relieved else block.negative
-    ratio = np.maximum(positive * block.of_duration(unit.positive), negative * block.of_duration(unit.negative))
-    if relieved:
-        np.maximum(ratio, 0.0, out=ratio)
-    worst.take(ratio, (block.tension > 0).view(np.int8) + np.int8(BENDING))
-    slender = _where(block.positive > 0, unit.slender_positive)
-    np.maximum(slender, _where(block.negative > 0, unit.slender_negative), out=slender)
-    worst.take(slender, SLENDER_BEAM)
-    return ratio
-
-
-def _compression_bending(
-    block: _Block, compression: Array, bending: Array, both: NDArray[np.bool_], worst: Worst
-) -> None:
-    """3.9-3 with its guard and 3.9-4, only where there are both: either alone has its own rule."""
-    unit = block.unit
-    margin = 1 - block.compression * unit.euler
-    held = margin < AMPLIFIER_FLOOR
+    stiffened: some member takes C_T, where it is bent as well (4.4.2).
+    """
+    tension, compression, positive, negative, shear = forces[:5]
+    moment = np.maximum(positive, negative)
+    np.multiply(tension, unit.tension, out=out)
+    spare = moment * unit.star
+    out += spare  # 3.9-1
+    np.maximum(out, np.multiply(shear, unit.shear, out=spare), out=out)
+    bending = _bending(unit, forces, out, spare)
+    pressed = (compression > unit.least_force).astype(np.float64)
+    bent = (moment > unit.least_moment).astype(np.float64)
+    squeezed = compression * unit.compression
+    if stiffened:
+        np.multiply(compression, unit.compression_bent, out=squeezed, where=bent >= 1)
+    np.maximum(out, squeezed, out=out)
+    np.maximum(out, pressed * unit.slender, out=out)
+    bent *= pressed  # both
+    margin = compression * unit.euler
+    np.subtract(1, margin, out=margin)
     np.maximum(margin, AMPLIFIER_FLOOR, out=margin)
     np.divide(bending, margin, out=margin)
-    margin += compression * compression
-    acting = both.astype(np.float64)
-    margin *= acting
-    worst.take(margin, held.view(np.int8) + np.int8(COMPRESSION_BENDING))
-    twist = np.maximum(block.positive * unit.twist_positive, block.negative * unit.twist_negative)
+    squeezed *= squeezed
+    margin += squeezed
+    margin *= bent
+    np.maximum(out, margin, out=out)  # 3.9-3
+    twist = np.multiply(positive, unit.twist_positive, out=margin)
+    np.maximum(twist, np.multiply(negative, unit.twist_negative, out=squeezed), out=twist)
     twist *= twist
-    twist += block.compression * unit.euler_weak
-    twist *= acting
-    worst.take(twist, STABILITY)
+    twist += np.multiply(compression, unit.euler_weak, out=squeezed)
+    twist *= bent
+    np.maximum(out, twist, out=out)  # 3.9-4
+
+
+def _bending(unit: _Unit, forces: list[Array], out: Array, spare: Array) -> Array:
+    """f_b/F_b by 3.3.1, or 3.9-2 where tension relieves it, counted into `out` with 3.3.3.7; `spare` is used."""
+    positive, negative = forces[2:4]
+    for slender, moment in ((unit.slender_positive, positive), (unit.slender_negative, negative)):
+        if slender.any():
+            np.multiply((moment > unit.least_moment).astype(np.float64), slender, out=spare)
+            np.maximum(out, spare, out=out)
+    if len(forces) > len(_FORCES):
+        relief = forces[5] * unit.relief
+        ratio = positive - relief
+        ratio *= unit.positive
+        np.subtract(negative, relief, out=relief)
+        np.maximum(ratio, np.multiply(relief, unit.negative, out=relief), out=ratio)
+        np.maximum(ratio, 0.0, out=ratio)
+    else:
+        ratio = positive * unit.positive
+        np.maximum(ratio, np.multiply(negative, unit.negative, out=spare), out=ratio)
+    np.maximum(out, ratio, out=out)
+    return ratio
+
+
+def rule_ratios(r: Resistances, force: Demand, edition: str) -> Iterator[tuple[int, Array]]:
+    """Ratio (..., m) of each rule under one combination a member: demands (..., m), `r` at the duration of each."""
+    column, beam = limit("column slenderness", edition=edition), limit("bending slenderness", edition=edition)
+    least_force, least_moment = NEGLIGIBLE * r.area * r.F_c_star, NEGLIGIBLE * r.modulus * r.F_b_star
+
+    def acting(values: Array, least: Array) -> Array:
+        return np.where(values > least, values, 0.0)
+
+    f_t, f_c = acting(force.tension, least_force) / r.area, acting(force.compression, least_force) / r.area
+    upper, lower = (acting(m, least_moment) / r.modulus for m in (force.moment_positive, force.moment_negative))
+    f_b = np.maximum(upper, lower)
+    relief = 0.0 if force.tension_least is None else acting(force.tension_least, least_force) / r.area
+    F_c = np.where(f_b > 0, r.stiffened.F_c, r.plain.F_c)
+    bending = np.maximum(np.maximum((upper - relief) / r.positive.F_b, (lower - relief) / r.negative.F_b), 0.0)
+    both = (f_c > 0) & (f_b > 0)
+    margin = 1 - f_c / r.stiffened.F_cE1
+    amplified = (f_c / F_c) ** 2 + bending / np.maximum(margin, AMPLIFIER_FLOOR)
+    twist = np.maximum(upper / r.positive.F_bE, lower / r.negative.F_bE)
+    yield TENSION, f_t / r.F_t
+    yield COMPRESSION, f_c / F_c
+    yield SLENDER_COLUMN, np.where(f_c > 0, r.slenderness / column, 0.0)
+    yield BENDING, np.where(f_t > 0, 0.0, bending)
+    yield BENDING_LESS_TENSION, np.where(f_t > 0, bending, 0.0)
+    yield SLENDER_BEAM, np.maximum((upper > 0) * r.positive.R_B, (lower > 0) * r.negative.R_B) / beam
+    yield TENSION_BENDING, f_t / r.F_t + f_b / r.F_b_star
+    yield COMPRESSION_BENDING, np.where(both & (margin >= AMPLIFIER_FLOOR), amplified, 0.0)
+    yield EULER, np.where(both & (margin < AMPLIFIER_FLOOR), amplified, 0.0)
+    yield STABILITY, both * (f_c / r.F_cE2 + twist**2)
+    yield SHEAR, 1.5 * force.shear / (r.area * r.F_v)

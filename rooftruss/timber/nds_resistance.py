@@ -4,9 +4,10 @@ Arrays are (..., m), or (..., d, m) where d counts distinct load duration or tim
 worked out once per duration, not once per combination.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
+from numpy.typing import NDArray
 
 from rooftruss.timber import nds_formulas as nds
 from rooftruss.timber.nds_tables import effective_bending_length, sheathed_chord
@@ -89,6 +90,29 @@ def resistances(members: Members, duration: Array, *, edition: str, buckling_sti
         stiffened=stiffened,
         positive=_lateral(members, members.lu_positive, F_b_star, edition),
         negative=_lateral(members, members.lu_negative, F_b_star, edition),
+    )
+
+
+def at_durations(r: Resistances, duration: NDArray[np.intp], batch: tuple[int, ...]) -> Resistances:
+    """Resistances with one duration a member instead of all: number `duration` (..., m) of (..., d, m)."""
+
+    def taken(values: Array) -> Array:
+        every = np.broadcast_to(values, (*batch, *values.shape[-2:]))
+        return np.take_along_axis(every, duration[..., None, :], -2)[..., 0, :]
+
+    def column(s: Stability) -> Stability:
+        return replace(s, C_P=taken(s.C_P), F_c=taken(s.F_c))
+
+    def beam(s: Lateral) -> Lateral:
+        return replace(s, C_L=taken(s.C_L), F_b=taken(s.F_b))
+
+    return replace(
+        r,
+        **{name: taken(getattr(r, name)) for name in ("F_t", "F_v", "F_b_star", "F_c_star")},
+        plain=column(r.plain),
+        stiffened=column(r.stiffened),
+        positive=beam(r.positive),
+        negative=beam(r.negative),
     )
 
 

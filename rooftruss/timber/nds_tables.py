@@ -157,6 +157,11 @@ def limit(name: str, *, edition: str) -> float:
     return _number(table(edition, "limit").where(limit=name), "value")
 
 
+def effective_length(role: str, *, edition: str) -> float:
+    """K_e [-] of a column in the plane of the truss, by the role of the member; NDS 3.7.1.2 and Appendix G."""
+    return _number(table(edition, "effective length").where(role=role), "factor")
+
+
 def creep_factor(moisture: str, *, edition: str) -> float:
     """Time dependent deformation factor K_cr [-]; NDS 3.5.2."""
     return _number(table(edition, "creep").where(moisture=moisture), "K_cr")

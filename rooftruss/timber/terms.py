@@ -10,6 +10,7 @@ from typing import Protocol
 import numpy as np
 from numpy.typing import NDArray
 
+from rooftruss.analysis.envelope import Peak
 from rooftruss.basis.grades import Grade
 from rooftruss.basis.sections import Section
 
@@ -65,6 +66,26 @@ class Durations:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Bays:
+    """Members as columns in the plane of the truss: lengths (..., m) [m], and what runs through over panel points."""
+
+    length: Array  # from panel point to panel point
+    roles: tuple[str, ...]
+    runs: tuple[tuple[int, ...], ...]  # members without a hinge between them, each run from the left, tails included
+    loaded: Flags  # (m,) dead load acts between the panel points
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Simplified:
+    """A simplified analysis that a standard allows: what it does to moments, and to which trusses it is kept."""
+
+    clause: str
+    support_moments: float  # moments over inner supports of chords are taken this many times
+    height_over_span: float  # least height of the truss
+    height_over_depth: float  # least height over the depth of the deepest chord
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Rule:
     """One requirement of a standard."""
 
@@ -74,11 +95,12 @@ class Rule:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Checks:
-    """Utilisation (..., k, m) of the worst rule, and which of `rules` that is."""
+    """Utilisation (..., k, m); of each member the largest, its combination (-1 where nothing acts), and its rule."""
 
     rules: tuple[Rule, ...]
     utilisation: Array
-    rule: NDArray[np.int8]
+    governing: Peak  # (..., m)
+    rule: NDArray[np.int8]  # (..., m) number among `rules`
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -111,6 +133,16 @@ class TimberStandard(Protocol):
     @property
     def notes(self) -> tuple[str, ...]:
         """Choices and limits of this standard that belong among the printed assumptions."""
+
+    @property
+    def simplified(self) -> Simplified | None:
+        """The simplified analysis that the job asks for; None: forces are those of the frame."""
+
+    def truss_notes(self, length: float) -> tuple[str, ...]:
+        """What the standard asks of a truss of `length` over all [m] that is not checked, for the assumptions."""
+
+    def effective_lengths(self, bays: Bays) -> Array:
+        """Effective lengths (..., m) [m] of members in compression in the plane of the truss."""
 
     def properties(self, grade: Grade, section: Section) -> dict[str, float]:
         """Everything `check` needs of a grade in a size, SI; always with E (mean, for analysis) and density [kg/m3]."""

@@ -17,6 +17,7 @@ from rooftruss.timber import ec5_formulas as ec5
 from rooftruss.timber.ec5 import ec5_standard
 from rooftruss.timber.terms import Demand, Durations, Members
 from tests.load_resultants import force, reactions
+from tests.nds_support import each_combination
 from tests.roofs import roof_of
 
 few = settings(max_examples=40, deadline=None)
@@ -223,12 +224,13 @@ def test_explained_checks_agree_with_the_batch(batch):
         alone, loads = one_of(members, demand, b)
         own = standard.check(alone, loads, durations)
         np.testing.assert_array_equal(own.utilisation, checks.utilisation[b])
-        for k in range(5):
+        for k, single in enumerate(each_combination(standard, alone, loads, durations)):
             for m in range(4):
                 steps = standard.explain(alone, loads, durations, m, k)
-                assert steps[-1].value == pytest.approx(checks.utilisation[b, k, m], rel=1e-12, abs=1e-15)
-                if checks.utilisation[b, k, m] > 0:
-                    assert checks.rules[checks.rule[b, k, m]].clause in steps[-1].clause
+                assert steps[-1].value == pytest.approx(checks.utilisation[b, k, m], rel=1e-12, abs=1e-12)
+                assert single.governing.value[m] == pytest.approx(steps[-1].value, rel=1e-12, abs=1e-9)
+                if single.governing.combination[m] == 0:
+                    assert checks.rules[single.rule[m]].clause in steps[-1].clause
 
 
 @few

@@ -8,7 +8,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from rooftruss.timber.terms import Demand, Durations, Members
-from tests.nds_support import members, nds
+from tests.nds_support import each_combination, members, nds
 
 GRADES = ("SPF No.1/No.2", "SPF Stud", "SP No.2", "DF-L SS", "SPF 2100f-1.8E")
 DURATIONS = ("permanent", "ten years", "two months", "seven days", "ten minutes")
@@ -115,14 +115,13 @@ def test_a_longer_member_is_never_stronger(situation, which, times):
 def test_explained_and_checked_utilisation_agree(situation):
     code, made, load, lasting = situation
     found = code.check(made, load, lasting)
-    for combination in range(found.utilisation.shape[0]):
+    for combination, alone in enumerate(each_combination(code, made, load, lasting)):
         for member in range(found.utilisation.shape[1]):
             last = code.explain(made, load, lasting, member, combination)[-1]
-            expected = found.utilisation[combination, member]
-            assert last.value == pytest.approx(expected, rel=1e-12, abs=1e-15)
-            if expected > 0:
-                rule = found.rules[found.rule[combination, member]]
-                assert last.clause.endswith(rule.clause)
+            assert last.value == pytest.approx(found.utilisation[combination, member], rel=1e-12, abs=1e-12)
+            assert last.value == pytest.approx(alone.governing.value[member], rel=1e-12, abs=1e-9)
+            if alone.governing.combination[member] == 0:
+                assert last.clause.endswith(found.rules[alone.rule[member]].clause)
 
 
 def stacked(parts, kind):

@@ -8,15 +8,16 @@ from rooftruss.basis.sections import Section, find_section
 from rooftruss.errors import JobError, OutOfScopeError
 from rooftruss.timber.check import standard
 from rooftruss.units import FOOT, INCH, PCF, POUND_FORCE, PSI
-from tests.nds_support import OPTIONS, demand, durations, members, nds
+from tests.nds_support import OPTIONS, demand, durations, each_combination, members, nds
 
 
 def worst(code, member, rows, lasting):
     """(utilisation, clause) of each combination of one member."""
-    checks = code.check(members(code, member), demand(*rows), lasting)
-    return [
-        (float(u), checks.rules[r].clause) for u, r in zip(checks.utilisation[:, 0], checks.rule[:, 0], strict=True)
-    ]
+    made, loads = members(code, member), demand(*rows)
+    together = code.check(made, loads, lasting).utilisation[:, 0]
+    alone = each_combination(code, made, loads, lasting)
+    assert together.tolist() == [float(c.utilisation[0, 0]) for c in alone]
+    return [(float(c.governing.value[0]), c.rules[c.rule[0]].clause) for c in alone]
 
 
 def steps(code, member, row, lasting):

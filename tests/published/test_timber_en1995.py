@@ -75,7 +75,7 @@ def explained(standard: Ec5, row: dict, loads: Demand, durations: Durations = SH
     steps = standard.explain(member, loads, durations, 0, 0)
     checks = standard.check(member, loads, durations)
     assert steps[-1].value == pytest.approx(float(checks.utilisation[0, 0]), rel=1e-12)
-    assert RULES[int(checks.rule[0, 0])].clause in steps[-1].clause
+    assert RULES[int(checks.rule[0])].clause in steps[-1].clause
     found = {step.symbol: step.value for step in steps}
     return found | {step.clause.split("eq. ")[-1]: step.value for step in steps if "eq. (6." in step.clause}
 
