@@ -2,17 +2,20 @@
 
 from collections.abc import Iterator
 from dataclasses import dataclass, fields
+from functools import cache
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.analysis.envelope import Envelope, Peak, larger_of_signs, peak
 from rooftruss.analysis.frame import Solution
-from rooftruss.loads.cases import LoadCases, first_segments, further_segments, sum_segments
+from rooftruss.loads.cases import LoadCases, first_segments, sum_segments
 from rooftruss.shapes.truss import Truss
 
 Array = NDArray[np.float64]
-BLOCK = 32_000  # segments x combinations worked on at a time: about 256 kB an array
+BLOCK = 96_000  # segments x combinations worked on at a time: about 768 kB an array
+TINY = 1e-200  # [N m] nothing next to what a load does to a segment
 SLIVER = 1e-6  # [m] a shorter segment is two cuts a rounding apart; its step of moment over its length says nothing
 
 
@@ -21,11 +24,13 @@ class UnitEffects:
     """Internal forces of every case at the ends of each segment; between them axial force and shear are linear and
     the moment is a parabola. Sums of these with any factors are again of that form.
 
-    member_of (s,); run (..., s) segment lengths [m]; values (..., c, 5 s): moment at start and end, load across,
-    axial force at start and end of each segment, in blocks of s [N m, N m, N/m, N, N].
+    member_of (s,); jumps: segments at whose start a point load acts; run (..., s) segment lengths [m]; values
+    (..., c, 5 s): moment at start and end, load across, axial force at start and end of each segment, in blocks of s
+    [N m, N m, N/m, N, N].
     """
 
     member_of: tuple[int, ...]
+    jumps: tuple[int, ...]
     members: int
     run: Array
     values: Array
@@ -59,7 +64,13 @@ def unit_effects(truss: Truss, cases: LoadCases, solution: Solution) -> UnitEffe
             shear0[..., case, s] += shear
         axial1[..., s] = axial0[..., s] - axial_step[..., s]
         moment1[..., s] = moment0[..., s] + shear0[..., s] * run[..., s] + moment_step[..., s]
-    return UnitEffects(member_of=cases.member_of, members=truss.length.shape[-1], run=run[..., 0, :], values=values)
+    return UnitEffects(
+        member_of=cases.member_of,
+        jumps=tuple(sorted(jumps)),
+        members=truss.length.shape[-1],
+        run=run[..., 0, :],
+        values=values,
+    )
 
 
 def _jumps(truss: Truss, cases: LoadCases) -> dict[int, list[tuple[int, Array, Array]]]:
@@ -115,96 +126,165 @@ def combined_extremes(effects: UnitEffects, factors: Array) -> Extremes:
     The moment of a segment is largest at an end or where its shear passes zero (the vertex of its parabola).
     """
     batch, count = effects.values.shape[:-2], int(np.prod(effects.values.shape[:-2]))
-    out = np.empty((5, count, len(factors), effects.members))
+    out = np.empty((5, effects.members, count, len(factors)))
     for rows, found in _blocks(effects, factors):
-        for target, values in zip(out, found, strict=True):
-            target[rows] = np.swapaxes(values, 1, 2)
-    shape = (*batch, len(factors), effects.members)
-    return Extremes(**{f.name: array.reshape(shape) for f, array in zip(fields(Extremes), out, strict=True)})
+        out[:, :, rows] = found
+    names = [f.name for f in fields(Extremes)]
+    return Extremes(**{n: _by_combination(array, batch) for n, array in zip(names, out, strict=True)})
 
 
 def demands_and_envelope(effects: UnitEffects, factors: Array) -> tuple[Demands, Envelope]:
     """Demands on every member under the strength combinations `factors` (k, c), and their envelope.
 
-    The same extremes as `combined_extremes`, split by sign, with the envelope taken while they are at hand.
+    The same extremes as `combined_extremes`, split by sign, with the envelope taken while they are at hand. In memory
+    the combinations stand last, where the checks want them.
     """
     batch, count = effects.values.shape[:-2], int(np.prod(effects.values.shape[:-2]))
-    out = np.empty((6, count, len(factors), effects.members))
-    peaks = []
+    out = np.empty((6, effects.members, count, len(factors)))
+    value, number = np.empty((5, effects.members, count)), np.empty((5, effects.members, count), np.intp)
     for rows, found in _blocks(effects, factors):
-        parts = _split_by_sign(*found)
-        out[:, rows] = np.swapaxes(parts, 2, 3)
-        peaks.append(peak(parts[:5], -1))
-    value = np.concatenate([p.value for p in peaks], axis=1).reshape(5, *batch, effects.members)
-    number = np.concatenate([p.combination for p in peaks], axis=1).reshape(value.shape)
-    tension, compression, high, low, shear = (Peak(value=v, combination=n) for v, n in zip(value, number, strict=True))
-    shape = (*batch, len(factors), effects.members)
-    demands = Demands(**{f.name: array.reshape(shape) for f, array in zip(fields(Demands), out, strict=True)})
+        parts = out[:, :, rows]
+        _split_by_sign(found, parts)
+        most = peak(parts[:5], -1)
+        value[:, :, rows], number[:, :, rows] = most.value, most.combination
+    shape = (*batch, effects.members)
+    peaks = (Peak(value=v.T.reshape(shape), combination=n.T.reshape(shape)) for v, n in zip(value, number, strict=True))
+    tension, compression, high, low, shear = peaks
+    names = [f.name for f in fields(Demands)]
+    demands = Demands(**{n: _by_combination(array, batch) for n, array in zip(names, out, strict=True)})
     return demands, Envelope(tension=tension, compression=compression, moment=larger_of_signs(high, low), shear=shear)
 
 
-def _split_by_sign(axial_max: Array, axial_min: Array, moment_max: Array, moment_min: Array, shear: Array) -> Array:
-    """The six fields of Demands (6, b, m, k) from the five extremes (b, m, k)."""
-    parts = np.empty((6, *shear.shape))
-    np.maximum(axial_max, 0.0, out=parts[0])
-    np.negative(axial_min, out=parts[1])
-    np.maximum(moment_max, 0.0, out=parts[2])
-    np.negative(moment_min, out=parts[3])
-    parts[4] = shear
-    np.maximum(axial_min, 0.0, out=parts[5])
-    np.maximum(parts[1:4:2], 0.0, out=parts[1:4:2])
-    return parts
+def _by_combination(values: Array, batch: tuple[int, ...]) -> Array:
+    """(m, b, k) seen as (..., k, m): no copy for a batch of one axis or none."""
+    return values.transpose(1, 2, 0).reshape(*batch, values.shape[2], values.shape[0])
 
 
-def _blocks(effects: UnitEffects, factors: Array) -> Iterator[tuple[slice, tuple[Array, ...]]]:
-    """Extremes (b, m, k) of blocks of trusses small enough for the processor's cache, combinations last in memory."""
-    batch = effects.values.shape[:-2]
-    unit = effects.values.reshape(-1, *effects.values.shape[-2:])
-    run = np.broadcast_to(effects.run, (*batch, effects.run.shape[-1])).reshape(len(unit), -1)
-    columns = np.ascontiguousarray(factors.T)
-    step = max(1, BLOCK // (len(effects.member_of) * len(factors)))
-    for start in range(0, len(unit), step):
-        rows = slice(start, start + step)
-        yield rows, _block_extremes(unit[rows], run[rows], effects.member_of, columns)
+def _split_by_sign(found: Array, out: Array) -> None:
+    """The six fields of Demands (6, m, b, k) from the five extremes (5, m, b, k)."""
+    axial_max, axial_min, moment_max, moment_min, shear = found
+    np.maximum(axial_max, 0.0, out=out[0])
+    np.negative(np.minimum(axial_min, 0.0, out=out[1]), out=out[1])
+    np.maximum(moment_max, 0.0, out=out[2])
+    np.negative(np.minimum(moment_min, 0.0, out=out[3]), out=out[3])
+    out[4] = shear
+    np.maximum(axial_min, 0.0, out=out[5])
 
 
-def _block_extremes(unit: Array, run: Array, member_of: tuple[int, ...], factors: Array) -> tuple[Array, ...]:
-    """The five extremes (b, m, k) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k)."""
+@dataclass(frozen=True, slots=True)
+class _Stations:
+    """Where the extremes of a topology can be: columns of UnitEffects.values, in rows that stand together by member.
+
+    A moment stands at every end of a segment, once where two segments meet; an axial force too, but twice where a point
+    load makes it jump. rows of member m: moments[m], axials[m], segments[m] as (first, end); at[s] is the moment row at
+    the start of segment s.
+    """
+
+    columns: NDArray[np.intp]
+    moments: tuple[tuple[int, int], ...]
+    axials: tuple[tuple[int, int], ...]
+    segments: tuple[tuple[int, int], ...]
+    at: NDArray[np.intp]
+    first_load: int
+    first_axial: int
+
+
+@cache
+def _stations(member_of: tuple[int, ...], jumps: tuple[int, ...]) -> _Stations:
+    """jumps: segments at whose start a point load acts."""
     count = len(member_of)
-    values = np.matmul(np.swapaxes(unit, 1, 2), factors)
-    m0, m1, load, n0, n1 = (values[:, i * count : (i + 1) * count] for i in range(5))
-    axial_max = _over_members(np.maximum, np.maximum(n0, n1), member_of)
-    axial_min = _over_members(np.minimum, np.minimum(n0, n1, out=n0), member_of)
-    per_run = np.divide(1.0, run, out=np.zeros_like(run), where=run > SLIVER)[..., None]
-    shear_mean = (m1 - m0) * per_run
-    half = load * (run / 2)[..., None]
-    steady, change = np.abs(shear_mean), np.abs(half)
-    inside = change > steady  # the shear passes zero within the segment
-    shear_mean -= half  # now the shear at the start
-    shear_mean *= shear_mean
-    bulge = np.divide(shear_mean, load, out=np.zeros_like(load), where=inside)
-    bulge *= -0.5
-    bulge += m0
-    high = np.maximum(m0, m1)
-    low = np.minimum(m0, m1, out=m0)
-    return (
-        axial_max,
-        axial_min,
-        _over_members(np.maximum, np.maximum(high, bulge, out=high), member_of),
-        _over_members(np.minimum, np.minimum(low, bulge, out=low), member_of),
-        _over_members(np.maximum, np.add(steady, change, out=steady), member_of),
+    moment0, moment1, load, axial0, axial1 = (i * count for i in range(5))
+    moments: list[int] = []
+    axials: list[int] = []
+    at: list[int] = []
+    stops: dict[str, list[int]] = {"moments": [], "axials": [], "segments": []}
+    for s, member in enumerate(member_of):
+        if s == 0 or member != member_of[s - 1]:
+            for name, rows in (("moments", moments), ("axials", axials), ("segments", at)):
+                stops[name].append(len(rows))
+            moments.append(moment0 + s)
+            axials.append(axial0 + s)
+        elif s in jumps:
+            axials.append(axial0 + s)
+        at.append(len(moments) - 1)
+        moments.append(moment1 + s)
+        axials.append(axial1 + s)
+    ends = {"moments": len(moments), "axials": len(axials), "segments": count}
+    spans = {name: tuple(pairwise([*rows, ends[name]])) for name, rows in stops.items()}
+    return _Stations(
+        columns=np.array([*moments, *range(load, load + count), *axials]),
+        at=np.array(at),
+        first_load=len(moments),
+        first_axial=len(moments) + count,
+        **spans,
     )
 
 
-def _over_members(ufunc: np.ufunc, values: Array, member_of: tuple[int, ...]) -> Array:
-    """Extreme over the segments (b, s, k) of each member (b, m, k)."""
-    first, _ = first_segments(member_of)
-    if len(first) == len(member_of):
-        return values
-    out = values[:, first]
-    for members, segments in further_segments(member_of):
-        out[:, members] = ufunc(out[:, members], values[:, segments])
+def _blocks(effects: UnitEffects, factors: Array) -> Iterator[tuple[slice, Array]]:
+    """Extremes (5, m, b, k) of blocks of trusses small enough for the processor's cache."""
+    batch = effects.values.shape[:-2]
+    unit = effects.values.reshape(-1, *effects.values.shape[-2:])
+    run = np.broadcast_to(effects.run, (*batch, effects.run.shape[-1])).reshape(len(unit), -1)
+    where, columns = _stations(effects.member_of, effects.jumps), np.ascontiguousarray(factors.T)
+    step = max(1, BLOCK // (len(effects.member_of) * max(1, len(factors))))
+    for start in range(0, len(unit), step):
+        rows = slice(start, start + step)
+        yield rows, _block_extremes(unit[rows], run[rows], where, columns)
+
+
+def _block_extremes(unit: Array, run: Array, where: _Stations, factors: Array) -> Array:
+    """The five extremes (5, m, b, k) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k).
+
+    All rows of all trusses are multiplied with the factors at once; every pass after it is over whole rows (b, k).
+    Forces are taken times the length of the segment, so that only the shear has to be divided by it.
+    """
+    rows = np.ascontiguousarray(unit[:, :, where.columns].transpose(2, 0, 1))
+    length = run.T[:, :, None]
+    rows[where.first_load : where.first_axial] *= length**2 / 2
+    values = (rows.reshape(-1, rows.shape[-1]) @ factors).reshape(*rows.shape[:2], -1)
+    moments, axials = values[: where.first_load], values[where.first_axial :]
+    half = values[where.first_load : where.first_axial]  # half the step of the shear over a segment, times its length
+    out = np.empty((5, len(where.segments), *values.shape[1:]))
+    _over_members(np.maximum, axials, where.axials, out[0])
+    _over_members(np.minimum, axials, where.axials, out[1])
+    _over_members(np.maximum, moments, where.moments, out[2])
+    _over_members(np.minimum, moments, where.moments, out[3])
+    start = moments[where.at]
+    mean = moments[where.at + 1]
+    mean -= start  # mean shear, times the length
+    steady, change = np.abs(mean), np.abs(half)
+    inside = (change > steady).astype(np.float64)  # the shear passes zero within the segment
+    steady += change
+    steady *= np.divide(1.0, length, out=np.zeros_like(length), where=length > SLIVER)
+    _over_members(np.maximum, steady, where.segments, out[4])
+    mean -= half  # now the shear V0 at the start
+    mean *= mean
+    half *= -4.0
+    half -= TINY  # a segment without load has no vertex; 0 over this is 0
+    mean /= half
+    mean *= inside
+    mean += start  # moment at the vertex, m0 - V0^2 / (2 w); at the start where there is none
+    _fold(np.maximum, mean, where.segments, out[2])
+    _fold(np.minimum, mean, where.segments, out[3])
     return out
+
+
+def _over_members(ufunc: np.ufunc, values: Array, spans: tuple[tuple[int, int], ...], out: Array) -> None:
+    """Extreme over the rows (r, b, k) of each member into `out` (m, b, k)."""
+    for target, (first, end) in zip(out, spans, strict=True):
+        if end - first == 1:
+            target[...] = values[first]
+        else:
+            ufunc(values[first], values[first + 1], out=target)
+            for row in range(first + 2, end):
+                ufunc(target, values[row], out=target)
+
+
+def _fold(ufunc: np.ufunc, values: Array, spans: tuple[tuple[int, int], ...], out: Array) -> None:
+    """The same, on top of what is in `out`."""
+    for target, (first, end) in zip(out, spans, strict=True):
+        for row in range(first, end):
+            ufunc(target, values[row], out=target)
 
 
 def mid_deflections(truss: Truss, cases: LoadCases, effects: UnitEffects, solution: Solution, ei: Array) -> Array:

@@ -6,7 +6,6 @@ each rule by itself, for the combination that governs.
 
 from collections.abc import Iterator
 from dataclasses import dataclass, fields
-from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -61,29 +60,20 @@ class _Unit:
     least_force: Array
     least_moment: Array
 
-    def at(self, trusses: slice, duration: int) -> "_Unit":
-        """Of some trusses and one duration."""
-        every = {f.name: getattr(self, f.name) for f in fields(_Unit)}
-        one = slice(duration, duration + 1)
-        return _Unit(**{n: v[trusses] if v.shape[-1] == 1 else v[trusses, :, one] for n, v in every.items()})
-
 
 def utilisations(r: Resistances, demand: Demand, index: NDArray[np.intp], edition: str) -> Array:
     """Largest ratio (..., k, m) of all rules; index (k,) tells which duration of `r` each combination has.
 
     Rules that cannot be the largest are left out: 3.8.1 beside eq. 3.9-1. Members come before combinations in memory,
-    as in the effects, and neighbouring combinations of one duration are taken together: every pass is over long rows.
+    as in the effects, so that every pass is over long rows.
     """
     unit = _unit_ratios(r, demand.tension.shape[:-2], edition)
     names = (*_FORCES, *(("tension_least",) if demand.tension_least is not None else ()))
     forces = [by_member(getattr(demand, name)) for name in names]
     out = np.empty(forces[0].shape)
-    stops = [0, *(np.flatnonzero(np.diff(index)) + 1), len(index)]
     for part in blocks(out.shape):
-        for first, end in pairwise(stops):
-            own = unit.at(part, int(index[first]) if first < end else 0)
-            here = [values[part, :, first:end] for values in forces]
-            _largest(own, here, out[part, :, first:end], stiffened=r.stiffened is not r.plain)
+        own = _Unit(**{f.name: getattr(unit, f.name)[part] for f in fields(_Unit)})
+        _largest(own, [values[part] for values in forces], index, out[part], stiffened=r.stiffened is not r.plain)
     return np.swapaxes(out, -1, -2).reshape(demand.tension.shape)
 
 
@@ -118,23 +108,27 @@ def _flat(values: Array, batch: tuple[int, ...]) -> Array:
     return np.broadcast_to(values, (*batch, *values.shape[-2:])).reshape(-1, *values.shape[-2:])
 
 
-def _largest(unit: _Unit, forces: list[Array], out: Array, *, stiffened: bool) -> None:
-    """Largest ratio of one block of trusses under combinations of one duration, into `out` (b, m, k).
+def _largest(unit: _Unit, forces: list[Array], index: NDArray[np.intp], out: Array, *, stiffened: bool) -> None:
+    """Largest ratio of one block of trusses into `out` (b, m, k).
 
     stiffened: some member takes C_T, where it is bent as well (4.4.2).
     """
     tension, compression, positive, negative, shear = forces[:5]
     moment = np.maximum(positive, negative)
-    np.multiply(tension, unit.tension, out=out)
-    spare = moment * unit.star
+
+    def lasting(ratio: Array) -> Array:
+        return np.take(ratio, index, axis=-1)
+
+    np.multiply(tension, lasting(unit.tension), out=out)
+    spare = moment * lasting(unit.star)
     out += spare  # 3.9-1
-    np.maximum(out, np.multiply(shear, unit.shear, out=spare), out=out)
-    bending = _bending(unit, forces, out, spare)
+    np.maximum(out, np.multiply(shear, lasting(unit.shear), out=spare), out=out)
+    bending = _bending(unit, forces, index, out, spare)
     pressed = (compression > unit.least_force).astype(np.float64)
     bent = (moment > unit.least_moment).astype(np.float64)
-    squeezed = compression * unit.compression
+    squeezed = compression * lasting(unit.compression)
     if stiffened:
-        np.multiply(compression, unit.compression_bent, out=squeezed, where=bent >= 1)
+        np.multiply(compression, lasting(unit.compression_bent), out=squeezed, where=bent > 0)
     np.maximum(out, squeezed, out=out)
     np.maximum(out, pressed * unit.slender, out=out)
     bent *= pressed  # both
@@ -154,23 +148,23 @@ def _largest(unit: _Unit, forces: list[Array], out: Array, *, stiffened: bool) -
     np.maximum(out, twist, out=out)  # 3.9-4
 
 
-def _bending(unit: _Unit, forces: list[Array], out: Array, spare: Array) -> Array:
+def _bending(unit: _Unit, forces: list[Array], index: NDArray[np.intp], out: Array, spare: Array) -> Array:
     """f_b/F_b by 3.3.1, or 3.9-2 where tension relieves it, counted into `out` with 3.3.3.7; `spare` is used."""
     positive, negative = forces[2:4]
     for slender, moment in ((unit.slender_positive, positive), (unit.slender_negative, negative)):
         if slender.any():
             np.multiply((moment > unit.least_moment).astype(np.float64), slender, out=spare)
             np.maximum(out, spare, out=out)
+    upper, lower = (np.take(ratio, index, axis=-1) for ratio in (unit.positive, unit.negative))
     if len(forces) > len(_FORCES):
-        relief = forces[5] * unit.relief
-        ratio = positive - relief
-        ratio *= unit.positive
-        np.subtract(negative, relief, out=relief)
-        np.maximum(ratio, np.multiply(relief, unit.negative, out=relief), out=ratio)
-        np.maximum(ratio, 0.0, out=ratio)
+        relief = np.multiply(forces[5], unit.relief, out=spare)
+        upper *= positive - relief
+        lower *= np.subtract(negative, relief, out=relief)
+        np.maximum(upper, 0.0, out=upper)
     else:
-        ratio = positive * unit.positive
-        np.maximum(ratio, np.multiply(negative, unit.negative, out=spare), out=ratio)
+        upper *= positive
+        lower *= negative
+    ratio = np.maximum(upper, lower, out=upper)
     np.maximum(out, ratio, out=out)
     return ratio
 
