@@ -15,6 +15,7 @@ from rooftruss import __version__
 from rooftruss.errors import JobError, OutputError, RooftrussError, nearest
 
 if TYPE_CHECKING:
+    from rooftruss.basis.job import Job
     from rooftruss.design.design import Design
     from rooftruss.output.schedule import Grid
     from rooftruss.run import Result
@@ -193,7 +194,10 @@ def _refuse_job_file(path: Path, job: Path) -> None:
 def _explain_arguments(command: argparse.ArgumentParser) -> None:
     _job_argument(command)
     command.add_argument("mark", help="truss, for example T1")
-    command.add_argument("member", help="'top 1', 'bearing A', or a load case such as 'snow, balanced'")
+    command.add_argument(
+        "member",
+        help="'top 1', 'bearing A', 'deflection at B', 'deflection at top 1', or a load case such as 'snow, balanced'",
+    )
     command.add_argument(
         "--combination", metavar="N", help="number or name of a combination; default: the governing one"
     )
@@ -261,30 +265,40 @@ def _shapes(given: argparse.Namespace) -> int:
 def _schemes_arguments(command: argparse.ArgumentParser) -> None:
     command.add_argument("name", nargs="?", help="one scheme, to see its combinations")
     command.add_argument(
-        "--job", type=Path, help="job file: also count the combinations the scheme makes for each truss"
+        "--job",
+        type=Path,
+        help="job file: show the factors as on its site, and count the combinations the scheme makes for each truss",
     )
 
 
 def _schemes(given: argparse.Namespace) -> int:
+    from rooftruss.basis.jobform import read_job
+    from rooftruss.basis.scheme_variants import require_like, variants_of
     from rooftruss.basis.schemes import load_scheme
-    from rooftruss.output.catalogue_grids import legend_grid, scheme_grid, schemes_grid
+    from rooftruss.output.catalogue_grids import legend_grid, scheme_grid, schemes_grid, variants_text
+    from rooftruss.output.terminal import print_text
 
     if given.name is None:
         return _print(schemes_grid())
-    folder = given.job.parent if given.job else Path()
-    scheme = load_scheme(given.name, folder)
+    job, folder = (read_job(given.job), given.job.parent) if given.job else (None, Path())
+    scheme = load_scheme(given.name, folder, job.site if job else None)
+    if job:
+        require_like(job, scheme)
     _print(scheme_grid(scheme))
     _print(legend_grid(scheme))
-    return _count_combinations(given.job, given.name) if given.job else DONE
+    if job:
+        return _count_combinations(job, given.name)
+    if text := variants_text(variants_of(scheme, given.name)):
+        print_text(text)
+    return DONE
 
 
-def _count_combinations(path: Path, scheme: str) -> int:
+def _count_combinations(job: "Job", scheme: str) -> int:
     from dataclasses import replace
 
-    from rooftruss.basis.jobform import read_job
     from rooftruss.design.stages import combinations_of
 
-    job = replace(read_job(path), scheme=scheme)
+    job = replace(job, scheme=scheme)
     for spec in job.trusses:
         made = combinations_of(job, spec)
         strength = int(made.strength.sum())
@@ -363,7 +377,11 @@ COMMANDS: dict[str, Command] = {
     "size": ("size one truss, everything not given taken from a job", _size_arguments, _size),
     "compare": ("every shape of the catalogue for one roof", _compare_arguments, _compare),
     "envelope": ("governing effects of every member, or the result file", _envelope_arguments, _envelope),
-    "explain": ("the check of one member or bearing, or a load case, clause by clause", _explain_arguments, _explain),
+    "explain": (
+        "the check of one member, bearing or deflection, or a load case, clause by clause",
+        _explain_arguments,
+        _explain,
+    ),
     "inspect": ("zero-force members of a truss, case by case", _inspect_arguments, _inspect),
     "shapes": ("the shapes of the catalogue", _no_arguments, _shapes),
     "schemes": ("the combination schemes, or the combinations of one", _schemes_arguments, _schemes),

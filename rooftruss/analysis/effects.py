@@ -1,7 +1,7 @@
 """Effects of each case along the members, and their exact extremes under every combination."""
 
 from collections.abc import Iterator
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 from functools import cache
 from itertools import pairwise
 
@@ -10,11 +10,11 @@ from numpy.typing import NDArray
 
 from rooftruss.analysis.envelope import Envelope, Peak, larger_of_signs, peak
 from rooftruss.analysis.frame import Solution
-from rooftruss.loads.cases import LoadCases, first_segments, sum_segments
+from rooftruss.loads.cases import LoadCases, first_segments, loads_by_segment, sum_segments
 from rooftruss.shapes.truss import Truss
 
 Array = NDArray[np.float64]
-BLOCK = 96_000  # segments x combinations worked on at a time: about 768 kB an array
+BLOCK = 64_000  # segments x combinations worked on at a time: about 512 kB an array
 TINY = 1e-200  # [N m] nothing next to what a load does to a segment
 SLIVER = 1e-6  # [m] a shorter segment is two cuts a rounding apart; its step of moment over its length says nothing
 
@@ -25,7 +25,7 @@ class UnitEffects:
     the moment is a parabola. Sums of these with any factors are again of that form.
 
     member_of (s,); jumps: segments at whose start a point load acts; run (..., s) segment lengths [m]; values
-    (..., c, 5 s): moment at start and end, load across, axial force at start and end of each segment, in blocks of s
+    (5, s, ..., c): moment at start and end, load across, axial force at start and end of each segment
     [N m, N m, N/m, N, N].
     """
 
@@ -35,41 +35,60 @@ class UnitEffects:
     run: Array
     values: Array
 
+    @property
+    def batch(self) -> tuple[int, ...]:
+        """The batch axes."""
+        return self.values.shape[2:-1]
+
+    def part(self, rows: slice) -> "UnitEffects":
+        """Of some trusses of a batch of one axis."""
+        run = self.run if self.run.ndim == 1 else self.run[rows]
+        return replace(self, values=self.values[:, :, rows], run=run)
+
 
 def unit_effects(truss: Truss, cases: LoadCases, solution: Solution) -> UnitEffects:
     """Internal forces along the members from the end forces and the loads on the way."""
     member = list(cases.member_of)
-    run = (cases.x1 - cases.x0)[..., None, :]
-    direction = truss.direction[..., None, member, :]
-    along = cases.q[..., 0] * direction[..., 0] + cases.q[..., 1] * direction[..., 1]
-    across = cases.q[..., 1] * direction[..., 0] - cases.q[..., 0] * direction[..., 1]
-    count = len(member)
-    values = np.empty((*cases.q.shape[:-2], 5 * count))
-    moment0, moment1, load, axial0, axial1 = (values[..., i * count : (i + 1) * count] for i in range(5))
-    axial_step, shear_step = along * run, across * run
-    moment_step = shear_step * (run / 2)
-    load[...] = across
-    at_start = (solution.end_forces[..., k][..., member] for k in range(3))
-    axial0[...], shear0, moment0[...] = (sign * force for sign, force in zip((-1, 1, -1), at_start, strict=True))
-    axial1[...] = axial0 - axial_step
-    moment1[...] = moment0 + shear0 * run + moment_step
+    batch, count = cases.q.shape[:-3], len(member)
+    run, cos, sin = (
+        np.moveaxis(np.broadcast_to(v, (*batch, count)), -1, 0).reshape(count, -1, 1)
+        for v in (cases.x1 - cases.x0, truss.direction[..., member, 0], truss.direction[..., member, 1])
+    )
+    x, y = loads_by_segment(cases)
+    values = np.empty((5, *x.shape))
+    moment0, moment1, load, axial0, axial1 = values
+    np.multiply(y, cos, out=load)
+    load -= x * sin
+    axial_step = x * cos
+    axial_step += y * sin
+    axial_step *= run
+    shear_step = load * run
+    ends = np.moveaxis(solution.end_forces, (-1, -2), (0, 1))
+    at_start = ends.reshape(6, ends.shape[1], -1, ends.shape[-1])
+    shear0 = at_start[1][member]
+    np.negative(at_start[0][member], out=axial0)
+    np.negative(at_start[2][member], out=moment0)
     jumps = _jumps(truss, cases)
     _, rest = first_segments(cases.member_of)
-    for s in sorted({*rest, *jumps}):
-        if s in rest:  # goes on where the segment before it ends
-            axial0[..., s], moment0[..., s] = axial1[..., s - 1], moment1[..., s - 1]
-            shear0[..., s] = shear0[..., s - 1] + shear_step[..., s - 1]
+    later = set(rest)
+    for s in range(count):
+        if s in later:  # goes on where the segment before it ends
+            axial0[s], moment0[s] = axial1[s - 1], moment1[s - 1]
+            np.add(shear0[s - 1], shear_step[s - 1], out=shear0[s])
         for case, axial, shear in jumps.get(s, []):
-            axial0[..., case, s] += axial
-            shear0[..., case, s] += shear
-        axial1[..., s] = axial0[..., s] - axial_step[..., s]
-        moment1[..., s] = moment0[..., s] + shear0[..., s] * run[..., s] + moment_step[..., s]
+            axial0[s, :, case] += np.ravel(axial)
+            shear0[s, :, case] += np.ravel(shear)
+        np.subtract(axial0[s], axial_step[s], out=axial1[s])
+        np.multiply(shear_step[s], 0.5, out=moment1[s])
+        moment1[s] += shear0[s]
+        moment1[s] *= run[s]
+        moment1[s] += moment0[s]
     return UnitEffects(
         member_of=cases.member_of,
         jumps=tuple(sorted(jumps)),
         members=truss.length.shape[-1],
-        run=run[..., 0, :],
-        values=values,
+        run=cases.x1 - cases.x0,
+        values=values.reshape(5, count, *batch, -1),
     )
 
 
@@ -125,7 +144,7 @@ def combined_extremes(effects: UnitEffects, factors: Array) -> Extremes:
 
     The moment of a segment is largest at an end or where its shear passes zero (the vertex of its parabola).
     """
-    batch, count = effects.values.shape[:-2], int(np.prod(effects.values.shape[:-2]))
+    batch, count = effects.batch, int(np.prod(effects.batch))
     out = np.empty((5, effects.members, count, len(factors)))
     for rows, found in _blocks(effects, factors):
         out[:, :, rows] = found
@@ -139,7 +158,7 @@ def demands_and_envelope(effects: UnitEffects, factors: Array) -> tuple[Demands,
     The same extremes as `combined_extremes`, split by sign, with the envelope taken while they are at hand. In memory
     the combinations stand last, where the checks want them.
     """
-    batch, count = effects.values.shape[:-2], int(np.prod(effects.values.shape[:-2]))
+    batch, count = effects.batch, int(np.prod(effects.batch))
     out = np.empty((6, effects.members, count, len(factors)))
     value, number = np.empty((5, effects.members, count)), np.empty((5, effects.members, count), np.intp)
     for rows, found in _blocks(effects, factors):
@@ -222,24 +241,24 @@ def _stations(member_of: tuple[int, ...], jumps: tuple[int, ...]) -> _Stations:
 
 def _blocks(effects: UnitEffects, factors: Array) -> Iterator[tuple[slice, Array]]:
     """Extremes (5, m, b, k) of blocks of trusses small enough for the processor's cache."""
-    batch = effects.values.shape[:-2]
-    unit = effects.values.reshape(-1, *effects.values.shape[-2:])
-    run = np.broadcast_to(effects.run, (*batch, effects.run.shape[-1])).reshape(len(unit), -1)
+    count = len(effects.member_of)
+    unit = effects.values.reshape(5 * count, -1, effects.values.shape[-1])
+    run = np.broadcast_to(effects.run, (*effects.batch, count)).reshape(-1, count).T
     where, columns = _stations(effects.member_of, effects.jumps), np.ascontiguousarray(factors.T)
-    step = max(1, BLOCK // (len(effects.member_of) * max(1, len(factors))))
-    for start in range(0, len(unit), step):
+    step = max(1, BLOCK // (count * max(1, len(factors))))
+    for start in range(0, unit.shape[1], step):
         rows = slice(start, start + step)
-        yield rows, _block_extremes(unit[rows], run[rows], where, columns)
+        yield rows, _block_extremes(unit[:, rows], run[:, rows], where, columns)
 
 
 def _block_extremes(unit: Array, run: Array, where: _Stations, factors: Array) -> Array:
-    """The five extremes (5, m, b, k) of a block of trusses; unit (b, c, 5 s), run (b, s), factors (c, k).
+    """The five extremes (5, m, b, k) of a block of trusses; unit (5 s, b, c), run (s, b), factors (c, k).
 
     All rows of all trusses are multiplied with the factors at once; every pass after it is over whole rows (b, k).
     Forces are taken times the length of the segment, so that only the shear has to be divided by it.
     """
-    rows = np.ascontiguousarray(unit[:, :, where.columns].transpose(2, 0, 1))
-    length = run.T[:, :, None]
+    rows = unit[where.columns]
+    length = run[:, :, None]
     rows[where.first_load : where.first_axial] *= length**2 / 2
     values = (rows.reshape(-1, rows.shape[-1]) @ factors).reshape(*rows.shape[:2], -1)
     moments, axials = values[: where.first_load], values[where.first_axial :]
@@ -294,10 +313,12 @@ def mid_deflections(truss: Truss, cases: LoadCases, effects: UnitEffects, soluti
     the moment of a unit force at the middle, over EI; exact by Simpson's rule on segments cut at the middle.
     """
     made = truss.topology
-    count = len(effects.member_of)
-    m0, m1, load = (effects.values[..., i * count : (i + 1) * count] for i in range(3))
-    w0, w1, w2 = (w[..., None, :] for w in _middle_weights(truss, cases))
-    bend = sum_segments(m0 * w0 + m1 * w1 + load * w2, effects.member_of, np.empty((*m0.shape[:-1], effects.members)))
+    m0, m1, load = effects.values[:3]
+    w0, w1, w2 = (np.moveaxis(w, -1, 0)[..., None] for w in _middle_weights(truss, cases))
+    every = m0 * w0
+    every += m1 * w1
+    every += load * w2
+    bend = np.moveaxis(sum_segments(every, effects.member_of, np.empty((effects.members, *every.shape[1:]))), 0, -1)
     ends = (solution.displacements[..., made.start, 1] + solution.displacements[..., made.end, 1]) / 2
     return np.asarray(ends - bend * (truss.direction[..., 0] / ei)[..., None, :])
 

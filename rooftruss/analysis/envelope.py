@@ -42,8 +42,10 @@ class ReactionEnvelope:
 
 def peak(values: Array, axis: int) -> Peak:
     """Largest of values that are not negative, over the combinations on `axis`."""
-    # with the combinations last in memory the search is several times faster than the copy costs
-    values = np.ascontiguousarray(np.moveaxis(values, axis, -1))
+    values = np.moveaxis(values, axis, -1)
+    if values.strides[-1] != values.itemsize:
+        # with the combinations last in memory the search is several times faster than the copy costs
+        values = np.ascontiguousarray(values)
     top = values.max(axis=-1)
     first = (values >= (top * (1 - TIE))[..., None]).argmax(axis=-1)
     return Peak(value=top, combination=np.where(top > 0, first, -1))

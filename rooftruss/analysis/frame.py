@@ -1,8 +1,8 @@
 """Plane frame: one stiffness matrix per truss, every load case a right-hand side of it.
 
 Members are Bernoulli-Euler beams on their centre lines; moment-free ends are condensed into the element.
-Batch axes lead; `b` below stands for one flattened batch axis. Member-end values are (6, b, c, m) inside this module,
-[along, across, rotation] at the start and the end first, so that each of the six is one block of memory.
+Batch axes lead outside; `b` below stands for one flattened batch axis. Member-end values are (6, m, b, c) inside this
+module, [along, across, rotation] at the start and the end first: each row of one member is one block of memory.
 """
 
 from dataclasses import dataclass, replace
@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 
 from rooftruss.analysis.freedoms import DIRECTIONS, Freedoms, bending_coefficients, freedoms, shape_coefficients
 from rooftruss.errors import UnstableTrussError
-from rooftruss.loads.cases import LoadCases, MemberPoint, sum_segments
+from rooftruss.loads.cases import LoadCases, MemberPoint, loads_by_segment, sum_segments
 from rooftruss.shapes.truss import Topology, Truss
 
 Array = NDArray[np.float64]
@@ -48,16 +48,16 @@ def solve(truss: Truss, stiffness_axial: Array, stiffness_bending: Array, cases:
     on_member = _equivalent_forces(made, cases, length, direction, batch)
     load = _to_nodes(number, _rotate(on_member, direction, back=True))
     if np.any(nodal):
-        load[..., number.of_node] += nodal
-    movement = np.zeros((*load.shape[:2], number.total + 1))
-    movement[..., : number.free] = _factor_and_solve(made, _stiffness(made, ea, ei, length, direction), load)
-    at_ends = np.stack([movement[..., column] for column in number.of_member.T])
-    forces = _end_forces(made, _rotate(at_ends, direction, back=False), ea, ei, length)
+        load[number.of_node] += nodal.transpose(2, 3, 0, 1)
+    movement = np.zeros(load.shape)
+    movement[: number.free] = _factor_and_solve(made, _stiffness(made, ea, ei, length, direction), load)
+    forces = _end_forces(made, _rotate(movement[number.of_member.T], direction, back=False), ea, ei, length)
     forces -= on_member
     reactions = _reactions(made, forces, direction, nodal)
+    moved = movement[number.of_node].transpose(2, 3, 0, 1)
     return Solution(
-        displacements=movement[..., number.of_node].reshape(*batch, -1, len(made.nodes), 2),
-        end_forces=np.moveaxis(forces.reshape(6, *batch, *forces.shape[2:]), 0, -1),
+        displacements=moved.reshape(*batch, *moved.shape[1:]),
+        end_forces=forces.transpose(2, 3, 1, 0).reshape(*batch, -1, len(made.members), 6),
         reactions=reactions.reshape(*batch, *reactions.shape[1:]),
     )
 
@@ -68,21 +68,26 @@ def _flat(array: Array, batch: tuple[int, ...], own: int) -> Array:
     return np.ascontiguousarray(np.broadcast_to(array, (*batch, *tail))).reshape(-1, *tail)
 
 
+def _by_member(values: Array) -> Array:
+    """(b, m) as (m, b, 1), beside member-end values of a row."""
+    return np.ascontiguousarray(values.T)[..., None]
+
+
 def _equivalent_forces(
     topology: Topology, cases: LoadCases, length: Array, direction: Array, batch: tuple[int, ...]
 ) -> Array:
-    """Forces (6, b, c, m) that the member loads put on the ends: integrals of load times shape function."""
+    """Forces (6, m, b, c) that the member loads put on the ends: integrals of load times shape function."""
     member = np.array(cases.member_of)
-    span = length[:, member]
-    a, b = _flat(cases.x0, batch, 1) / span, _flat(cases.x1, batch, 1) / span
+    span = length[:, member].T
+    a, b = _flat(cases.x0, batch, 1).T / span, _flat(cases.x1, batch, 1).T / span
     # integrals over the segment of xi^k, of which the shape functions are made
     powers = np.stack([(b ** (k + 1) - a ** (k + 1)) * span / (k + 1) for k in range(4)])
-    weights = np.einsum("sik,kbs->ibs", shape_coefficients(topology)[member], powers)
+    weights = np.einsum("sik,ksb->isb", shape_coefficients(topology)[member], powers)
     weights[[1, 3]] *= span
-    q, direction_of = _flat(cases.q, batch, 3), direction[:, None, member]
-    along = q[..., 0] * direction_of[..., 0] + q[..., 1] * direction_of[..., 1]
-    across = q[..., 1] * direction_of[..., 0] - q[..., 0] * direction_of[..., 1]
-    out = np.empty((6, *q.shape[:2], length.shape[1]))
+    x, y = loads_by_segment(cases)
+    cos, sin = _by_member(direction[:, member, 0]), _by_member(direction[:, member, 1])
+    along, across = x * cos + y * sin, y * cos - x * sin
+    out = np.empty((6, length.shape[1], *along.shape[1:]))
     for row, load, weight in (
         (0, along, powers[0] - powers[1]),
         (1, across, weights[0]),
@@ -91,7 +96,7 @@ def _equivalent_forces(
         (4, across, weights[2]),
         (5, across, weights[3]),
     ):
-        sum_segments(load * weight[:, None, :], cases.member_of, out[row])
+        sum_segments(load * weight[..., None], cases.member_of, out[row])
     for point in cases.points:
         _add_point(out, point, topology, length, direction, batch)
     return out
@@ -108,7 +113,7 @@ def _add_point(
     along, across = fx * cos + fy * sin, fy * cos - fx * sin
     values = shape_coefficients(topology)[k] @ np.stack([xi**p for p in range(4)])
     values[[1, 3]] *= length[:, k]
-    place = (slice(None), point.case, k)
+    place = (k, slice(None), point.case)
     for row, force in zip(
         range(6), (along * (1 - xi), *(across * values[:2]), along * xi, *(across * values[2:])), strict=True
     ):
@@ -116,23 +121,25 @@ def _add_point(
 
 
 def _rotate(values: Array, direction: Array, *, back: bool) -> Array:
-    """Member-end values (6, b, c, m) from global to member axes, or back."""
-    cos, sin = direction[:, None, :, 0], direction[:, None, :, 1] * (-1.0 if back else 1.0)
+    """Member-end values (6, m, b, c) from global to member axes, or back."""
+    cos, sin = _by_member(direction[..., 0]), _by_member(direction[..., 1] * (-1.0 if back else 1.0))
     out = np.empty_like(values)
     for x, y, turn in (START, END):
-        out[x] = cos * values[x] + sin * values[y]
-        out[y] = cos * values[y] - sin * values[x]
+        np.multiply(values[x], cos, out=out[x])
+        out[x] += values[y] * sin
+        np.multiply(values[y], cos, out=out[y])
+        out[y] -= values[x] * sin
         out[turn] = values[turn]
     return out
 
 
 def _to_nodes(number: Freedoms, at_ends: Array) -> Array:
-    """Sum of member-end values over the movements (b, c, total + 1)."""
-    sums = np.zeros((number.total + 1, *at_ends.shape[1:3]))
+    """Sum of member-end values over the movements (total + 1, b, c)."""
+    sums = np.zeros((number.total + 1, *at_ends.shape[2:]))
     for member, movements in enumerate(number.of_member):
         for row, movement in enumerate(movements):
-            sums[movement] += at_ends[row, ..., member]
-    return np.moveaxis(sums, 0, -1)
+            sums[movement] += at_ends[row, member]
+    return sums
 
 
 def _stiffness(topology: Topology, ea: Array, ei: Array, length: Array, direction: Array) -> Array:
@@ -190,15 +197,15 @@ def _scatter(topology: Topology) -> tuple[NDArray[np.intp], ...]:
 
 
 def _factor_and_solve(topology: Topology, stiffness: Array, load: Array) -> Array:
-    """Movements (b, c, free) under loads (b, c, total + 1)."""
+    """Movements (free, b, c) under loads (total + 1, b, c)."""
     require_stable(topology, stiffness[:1])  # rounding hides a mechanism from the solver; one truss of a batch tells
-    right = np.swapaxes(load[..., : stiffness.shape[-1]], 1, 2)
+    right = np.ascontiguousarray(np.swapaxes(load[: stiffness.shape[-1]], 0, 1))
     try:
         found = np.linalg.solve(stiffness, right)
     except np.linalg.LinAlgError:
         require_stable(topology, stiffness)
         raise UnstableTrussError(f"{topology.shape}: the truss is a mechanism; add a member or a support") from None
-    return np.swapaxes(found, 1, 2)
+    return np.swapaxes(found, 0, 1)
 
 
 def require_stable(topology: Topology, stiffness: Array) -> None:
@@ -232,33 +239,39 @@ def stiffness_matrix(truss: Truss, stiffness_axial: Array, stiffness_bending: Ar
 
 
 def _end_forces(topology: Topology, local: Array, ea: Array, ei: Array, length: Array) -> Array:
-    """Forces (6, b, c, m) on the member ends from their movements in member axes."""
-    k = bending_coefficients(topology)
-    across, along = (ei / length**3)[:, None, :], (ea / length)[:, None, :]
-    span = length[:, None, :]
-    sway, turn0, turn1 = local[1] - local[4], local[2] * span, local[5] * span
+    """Forces (6, m, b, c) on the member ends from their movements in member axes; `local` is used up."""
+    k = bending_coefficients(topology)[..., None, None]
+    span, along = _by_member(length), _by_member(ea / length)
+    across, turning = _by_member(ei / length**3), _by_member(ei / length**2)
     out = np.empty_like(local)
-    out[3] = along * (local[3] - local[0])
-    out[0] = -out[3]
+    np.subtract(local[3], local[0], out=out[3])
+    out[3] *= along
+    np.negative(out[3], out=out[0])
     # a rigid sideways movement bends nothing, so the two deflections act by their difference alone
-    out[1] = (k[:, 0, 0] * sway + k[:, 0, 1] * turn0 + k[:, 0, 3] * turn1) * across
-    out[4] = -out[1]
-    out[2] = (k[:, 1, 0] * sway + k[:, 1, 1] * turn0 + k[:, 1, 3] * turn1) * (across * span)
-    out[5] = (k[:, 3, 0] * sway + k[:, 3, 1] * turn0 + k[:, 3, 3] * turn1) * (across * span)
+    sway, turn0, turn1 = local[1], local[2], local[5]
+    sway -= local[4]
+    turn0 *= span
+    turn1 *= span
+    for row, scale in ((1, across), (2, turning), (5, turning)):
+        i = {1: 0, 2: 1, 5: 3}[row]
+        np.multiply(sway, k[:, i, 0] * scale, out=out[row])
+        out[row] += turn0 * (k[:, i, 1] * scale)
+        out[row] += turn1 * (k[:, i, 3] * scale)
+    np.negative(out[1], out=out[4])
     return out
 
 
 def _reactions(topology: Topology, forces: Array, direction: Array, nodal: Array) -> Array:
     """Forces of the supports on the truss (b, c, support, 2); zero in a direction that is not held."""
-    out = np.empty((*forces.shape[1:3], len(topology.supports), 2))
+    out = np.empty((*forces.shape[2:], len(topology.supports), 2))
     for k, support in enumerate(topology.supports):
         out[..., k, :] = -nodal[..., support.node, :]
         for member, ends in enumerate(topology.members):
             for node, (x, y, _) in ((ends.start, START), (ends.end, END)):
                 if node == support.node:
-                    cos, sin = direction[:, None, member, 0], direction[:, None, member, 1]
-                    out[..., k, 0] += cos * forces[x, ..., member] - sin * forces[y, ..., member]
-                    out[..., k, 1] += sin * forces[x, ..., member] + cos * forces[y, ..., member]
+                    cos, sin = direction[:, member, 0, None], direction[:, member, 1, None]
+                    out[..., k, 0] += cos * forces[x, member] - sin * forces[y, member]
+                    out[..., k, 1] += sin * forces[x, member] + cos * forces[y, member]
         out[..., k, :] *= (support.horizontal, support.vertical)
     return out
 

@@ -19,7 +19,7 @@ from rooftruss.errors import JobError, TableError, nearest
 
 ACTIONS = ("D", "L", "Lr", "S", "R", "W", "A")  # A: accidental
 NO_CASE = "R"  # rain stands in the printed rows; no load module makes a case of it, so it needs no duration
-KINDS = ("live", "wind_snow", "total", "instantaneous", "final")
+KINDS = ("live", "wind_snow", "total", "characteristic", "frequent", "quasi-permanent")
 DEAD = ("most", "least")
 OPTIONS = {  # what combinations.combine understands; a scheme lists those it allows, the first choice is the default
     "companion_snow": ("balanced", "any"),
@@ -68,7 +68,7 @@ class Row:
     dead: str  # "most" or "least": which dead load the row takes
     leading: str  # action that is never absent in this row, "" for none
     companions: tuple[str, ...]  # actions that only accompany another one in this row
-    kind: str  # "" for strength, else what the deflection limit speaks of
+    kind: str  # "" for strength, else the kind of service combination
     time_effect: float  # lambda [-]; NaN where the scheme has none
     time_effect_storage: float  # lambda [-] where the ceiling live load is storage
 

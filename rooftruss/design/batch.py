@@ -35,6 +35,7 @@ CHUNK_BYTES = 48e6  # memory of the largest array of a chunk; about six such arr
 LARGEST_CHUNK = 256  # trusses; more gives no speed, the arrays leave the processor's cache
 NUMBERS = tuple(f.name for f in fields(AreaLoads))  # loads that may differ within a family
 WORDS = tuple(f.name for f in fields(LoadSpec) if f.name not in NUMBERS)  # what may not
+KEPT = 31 * 2**20  # bytes; beyond 32 MB it keeps nothing, and fetching fresh pages costs a fifth of the time
 Sizes = Mapping[str, tuple[str, str]]  # group -> (size, grade)
 
 
@@ -89,6 +90,7 @@ def check_many(
         raise JobError(
             f"sizes for {len(sizes)} trusses were given, {len(specs)} trusses; give one for each, or one for all"
         )
+    np.empty(KEPT, dtype=np.uint8)  # the GNU allocator keeps freed memory of the largest size it has seen freed
     chunks = list(_chunks(job, specs, list(sizes) * (len(specs) if len(sizes) == 1 else 1)))
     results = executor.map(_chunk_report, chunks) if executor else map(_chunk_report, chunks)
     parts: list[Report] = []

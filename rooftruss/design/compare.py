@@ -18,6 +18,28 @@ class Alternative:
     design: Design | None
     reason: str = ""
 
+    @property
+    def shortfall(self) -> str:
+        """What is furthest over its limit, in few words: "top 1 1.24 bending"; "" where every check is met."""
+        return "" if self.design is None or self.design.passes else _worst(self.design)
+
+
+def _worst(design: Design) -> str:
+    """Place, ratio and check of the largest ratio of a design."""
+    made, outcome = design.run.family.topology, design.outcome
+    member, bearing, moved = (
+        int(ratio.argmax()) for ratio in (outcome.utilisation.value, outcome.bearing.value, outcome.deflection.ratio)
+    )
+    place, rule = outcome.deflection.places[moved], design.run.checks.rules[int(outcome.rule[member])]
+    node = made.nodes[made.supports[bearing].node]
+    found = (
+        (float(outcome.utilisation.value[member]), made.names[member], rule.name),
+        (float(outcome.bearing.value[bearing]), f"bearing {node}", "across the grain"),
+        (float(outcome.deflection.ratio[moved]), place.name, f"{place.direction} deflection"),
+    )
+    ratio, where, what = max(found)
+    return f"{where} {ratio:.2f} {what}"
+
 
 def alternatives(spec: TrussSpec) -> Iterator[TrussSpec]:
     """The truss in every shape of the catalogue; panel count and bottom pitch stay with the shape they belong to."""

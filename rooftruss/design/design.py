@@ -117,10 +117,11 @@ class Design:
             (
                 float(r),
                 f"{p.direction} deflection at {p.name}: {shown(abs(float(v)), 'deflection', units)} of "
-                f"{shown(float(w), 'deflection', units)}, {float(r):.2f} of its limit, {self.combination(int(c))}",
+                f"{shown(float(w), 'deflection', units)}, {float(r):.2f} of its limit, {found.about(k)}, "
+                f"{self.combination(int(c))}",
             )
-            for p, v, w, r, c in zip(
-                found.places, found.value, found.limit, found.ratio, found.combination, strict=True
+            for k, (p, v, w, r, c) in enumerate(
+                zip(found.places, found.value, found.limit, found.ratio, found.combination, strict=True)
             )
             if r > LIMIT
         ]

@@ -1,30 +1,32 @@
 """The stages from dimensions and sizes to checks, for a batch of trusses of one family."""
 
-from dataclasses import dataclass, fields, replace
+from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
 
 from rooftruss.analysis.combinations import CaseHead, Combinations, combine
-from rooftruss.analysis.effects import UnitEffects, demands_and_envelope, unit_effects
+from rooftruss.analysis.effects import UnitEffects, unit_effects
 from rooftruss.analysis.envelope import Envelope
 from rooftruss.analysis.frame import Solution, require_stable, solve, stiffness_matrix
 from rooftruss.analysis.inspection import triangulation
 from rooftruss.analysis.simplified import simplified_solution
 from rooftruss.basis.job import Job, TrussSpec
+from rooftruss.design.checking import checked, demands
 from rooftruss.design.family import GROUPS, Choice, Family, family_of, options_of, unbatched
 from rooftruss.design.members import members_of, take_members
 from rooftruss.design.profile import require_profile
 from rooftruss.errors import UnstableTrussError
 from rooftruss.loads.actions import (
+    FORMED,
     action_cases,
     cases_on,
     roof_of,
     walked_stops,
 )
 from rooftruss.loads.cases import LoadCases
-from rooftruss.loads.gable import flattest_pitch, gable_fault
+from rooftruss.loads.gable import formed
 from rooftruss.loads.own import own_cases
 from rooftruss.loads.roof import ActionCase
 from rooftruss.shapes.custom_layout import CustomLayout
@@ -54,7 +56,6 @@ class Run:
     solution: Solution  # of the frame, which deflections are of
     forces: Solution  # what is checked: that of the frame, or of the simplified analysis of the timber standard
     effects: UnitEffects  # of `forces`
-    demand: Demand  # under the strength combinations
     envelope: Envelope
     checks: Checks
     reactions: Array  # (..., strength combination, support, 2) [N], on the truss, up positive
@@ -65,6 +66,11 @@ class Run:
     def strength(self) -> list[int]:
         """Numbers of the strength combinations."""
         return [int(k) for k in np.flatnonzero(self.combinations.strength)]
+
+    @cached_property
+    def demand(self) -> Demand:
+        """What the members have to resist under each strength combination."""
+        return demands(self.effects, self.combinations.factors[self.strength])
 
     @cached_property
     def frame_effects(self) -> UnitEffects:
@@ -110,9 +116,8 @@ def run(family: Family, choice: Choice) -> Run:
     effects = unit_effects(truss, cases, forces)
     strength = np.flatnonzero(combinations.strength)
     factors = combinations.factors[strength]
-    demands, envelope = demands_and_envelope(effects, factors)
-    demand = Demand(**{f.name: getattr(demands, f.name) for f in fields(demands)})
     durations = durations_of(combinations)
+    envelope, checks = checked(family.timber, members, effects, factors, durations)
     reactions = _combined_reactions(factors, forces.reactions)
     bearing = bearing_lengths(family.layout, truss)
     if not isinstance(family.layout, CustomLayout) and family.layout.raised_heel:
@@ -130,9 +135,8 @@ def run(family: Family, choice: Choice) -> Run:
         solution=solution,
         forces=forces,
         effects=effects,
-        demand=demand,
         envelope=envelope,
-        checks=family.timber.check(members, demand, durations),
+        checks=checks,
         reactions=reactions,
         bearing_lengths=bearing,
         bearing=family.timber.bearing(
@@ -146,14 +150,12 @@ def run(family: Family, choice: Choice) -> Run:
 
 def _cases(family: Family, truss: Truss, weight: Array) -> LoadCases:
     """Cases of the load standard and of the job on the members; weight (..., m) is the self-weight [N/m]."""
-    standard_name, size, roof, fault = family.scheme.load_standard, family.size, roof_of(family.size), ""
+    standard_name, size, roof, faults = family.scheme.load_standard, family.size, roof_of(family.size), FORMED
     if isinstance(family.layout, CustomLayout):
         one = Truss(topology=truss.topology, xy=_first(truss.xy, 2), bearing=_first(truss.bearing, 0))
-        bare = type(roof)(**{f.name: _first(np.asarray(getattr(roof, f.name)), 0) for f in fields(roof)})
-        fault = gable_fault(one, bare)
-        roof = replace(roof, pitch=np.minimum(roof.pitch, flattest_pitch(one))) if fault else roof
+        roof, faults = formed(roof, one)
     heads: list[ActionCase] = [
-        *action_cases(standard_name, roof, family.loads, family.job.site, truss, fault=fault),
+        *action_cases(standard_name, roof, family.loads, family.job.site, truss, faults=faults),
         *own_cases(truss, family.spec.loads.cases, size.bearing, size.spacing),
     ]
     walked = walked_stops(truss, family.loads, standard_name)

@@ -12,7 +12,8 @@ from rooftruss.loads import imposed, imposed_en1991, snow_asce7, snow_en1991, wi
 from rooftruss.loads.attic import attic_cases
 from rooftruss.loads.cases import ChordPoint, LoadCases, lay_on
 from rooftruss.loads.dead import dead_cases
-from rooftruss.loads.roof import ActionCase, Roof, Site
+from rooftruss.loads.gable import Faults
+from rooftruss.loads.roof import GABLE, MONOPITCH, ActionCase, Roof, Site
 from rooftruss.loads.walked import BOTTOM, TOP, Stop, stops
 from rooftruss.shapes.forming import Dimensions
 from rooftruss.shapes.truss import Truss
@@ -55,13 +56,14 @@ Variable = Callable[[Roof, AreaLoads, Site, Truss], list[ActionCase]]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class LoadStandard:
-    """One edition of a load standard: its variable cases, and the clauses that lay some of them on a gable roof."""
+    """One edition of a load standard: its variable cases, and the forms of roof that some of them are covered on."""
 
     cases: Variable
-    gable: str
+    forms: tuple[str, ...]
+    form_clause: str  # what lays loads on those forms
     walked: tuple[str, str]  # clauses of the point loads of a person on the roof, and on the ceiling
     walked_symbol: str  # of that load
-    gable_actions: tuple[str, ...] = ("S", "W")
+    form_actions: tuple[str, ...] = ("S", "W")  # of the loads that depend on the form
 
 
 def _asce7(edition: str) -> LoadStandard:
@@ -80,7 +82,8 @@ def _asce7(edition: str) -> LoadStandard:
 
     return LoadStandard(
         cases=cases,
-        gable=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1",
+        forms=(GABLE,),
+        form_clause=f"ASCE {edition}, 7.6.1 and Fig. 27.3-1",
         walked=(f"ASCE {edition}, 4.4 and Table 4.3-1",) * 2,
         walked_symbol="P",
     )
@@ -90,7 +93,7 @@ def _en1991(roof: Roof, loads: AreaLoads, site: Site, truss: Truss) -> list[Acti
     height = site.get("building_height")
     if isinstance(height, float) and np.any(height < roof.rise):
         raise JobError(
-            "[site] building_height is less than the rise of the roof; measure it from the ground to the ridge"
+            "[site] building_height is less than the rise of the roof; measure it from the ground to its highest point"
         )
     return [
         *imposed_en1991.loft_cases(loads.ceiling_live),
@@ -105,12 +108,15 @@ STANDARDS: Mapping[str, LoadStandard] = {
     "ASCE 7-22": _asce7("7-22"),
     "EN 1991": LoadStandard(
         cases=_en1991,
-        gable="EN 1991-1-3, 5.3.3 and EN 1991-1-4, 7.2.5",
+        forms=(GABLE, MONOPITCH),
+        form_clause="EN 1991-1-3, 5.3.2, 5.3.3 and EN 1991-1-4, 7.2.4, 7.2.5",
         walked=(f"{imposed_en1991.CLAUSE}, Table 6.10", "EN 1991-1-1, 6.3.1.2, Table 6.2"),
         walked_symbol="Q_k",
-        gable_actions=("S", "W", "A"),
+        form_actions=("S", "W", "A"),
     ),
 }
+FORMED: Faults = {GABLE: ""}  # what keeps a truss of the catalogue from being a gable
+FORM_WORDS = {GABLE: "symmetric gable", MONOPITCH: "monopitch"}
 
 
 def area_loads(specs: Sequence[LoadSpec]) -> AreaLoads:
@@ -131,11 +137,11 @@ def roof_of(size: Dimensions) -> Roof:
 
 
 def action_cases(
-    standard: str, roof: Roof, loads: AreaLoads, site: Site, truss: Truss, *, fault: str = ""
+    standard: str, roof: Roof, loads: AreaLoads, site: Site, truss: Truss, *, faults: Faults = FORMED
 ) -> list[ActionCase]:
     """Every load case of one load standard: dead, then the variable actions in the standard's order.
 
-    fault says what keeps the roof from being a symmetric gable (loads.gable), "" if nothing does.
+    faults says for each form what keeps the roof from it (loads.gable), "" if nothing does.
     Raises JobError for an unknown standard, OutOfScopeError for what the standard does not cover.
     """
     if standard not in STANDARDS:
@@ -143,12 +149,24 @@ def action_cases(
     chosen = STANDARDS[standard]
     dead = dead_cases(loads.roof_dead, loads.roof_dead_least, loads.ceiling_dead, loads.ceiling_dead_least)
     cases = [*dead, *chosen.cases(roof, loads, site, truss)]
-    if fault and any(case.action in chosen.gable_actions for case in cases):
+    fault = _form_fault(chosen, faults)
+    if fault and any(case.action in chosen.form_actions for case in cases):
+        covered = " and ".join(FORM_WORDS[form] for form in chosen.forms)
         raise OutOfScopeError(
-            f"{chosen.gable}: snow and wind are covered on symmetric gable roofs only, and here {fault}; make snow and "
+            f"{chosen.form_clause}: snow and wind are covered on {covered} roofs only, and here {fault}; make snow and "
             "wind of the job zero and give them as cases of its own ([[loads.case]])"
         )
     return cases
+
+
+def _form_fault(standard: LoadStandard, faults: Faults) -> str:
+    """What keeps a roof from every form that the standard covers; "" where it has one of them."""
+    known = {form: fault for form, fault in faults.items() if form in standard.forms}
+    if "" in known.values():
+        return ""
+    fault = next(iter(known.values()))
+    had = next((FORM_WORDS[form] for form, other in faults.items() if not other), "")
+    return f"the roof is a {had}: {fault}" if had else fault
 
 
 def walked_stops(truss: Truss, loads: AreaLoads, standard: str) -> list[Stop]:

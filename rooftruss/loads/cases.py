@@ -16,7 +16,7 @@ from rooftruss.loads.roof import ActionCase, SurfaceLoad
 from rooftruss.shapes.truss import Truss
 
 Array = NDArray[np.float64]
-TAIL_OF_HEEL = {"left tail": 0, "right tail": 1}  # surface -> number of the support below it
+TAILS = ("left tail", "right tail")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -81,7 +81,8 @@ def lay_on(
     breaks = _breaks(truss, heads, points)
     member_of, x0, x1 = _segments(truss, breaks)
     batch = np.broadcast_shapes(truss.xy.shape[:-2], self_weight.shape[:-1], np.shape(spacing))
-    q = np.zeros((*batch, len(heads), len(member_of), 2))
+    # in memory segment by segment, as the analysis wants them; seen as (..., c, s, 2)
+    q = np.moveaxis(np.zeros((2, len(member_of), *batch, len(heads))), (0, 1), (-1, -2))
     nodal = np.zeros((*batch, len(heads), len(truss.topology.nodes), 2))
     surface_of = [truss.topology.members[k].surface for k in member_of]
     for c, head in enumerate(heads):
@@ -93,7 +94,7 @@ def lay_on(
             if here:  # segments of one surface stand side by side, so a slice reaches them without a copy
                 part = slice(here[0], here[-1] + 1) if here[-1] - here[0] + 1 == len(here) else here
                 q[..., c, part, :] += _on_segments(truss, load, spacing, [member_of[s] for s in here], x0, x1, here)
-            elif load.surface in TAIL_OF_HEEL:
+            elif load.surface in TAILS:
                 _to_heel(truss, load, spacing, nodal[..., c, :, :])
     return LoadCases(
         heads=tuple(heads),
@@ -187,25 +188,25 @@ def per_length(kind: str, line: Array, cos: Array, sin: Array) -> tuple[Array, A
 
 
 def _to_heel(truss: Truss, load: SurfaceLoad, spacing: Array, nodal: Array) -> None:
-    """Without a tail, the roof over the outer half of the bearing presses on the heel joint itself."""
-    side = TAIL_OF_HEEL[load.surface]
-    chord = truss.topology.on("left slope")[:1] if side == 0 else truss.topology.on("right slope")[-1:]
-    if not chord:
+    """Without a tail, the roof over the outer half of a bearing presses on the joint over it: on the heel, or on the
+    upper end of the one slope of a monopitch."""
+    left = load.surface == "left tail"
+    chords = truss.topology.on("left slope", "right slope")
+    if not chords:
         return
-    cos, sin = truss.direction[..., chord[0], 0], truss.direction[..., chord[0], 1]
-    length = truss.bearing / 2 / cos * _covered(truss, load, side)
+    chord = chords[0] if left else chords[-1]
+    node = truss.topology.members[chord].start if left else truss.topology.members[chord].end
+    cos, sin = truss.direction[..., chord, 0], truss.direction[..., chord, 1]
+    length = truss.bearing / 2 / cos * _covered(truss, load, node, left=left)
     qx, qy = per_length(load.kind, np.asarray(load.pressure) * spacing, cos, sin)
-    member = truss.topology.members[chord[0]]
-    node = member.start if side == 0 else member.end
     nodal[..., node, 0] += qx * length
     nodal[..., node, 1] += qy * length
 
 
-def _covered(truss: Truss, load: SurfaceLoad, side: int) -> Array:
-    """Share of the outer half of a bearing that a stretch of load covers (...,)."""
-    end = np.zeros(()) if side == 0 else truss.end_xy[..., truss.topology.on("right slope")[-1], 0]
-    half = truss.bearing / 2
-    low, high = (end - half, end) if side == 0 else (end, end + half)
+def _covered(truss: Truss, load: SurfaceLoad, node: int, *, left: bool) -> Array:
+    """Share of the outer half of the bearing below a joint that a stretch of load covers (...,)."""
+    end, half = truss.xy[..., node, 0], truss.bearing / 2
+    low, high = (end - half, end) if left else (end, end + half)
     start = low if load.x_from is None else np.clip(load.x_from, low, high)
     stop = high if load.x_to is None else np.clip(load.x_to, low, high)
     return np.asarray(np.maximum(stop - start, 0.0) / half)
@@ -216,15 +217,19 @@ def _member_point(truss: Truss, point: ChordPoint) -> MemberPoint:
     return MemberPoint(case=point.case, member=point.member, at=at, fx=np.zeros_like(at), fy=-point.force + 0 * at)
 
 
-def sum_segments(values: Array, member_of: Sequence[int], out: Array) -> Array:
-    """Sums of segment values (..., s) over each member, written to `out` (..., m).
+def loads_by_segment(cases: LoadCases) -> tuple[Array, Array]:
+    """Horizontal and vertical load per length (s, b, c), batch axes joined; no copy of cases that `lay_on` made."""
+    rows = np.moveaxis(cases.q, (-2, -1), (1, 0))  # (2, s, ..., c)
+    flat = rows.reshape(2, rows.shape[1], -1, rows.shape[-1])
+    return flat[0], flat[1]
 
-    Most members are one segment, so the first segments are copied at once and only the others are added one by one.
-    """
-    first, _ = first_segments(tuple(member_of))
-    out[...] = values[..., first]
-    for members, segments in further_segments(tuple(member_of)):
-        out[..., members] += values[..., segments]
+
+def sum_segments(values: Array, member_of: Sequence[int], out: Array) -> Array:
+    """Sums of segment values (s, ...) over each member, written to `out` (m, ...)."""
+    first, rest = first_segments(tuple(member_of))
+    out[...] = values[first]
+    for s in rest:
+        out[member_of[s]] += values[s]
     return out
 
 
@@ -233,16 +238,3 @@ def first_segments(member_of: tuple[int, ...]) -> tuple[NDArray[np.intp], tuple[
     """Numbers of the first segment of each member, and of all other segments."""
     first = np.searchsorted(np.array(member_of), np.arange(member_of[-1] + 1))
     return first, tuple(s for s in range(len(member_of)) if s not in set(first.tolist()))
-
-
-@cache
-def further_segments(member_of: tuple[int, ...]) -> tuple[tuple[list[int], list[int]], ...]:
-    """Second, third, ... segments: for each place in the row (members that have it, those segments)."""
-    places: dict[int, tuple[list[int], list[int]]] = {}
-    for s, member in enumerate(member_of):
-        place = s - member_of.index(member)
-        if place:
-            members, segments = places.setdefault(place, ([], []))
-            members.append(member)
-            segments.append(s)
-    return tuple(places[place] for place in sorted(places))

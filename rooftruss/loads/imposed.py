@@ -4,12 +4,11 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from rooftruss.basis.tables import read_table
+from rooftruss.loads.parts import half_roof, whole_roof
 from rooftruss.loads.roof import ActionCase, Roof, SurfaceLoad, Value
 from rooftruss.units import FOOT, shown
 
 Array = NDArray[np.float64]
-LEFT = ("left tail", "left slope")
-RIGHT = ("right slope", "right tail")
 CLAUSE = "ASCE 7, 4.8.2"
 SAME = 1e-9
 
@@ -55,7 +54,7 @@ def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
     """Roof live load (action Lr) on the whole roof and on either half; none where it is zero on all roofs.
 
     roof_live is the basic load L_o [Pa] (...,). The halves are the partial loading of 4.3.3: they reverse webs that
-    the full load leaves alone.
+    the full load leaves alone. Those of a monopitch are the halves of its one slope.
     """
     if not np.any(roof_live):
         return []
@@ -72,13 +71,13 @@ def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
         Value(symbol="L_r", value=L_r, kind="pressure", clause="ASCE 7, eq. 4.8-1"),
     )
     patterns = (
-        ("roof live", "full", LEFT + RIGHT),
-        ("roof live, left half", "left", LEFT),
-        ("roof live, right half", "right", RIGHT),
+        ("roof live", "full", whole_roof(L_r)),
+        ("roof live, left half", "left", half_roof(roof, "left", L_r)),
+        ("roof live, right half", "right", half_roof(roof, "right", L_r)),
     )
     return [
-        ActionCase(name=name, short=short, action="Lr", pattern="", loads=_on(surfaces, L_r), values=values)
-        for name, short, surfaces in patterns
+        ActionCase(name=name, short=short, action="Lr", pattern="", loads=loads, values=values)
+        for name, short, loads in patterns
     ]
 
 
@@ -87,9 +86,5 @@ def ceiling_live_cases(ceiling_live: Array) -> list[ActionCase]:
     if not np.any(ceiling_live):
         return []
     value = Value(symbol="L", value=ceiling_live, kind="pressure", clause="ASCE 7, Table 4.3-1")
-    loads = _on(("ceiling",), np.asarray(ceiling_live, float))
-    return [ActionCase(name="ceiling live", short="", action="L", pattern="", loads=loads, values=(value,))]
-
-
-def _on(surfaces: tuple[str, ...], pressure: Array) -> tuple[SurfaceLoad, ...]:
-    return tuple(SurfaceLoad(surface=surface, kind="plan", pressure=pressure) for surface in surfaces)
+    ceiling = SurfaceLoad(surface="ceiling", kind="plan", pressure=np.asarray(ceiling_live, float))
+    return [ActionCase(name="ceiling live", short="", action="L", pattern="", loads=(ceiling,), values=(value,))]

@@ -4,7 +4,6 @@ The concentrated load Q_k of category H is walked along the top chord (loads.wal
 does not act (6.3.4.2(4)).
 """
 
-from collections.abc import Sequence
 from typing import cast
 
 import numpy as np
@@ -12,12 +11,11 @@ from numpy.typing import NDArray
 
 from rooftruss.basis.tables import read_table
 from rooftruss.errors import OutOfScopeError
+from rooftruss.loads.parts import half_roof, whole_roof
 from rooftruss.loads.roof import ActionCase, Roof, SurfaceLoad, Value
 from rooftruss.units import shown
 
 Array = NDArray[np.float64]
-LEFT = ("left tail", "left slope")
-RIGHT = ("right slope", "right tail")
 CLAUSE = "EN 1991-1-1, 6.3.4.2"
 
 
@@ -34,8 +32,9 @@ def category_h(name: str) -> tuple[float, float, float]:
 def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
     """Uniform load q_k [Pa, on plan] of category H (action Lr) on the roof and on either half; EN 1991-1-1, 6.3.4.
 
-    A free action (6.2.1(1)): the halves reverse webs that the full load leaves alone. None where it is zero on all
-    roofs. Raises OutOfScopeError above the range of Table 6.10: such a roof is of category I and has other factors.
+    A free action (6.2.1(1)): the halves reverse webs that the full load leaves alone. Those of a monopitch are the
+    halves of its one slope. None where it is zero on all roofs. Raises OutOfScopeError above the range of Table 6.10:
+    such a roof is of category I and has other factors.
     """
     q = np.asarray(roof_live, dtype=float)
     if not np.any(q):
@@ -48,12 +47,14 @@ def roof_live_cases(roof: Roof, roof_live: Array) -> list[ActionCase]:
         )
     q = q + np.zeros_like(np.asarray(roof.span, dtype=float))
     value = Value(symbol="q_k", value=q, kind="pressure", clause=f"{CLAUSE}, Table 6.10")
-    patterns = (("full", "full", LEFT + RIGHT), ("left half", "left", LEFT), ("right half", "right", RIGHT))
+    patterns = (
+        ("full", "full", whole_roof(q)),
+        ("left half", "left", half_roof(roof, "left", q)),
+        ("right half", "right", half_roof(roof, "right", q)),
+    )
     return [
-        ActionCase(
-            name=f"imposed on roof, {name}", short=short, action="Lr", pattern="", loads=_on(on, q), values=(value,)
-        )
-        for name, short, on in patterns
+        ActionCase(name=f"imposed on roof, {name}", short=short, action="Lr", pattern="", loads=loads, values=(value,))
+        for name, short, loads in patterns
     ]
 
 
@@ -67,12 +68,5 @@ def loft_cases(loft: Array) -> list[ActionCase]:
         return []
     q = np.asarray(loft, dtype=float)
     value = Value(symbol="q_k", value=q, kind="pressure", clause="EN 1991-1-1, 6.3.1 and 6.3.2")
-    return [
-        ActionCase(
-            name="imposed in loft", short="", action="L", pattern="", loads=_on(("ceiling",), q), values=(value,)
-        )
-    ]
-
-
-def _on(surfaces: Sequence[str], pressure: Array) -> tuple[SurfaceLoad, ...]:
-    return tuple(SurfaceLoad(surface=s, kind="plan", pressure=pressure) for s in surfaces)
+    ceiling = SurfaceLoad(surface="ceiling", kind="plan", pressure=q)
+    return [ActionCase(name="imposed in loft", short="", action="L", pattern="", loads=(ceiling,), values=(value,))]

@@ -1,11 +1,12 @@
 """Wind pressures of EN 1991-1-4:2005+A1:2010: velocity pressure and the coefficients of roofs and walls."""
 
+from collections.abc import Mapping, Sequence
 from typing import cast
 
 import numpy as np
 from numpy.typing import NDArray
 
-from rooftruss.basis.tables import Table, read_table
+from rooftruss.basis.tables import Cell, read_table
 from rooftruss.errors import OutOfScopeError
 
 Array = NDArray[np.float64]
@@ -64,12 +65,24 @@ def area_coefficient(c_pe_1: Number, c_pe_10: Number, area: Number) -> Array:
     return np.asarray(c_pe_1 - (np.asarray(c_pe_1) - c_pe_10) * np.log10(np.clip(area, 1.0, 10.0)))
 
 
+def covered_slope(slope: Number, clause: str) -> Array:
+    """The slope [rad] as an array. Raises OutOfScopeError naming the clause under 5 deg and above 75 deg."""
+    slope = np.asarray(slope, dtype=float)
+    if np.any(is_flat(slope)) or np.any(slope > constant("steepest") + ROUND_OFF):
+        raise OutOfScopeError(
+            f"roof slope {np.degrees(np.min(slope)):.1f} to {np.degrees(np.max(slope)):.1f} deg; EN 1991-1-4, {clause} "
+            "cover 5 to 75 deg"
+        )
+    return slope
+
+
 def roof_coefficient(direction: str, zone: str, slope: Number, area: Number, line: str = "suction") -> Array:
     """External pressure coefficient [-] of a zone of a duopitch roof; EN 1991-1-4:2005, Tables 7.4a and 7.4b.
 
     direction: "across" or "along" the ridge; zone "F" to "J"; slope [rad] and loaded area [m2] (...,); line: "suction"
     or "pressure", the smaller or the larger line of Table 7.4a. Linear in the slope between values of the same line;
-    beyond the last value of a line that value is held (I has no larger value at 5 deg: the 0.0 of 15 deg is taken).
+    beyond the last value of a line that value is held (I has no larger value at 5 deg: the 0.0 of 15 deg is taken; the
+    lines that end with 0.0 at 45 deg stay there).
     Raises OutOfScopeError for slopes under 5 deg (flat roofs, 7.2.3) or above 75 deg.
 
     >>> float(roof_coefficient("across", "G", np.radians(22.5), 10.0))
@@ -77,22 +90,39 @@ def roof_coefficient(direction: str, zone: str, slope: Number, area: Number, lin
     >>> float(roof_coefficient("along", "H", np.radians(10.0), 10.0).round(3))
     -0.65
     """
-    slope = np.asarray(slope, dtype=float)
-    if np.any(slope < constant("flattest") - ROUND_OFF) or np.any(slope > constant("steepest") + ROUND_OFF):
-        raise OutOfScopeError(
-            f"roof slope {np.degrees(np.min(slope)):.1f} to {np.degrees(np.max(slope)):.1f} deg; EN 1991-1-4, 7.2.5 "
-            "and Table 7.4 cover 5 to 75 deg"
-        )
+    slope = covered_slope(slope, "7.2.5 and Table 7.4")
     table = read_table(f"wind/duopitch_{direction}_en1991")
+    return on_line([row for row in table.rows if row["zone"] == zone], line, slope, area)
+
+
+def on_line(rows: Sequence[Mapping[str, Cell]], line: str, slope: Array, area: Number) -> Array:
+    """Coefficient c_pe [-] of one zone, from its rows of a table; EN 1991-1-4:2005, 7.2.1(1), notes to Tables 7.3, 7.4.
+
+    Linear in the slope [rad] (...,) between values of the "suction" or the "pressure" line, the first and the last held
+    beyond; suction by the loaded area [m2] too.
+    """
+
+    def at_slope(column: str) -> Array:
+        known = [row for row in rows if np.isfinite(cast(float, row[column]))]
+        return np.interp(slope, [cast(float, r["slope"]) for r in known], [cast(float, r[column]) for r in known])
+
     if line == "pressure":
-        return _along_slope(table, zone, "pressure", slope)
-    c_pe_1, c_pe_10 = (_along_slope(table, zone, column, slope) for column in ("suction_1", "suction_10"))
-    return area_coefficient(c_pe_1, c_pe_10, area)
+        return at_slope("pressure")
+    return area_coefficient(at_slope("suction_1"), at_slope("suction_10"), area)
 
 
-def _along_slope(table: Table, zone: str, column: str, slope: Array) -> Array:
-    rows = [row for row in table.rows if row["zone"] == zone and np.isfinite(cast(float, row[column]))]
-    return np.interp(slope, [cast(float, r["slope"]) for r in rows], [cast(float, r[column]) for r in rows])
+def is_flat(slope: Array) -> NDArray[np.bool_]:
+    """Whether a slope [rad] is that of a flat roof, under 5 deg; EN 1991-1-4:2005, 7.2.3(1)."""
+    return np.asarray(slope < constant("flattest") - ROUND_OFF)
+
+
+def has_both_lines(slope: Array) -> NDArray[np.bool_]:
+    """Whether a slope [rad] takes the smaller and the larger line of Tables 7.3a and 7.4a; up to 60 deg.
+
+    At 60 deg the tables give one value. What a line has at 45 deg and lacks at 60 deg is 0.0 at 45 deg: it is taken as
+    0.0 in between, so that no case ends at 45 deg.
+    """
+    return np.asarray(slope <= constant("steepest_both") + ROUND_OFF)
 
 
 def flat_coefficient(zone: str, area: Number, line: str = "suction") -> Array:

@@ -8,13 +8,15 @@ from rooftruss.basis.jobkeys import Keys, form_for
 from rooftruss.basis.kinds import Quantity
 from rooftruss.design.design import Design
 from rooftruss.design.family import GROUPS
+from rooftruss.design.serviceability import limits_in_force
 from rooftruss.units import SYSTEMS, shown
 
 Given = tuple[str, str]  # where it stands in the job file, what it says
 
 
 def given_rows(job: Job, designs: Sequence[Design]) -> Iterator[Given]:
-    """Site, service conditions, restraint, stock, ceiling and bottom pitch that no assumption says already."""
+    """Site, service conditions, restraint, stock, ceiling and bottom pitch that no assumption says already, and the
+    deflection limits."""
     assumed = {a.place for a in job.assumptions}
     scheme = designs[0].run.family.scheme
     form = form_for(scheme.load_standard, scheme.timber_standard)
@@ -23,6 +25,8 @@ def given_rows(job: Job, designs: Sequence[Design]) -> Iterator[Given]:
             yield f"[site] {key}", _text(form["site"], key, value, job.units)
     if "[deflection] ceiling" not in assumed:
         yield "[deflection] ceiling", f"as the job gives it: {job.limits.ceiling}"
+    for design in designs:
+        yield from (("[deflection]", text) for text in limits_in_force(design.run))
     for design in designs:
         yield design.spec.mark, _restraint(job, design)
         yield design.spec.mark, _timber(job, design, form["timber"], assumed)

@@ -4,6 +4,7 @@ from collections.abc import Mapping, Sequence
 from math import isnan
 
 from rooftruss.basis.grades import Grade
+from rooftruss.basis.scheme_variants import Variants
 from rooftruss.basis.schemes import Scheme, load_scheme, schemes
 from rooftruss.basis.sections import Section
 from rooftruss.basis.tables import Cell
@@ -48,6 +49,21 @@ def scheme_grid(scheme: Scheme) -> Grid:
     )
     columns = (Column("clause"), Column("combination"), Column("for"), Column("dead load taken"))
     return Grid(f"{scheme.name}: {scheme.title}", columns, rows)
+
+
+def variants_text(variants: Variants) -> str:
+    """One sentence about the keys of a site that change a scheme which is shown without a site; "" where none does.
+
+    >>> variants_text({"altitude": ("over 1000 m",), "loft": ("storage",)})  # doctest: +ELLIPSIS
+    'Factors and durations as no key of [site] changes them. These keys do: altitude (over 1000 m), loft (storage)...'
+    """
+    if not variants:
+        return ""
+    keys = ", ".join(f"{key} ({' or '.join(values)})" for key, values in variants.items())
+    return (
+        f"Factors and durations as no key of [site] changes them. These keys do: {keys}; "
+        "`rooftruss schemes NAME --job FILE` shows them as on the site of a job."
+    )
 
 
 def legend_grid(scheme: Scheme) -> Grid:

@@ -14,7 +14,8 @@ CAUTIONS = (
     "Only the loads listed act. Drifts against higher walls or parapets, valleys, hips, sliding snow, ponding, solar "
     "panels, tanks, hoists, seismic load, tornado, fire and impact are left out unless the job gives them as loads.",
     "Wind is that on the structure as a whole. Pressures on components and cladding are higher near ridges, eaves and "
-    "corners; where they apply to a truss, its tails, members and hold-downs need more than is listed.",
+    "corners; where they apply to a truss, its tails, members and hold-downs need more than is listed. Wind on upright "
+    "faces, such as walls and the end posts of a monopitch, is not laid on the trusses.",
     "Ground snow load and wind speed are as the job gives them; confirm them with the authority for the site.",
     "Timber is taken as graded, straight, undamaged and untreated, unless the job says otherwise; no allowance is made "
     "for notches, holes or cuts.",

@@ -1,4 +1,4 @@
-"""The check of one member or bearing as a grid: every number with its letter and clause."""
+"""The check of one member, bearing or deflection as a grid: every number with its letter and clause."""
 
 from collections.abc import Sequence
 
@@ -7,8 +7,10 @@ import numpy as np
 from rooftruss.design.case_values import case_values
 from rooftruss.design.design import Design
 from rooftruss.design.members import take_members
+from rooftruss.design.serviceability import about, deflected
 from rooftruss.design.stages import bearing_members, durations_of
 from rooftruss.errors import JobError, nearest
+from rooftruss.output.explain_names import asked_text, deflection_place, unknown
 from rooftruss.output.numbering import Numbering
 from rooftruss.output.schedule import Cell, Column, Grid, Measure
 from rooftruss.timber.terms import Step
@@ -18,10 +20,11 @@ BEARING = "bearing "
 
 
 def explanation(design: Design, name: str, numbering: Numbering, combination: str | None = None) -> tuple[str, Grid]:
-    """Heading and steps of the check of a member ("top 1") or bearing ("bearing A"), or of a load case by its name.
+    """Heading and steps of the check of a member ("top 1"), a bearing ("bearing A") or a deflection ("B", "deflection
+    at top 1", "sideways movement at G"), or of a load case by its name.
 
-    combination: its number in the job or its name; None is the governing one. Raises JobError for an unknown member or
-    combination, or a combination of the deflections.
+    combination: its number in the job or its name; None is the governing one. Raises JobError for an unknown name or
+    combination, or one of the other kind: deflections go by service combinations, all else by strength combinations.
     """
     if name.lower().startswith(BEARING):
         return _bearing(design, name[len(BEARING) :].strip(), numbering, combination)
@@ -29,8 +32,10 @@ def explanation(design: Design, name: str, numbering: Numbering, combination: st
     if name.casefold() in (case.casefold() for case in design.run.cases.names):
         return _case(design, name, numbering)
     if name not in names:
-        known = [*names, *(BEARING + n for n in _bearing_names(design)), *design.run.cases.names]
-        raise JobError(f"truss {design.spec.mark} has no member, bearing or load case {name!r}; {nearest(name, known)}")
+        place = deflection_place(design, name)
+        if place is None:
+            raise unknown(design, name)
+        return _deflection(design, place, numbering, combination)
     member = names.index(name)
     governing = int(design.outcome.utilisation.combination[member])
     number = _combination(design, numbering, combination, governing)
@@ -59,6 +64,23 @@ def _bearing(design: Design, node: str, numbering: Numbering, combination: str |
         run.strength.index(number),
     )
     return _heading(design, f"bearing {node}", numbering, number, number == governing), _grid(steps)
+
+
+def _deflection(design: Design, place: int, numbering: Numbering, combination: str | None) -> tuple[str, Grid]:
+    found, run = design.outcome.deflection, design.run
+    service = [k for k, strength in enumerate(run.combinations.strength) if not strength]
+    if not service:
+        raise JobError(
+            f"scheme {run.family.scheme.name} has no service combinations, so there are no deflections to explain"
+        )
+    governing = int(found.combination[place])
+    number = _combination(design, numbering, combination, governing, service)
+    governs = number == governing
+    kind = found.kinds[int(found.kind[place])] if governs else None
+    moved = deflected(run, place, number, kind)
+    sideways = found.places[place].direction == "horizontal"
+    what = f"{asked_text(found.places[place])}, {about(moved.kind, moved.rule, sideways=sideways)}"
+    return _heading(design, what, numbering, number, governs), _grid(run.family.timber.explain_deflection(moved))
 
 
 def _case(design: Design, name: str, numbering: Numbering) -> tuple[str, Grid]:
@@ -94,18 +116,22 @@ def _bearing_names(design: Design) -> list[str]:
     return [made.nodes[s.node] for s in made.supports]
 
 
-def _combination(design: Design, numbering: Numbering, asked: str | None, governing: int) -> int:
-    """Strength combination asked for, as its number within the truss; the governing one, the first if nothing acts."""
-    names, strength = design.run.combinations.names, design.run.strength
+def _combination(
+    design: Design, numbering: Numbering, asked: str | None, governing: int, service: Sequence[int] = ()
+) -> int:
+    """Strength combination asked for (or service combination, where these are given), as its number within the truss;
+    the governing one, the first if nothing acts."""
+    names, allowed = design.run.combinations.names, service or design.run.strength
     own = numbering.combinations_of(design)
     if asked is None:
-        return governing if governing >= 0 else strength[0]
+        return governing if governing >= 0 else allowed[0]
     found = own.index(int(asked)) if asked.isdecimal() and int(asked) in own else -1
     found = names.index(asked) if asked in names else found
-    if found not in strength:
-        hint = "" if asked.isdecimal() else nearest(asked, [names[k] for k in strength])
-        listed = f"numbers {own[strength[0]]} to {own[strength[-1]]}; `rooftruss envelope` and the workbook list them"
-        raise JobError(f"no strength combination {asked!r}; {hint if hint.startswith('did you mean') else listed}")
+    if found not in allowed:
+        hint = "" if asked.isdecimal() else nearest(asked, [names[k] for k in allowed])
+        listed = f"numbers {own[allowed[0]]} to {own[allowed[-1]]}; `rooftruss envelope` and the workbook list them"
+        kind = "service" if service else "strength"
+        raise JobError(f"no {kind} combination {asked!r}; {hint if hint.startswith('did you mean') else listed}")
     return found
 
 

@@ -91,13 +91,33 @@ def comparison_grid(rows: Sequence[Alternative]) -> Grid:
         Column("Worst ratio", "ratio"),
         Column("Result"),
     )
-    return Grid("Shapes", columns, tuple(_compared(row) for row in rows))
+    numbers = _numbered(rows)
+    return Grid("Shapes", columns, tuple(_compared(row, numbers.get(row.shape)) for row in rows))
 
 
-def _compared(row: Alternative) -> tuple[Cell, ...]:
+def comparison_notes(rows: Sequence[Alternative]) -> tuple[str, ...]:
+    """The reasons in full that the results of `comparison_grid` give the numbers of: "(1) king post: ..."."""
+    return tuple(
+        f"({number}) {row.shape}: {_reason(row)}" for row in rows if (number := _numbered(rows).get(row.shape))
+    )
+
+
+def _numbered(rows: Sequence[Alternative]) -> dict[str, int]:
+    """Number of the note of each shape that needs one."""
+    return {row.shape: n for n, row in enumerate((r for r in rows if r.design is None or r.shortfall), 1)}
+
+
+def _reason(row: Alternative) -> str:
+    if row.design is None:
+        return f"not possible: {row.reason}"
+    worst, *others = row.design.failures
+    return f"NOT met: {worst}" + (f"; {len(others)} more checks not met, too" if others else "")
+
+
+def _compared(row: Alternative, note: int | None) -> tuple[Cell, ...]:
     design = row.design
     if design is None:
-        return (row.shape, *(None,) * 10, f"not possible: {row.reason}")
+        return (row.shape, *(None,) * 10, f"not possible ({note})")
     outcome = design.outcome
     return (
         row.shape,
@@ -109,7 +129,7 @@ def _compared(row: Alternative) -> tuple[Cell, ...]:
         float(outcome.reactions.uplift.value.max()),
         largest_deflection(design),
         float(outcome.worst),
-        "all checks met" if design.passes else "; ".join(("NOT met", *design.failures[:1])),
+        "all checks met" if design.passes else f"NOT met: {row.shortfall} ({note})",
     )
 
 

@@ -19,10 +19,13 @@ from rooftruss.basis.job import Job
 from rooftruss.design.design import LIMIT, Design
 from rooftruss.design.idealisations import idealisations
 from rooftruss.design.idle import idle_summary
+from rooftruss.design.places import Place
+from rooftruss.design.serviceability import unlimited
 from rooftruss.design.stages import durations_of
 from rooftruss.errors import OutputError
 from rooftruss.output.cautions import CAUTIONS
 from rooftruss.output.saving import replace_file
+from rooftruss.timber.terms import DeflectionLimit
 
 Record = dict[str, Any]
 
@@ -78,6 +81,7 @@ def truss_record(design: Design) -> Record:
         "checks": [_check(design, k) for k in range(len(design.run.members.names))],
         "bearing_checks": _bearing_checks(design),
         "deflections": _deflections(design),
+        "deflections_without_limit": _without_limit(design),
         "zero_force": _zero_force(design),
         "pin_jointed": _pin_jointed(design),
         "pieces": [],
@@ -298,11 +302,47 @@ def _deflections(design: Design) -> list[Record]:
             "vertical": _number(found.value[k]) if p.direction == "vertical" else 0.0,
             "horizontal": _number(found.value[k]) if p.direction == "horizontal" else 0.0,
             "direction": p.direction,
-            "limit": _number(found.limit[k]),
-            "combination": design.run.combinations.names[int(found.combination[k])],
+            "limit": _number(found.limit[k]) if found.combination[k] >= 0 else None,
+            "length_over_limit": _length_over_limit(found.rule(k), p),
+            "kind": found.kinds[int(found.kind[k])].name if found.kind[k] >= 0 else None,
+            "combination": design.combination(int(found.combination[k])) if found.combination[k] >= 0 else None,
+            "factors": _service_factors(design, int(found.combination[k]), found.kinds[int(found.kind[k])].name)
+            if found.kind[k] >= 0
+            else {},
             "ok": bool(found.ratio[k] <= LIMIT),
         }
         for k, p in enumerate(found.places)
+    ]
+
+
+def _length_over_limit(rule: DeflectionLimit | None, place: Place) -> float | None:
+    """x of a limit l/x; none for sideways movement."""
+    return _number(rule.ratio) if rule and rule.limits and place.direction == "vertical" else None
+
+
+def _service_factors(design: Design, combination: int, kind: str) -> Record:
+    """Factors of a combination on its cases, with creep where the kind of deflection has it."""
+    run = design.run
+    factors = run.family.timber.service_factors(
+        run.combinations.factors[[combination]],
+        actions=tuple(h.action for h in run.cases.heads),
+        kinds=(kind,),
+        lasting=dict(run.family.scheme.lasting),
+    )
+    return {name: _number(f) for name, f in zip(run.cases.names, factors[0], strict=True) if f}
+
+
+def _without_limit(design: Design) -> list[Record]:
+    """The largest vertical deflection of each kind that nothing limits."""
+    return [
+        {
+            f.place.kind: f.place.name,
+            "vertical": _number(f.value),
+            "kind": f.kind.name,
+            "combination": design.combination(f.combination),
+            "factors": _service_factors(design, f.combination, f.kind.name),
+        }
+        for f in unlimited(design.run)
     ]
 
 

@@ -1,6 +1,7 @@
 """Grids of one truss: members, reactions, deflections, loading, and the combinations these speak of."""
 
-from collections.abc import Collection
+import math
+from collections.abc import Collection, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -8,6 +9,8 @@ from numpy.typing import NDArray
 from rooftruss.analysis.envelope import Peak
 from rooftruss.design.design import LIMIT, Design
 from rooftruss.design.family import GROUPS
+from rooftruss.design.places import Place
+from rooftruss.design.serviceability import unlimited
 from rooftruss.loads.cases import LoadCases
 from rooftruss.loads.roof import ActionCase
 from rooftruss.output.numbering import Numbering
@@ -134,7 +137,8 @@ def reactions_grid(design: Design, numbering: Numbering) -> Grid:
 
 
 def deflections_grid(design: Design, numbering: Numbering) -> Grid:
-    """Deflection nearest to its limit at every place, up and right positive."""
+    """Deflection nearest to its limit at every place, up and right positive; below, the largest of every kind without
+    a limit."""
     columns = (
         Column("Place"),
         Column("Direction"),
@@ -143,23 +147,57 @@ def deflections_grid(design: Design, numbering: Numbering) -> Grid:
         Column("Share of limit", "ratio"),
         COMBINATION,
         Column("Result", "result"),
-        Column("Service combination"),
+        Column("Limit and loads"),
     )
     found, number = design.outcome.deflection, numbering.combinations_of(design)
     rows = tuple(
         (
-            p.name if p.kind == "node" else f"mid {p.name}",
+            place_text(p),
             p.direction,
             float(found.value[k]),
-            float(found.limit[k]),
+            float(found.limit[k]) if found.limit[k] < math.inf else None,
             float(found.ratio[k]),
-            number[int(found.combination[k])],
+            _numbered(number, int(found.combination[k])),
             bool(found.ratio[k] <= LIMIT),
-            design.combination(int(found.combination[k])).removeprefix("deflection, "),
+            _under(design, found.about(k), int(found.combination[k])),
         )
         for k, p in enumerate(found.places)
     )
-    return Grid("Deflections", columns, rows)
+    others = tuple(
+        (
+            place_text(f.place),
+            f.place.direction,
+            f.value,
+            None,
+            None,
+            _numbered(number, f.combination),
+            None,
+            _under(design, f.about, f.combination),
+        )
+        for f in unlimited(design.run)
+    )
+    return Grid("Deflections", columns, (*rows, *others))
+
+
+def place_text(place: Place) -> str:
+    """Where a deflection is taken.
+
+    >>> place_text(Place(name="top 1", kind="member", number=0, direction="vertical"))
+    'mid top 1'
+    """
+    return place.name if place.kind == "node" else f"mid {place.name}"
+
+
+def _numbered(number: Sequence[int], combination: int) -> int:
+    return number[combination] if combination >= 0 else 0
+
+
+def _under(design: Design, about: str, combination: int) -> str:
+    """Kind of a deflection, its limit, and the loads of its combination: "final w_fin, l/250: G + S"."""
+    if combination < 0:
+        return about
+    _, _, loads = design.combination(combination).removeprefix("deflection, ").partition(": ")
+    return f"{about}: {loads}"
 
 
 def loading_grid(design: Design, numbering: Numbering) -> Grid:
@@ -228,6 +266,7 @@ def named_combinations_grid(design: Design, numbering: Numbering) -> Grid:
     peaks = [effects.tension, effects.compression, effects.moment, effects.shear, outcome.utilisation, outcome.bearing]
     peaks += [reactions.down, reactions.uplift, reactions.horizontal]
     used = {int(n) for p in peaks for n in p.combination} | {int(n) for n in outcome.deflection.combination}
+    used |= {f.combination for f in unlimited(design.run)}
     number = numbering.combinations_of(design)
     rows = tuple(
         (

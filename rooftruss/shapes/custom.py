@@ -174,11 +174,13 @@ def _distance(point: Array, member: Member, place: _Place) -> float:
 
 
 def _cross(a: Member, b: Member, place: _Place) -> bool:
-    """Whether two members without a common joint cross: each has its ends on both sides of the other."""
+    """Whether two members without a common joint cross: each has its ends clearly on both sides of the other."""
 
     def side(m: Member, point: int) -> float:
         run, to = place.xy[m.end] - place.xy[m.start], place.xy[point] - place.xy[m.start]
-        return float(run[0] * to[1] - run[1] * to[0])
+        beside = float(run[0] * to[1] - run[1] * to[0])
+        on_line = abs(beside) <= CLOSE * place.size * float(np.hypot(*run))  # round-off of members in one line
+        return 0.0 if on_line else beside
 
     return side(a, b.start) * side(a, b.end) < 0 and side(b, a.start) * side(b, a.end) < 0
 

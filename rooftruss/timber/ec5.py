@@ -9,15 +9,28 @@ from numpy.typing import NDArray
 from rooftruss.basis.grades import Grade
 from rooftruss.basis.sections import Section
 from rooftruss.errors import JobError, nearest
+from rooftruss.timber import ec5_deflection, ec5_truss
 from rooftruss.timber import ec5_tables as tables
-from rooftruss.timber import ec5_truss
 from rooftruss.timber.ec5_check import RULES, rule_ratios, utilisations
 from rooftruss.timber.ec5_explain import explain_bearing, explain_member
-from rooftruss.timber.ec5_formulas import contact_length, final_factors, size_factor
+from rooftruss.timber.ec5_formulas import contact_length, size_factor
 from rooftruss.timber.ec5_resistance import bearing_factors, resistances
 from rooftruss.timber.ec5_tables import contact_addition
 from rooftruss.timber.ec5_truss import TrussRules
-from rooftruss.timber.terms import Array, Bays, Checks, Creep, Demand, Durations, Members, Simplified, Step
+from rooftruss.timber.terms import (
+    Array,
+    Bays,
+    Checks,
+    Creep,
+    Deflected,
+    DeflectionKind,
+    DeflectionLimit,
+    Demand,
+    Durations,
+    Members,
+    Simplified,
+    Step,
+)
 from rooftruss.timber.worst import governing_checks
 
 NAME = "EN 1995-1-1"
@@ -34,6 +47,7 @@ class Ec5:
     load_over_bearing: bool = True  # l_1 < 2h of 6.1.5
     truss_analysis: str = ec5_truss.FRAME  # or SIMPLIFIED
     node_loaded: bool = False  # loads act mainly at the panel points
+    building: str = ec5_deflection.ORDINARY  # its use, for the deflection limits
 
     @property
     def name(self) -> str:
@@ -180,6 +194,11 @@ class Ec5:
         text = f"k_def = {k_def:g}, service class {self.service_class}: what lasts deflects {1 + k_def:g} times as far"
         return Creep(coefficient=k_def, clause="EN 1995-1-1 Table 3.2", text=text)
 
+    @property
+    def deflection_kinds(self) -> tuple[DeflectionKind, ...]:
+        """w_inst, that of the variable loads alone, w_fin, and those of the other combinations of EN 1990, 6.5.3."""
+        return ec5_deflection.KINDS
+
     def service_factors(
         self,
         factors: Array,
@@ -188,32 +207,39 @@ class Ec5:
         kinds: tuple[str, ...],
         lasting: Mapping[str, float],
     ) -> Array:
-        """Factors (k, c) of characteristic combinations, with creep in those of the kind "final"; 2.2.3(5).
+        """Factors (k, c) of each kind of deflection from those of its combinations, with creep; 2.2.3.
 
         lasting: psi_2 by action, 0 for one that is not there; dead load lasts.
         """
-        share = [1.0 if a == "D" else lasting.get(a, 0.0) for a in actions]
-        final = final_factors(factors, np.array(share, dtype=float), k_def=self.creep().coefficient)
-        return np.where(np.array([kind == "final" for kind in kinds])[:, None], final, factors)
+        dead = np.array([a == "D" for a in actions], dtype=float)
+        share = np.array([1.0 if a == "D" else lasting.get(a, 0.0) for a in actions])
+        return ec5_deflection.deflection_factors(factors, kinds, dead, share, k_def=self.creep().coefficient)
 
-    def deflection_ratio(self, ceiling: str, kind: str) -> float:
-        """Length over the largest deflection [-], kinds "instantaneous" and "final"; EN 1995-1-1, Table 7.2."""
-        return tables.deflection_ratio(ceiling, kind)
+    def deflection_limit(self, ceiling: str, kind: str) -> DeflectionLimit:
+        """Limit of a kind of deflection; EN 1995-1-1, Table 7.2, or the annex of the country."""
+        return ec5_deflection.deflection_limit(ceiling, kind, choice=self.national_choices, building=self.building)
+
+    def explain_deflection(self, moved: Deflected) -> tuple[Step, ...]:
+        """A deflection line by line; its last step is the share of the limit."""
+        k_def = self.creep().coefficient
+        return ec5_deflection.explain_deflection(moved, k_def=k_def, service_class=self.service_class)
 
 
 def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
     """EN 1995-1-1 with the keys service_class (1, 2, 3), load_sharing ("auto", true, false), load_over_bearing,
-    truss_analysis ("frame", "simplified"), node_loaded and national_choices.
+    truss_analysis ("frame", "simplified"), node_loaded, building_use and national_choices.
 
-    All but the first may be left out: "auto", true, "frame", false, "recommended". Other keys of [timber] are not the
-    standard's. Raises JobError naming the key that is missing or wrong, OutOfScopeError for a country whose values are
-    not at hand.
+    All but the first may be left out: "auto", true, "frame", false, "ordinary", "recommended". Other keys of [timber]
+    are not the standard's. Raises JobError naming the key that is missing or wrong, OutOfScopeError for a country whose
+    values are not at hand.
     """
     service_class = options.get("service_class")
     if isinstance(service_class, bool) or service_class not in SERVICE_CLASSES:
         raise JobError(f"[timber] service_class: {service_class!r} must be 1, 2 or 3 ({name}, 2.3.1.3)")
     country = str(options.get("national_choices", "recommended"))
     tables.national(country, "solid timber", int(service_class))
+    building = str(options.get("building_use") or ec5_deflection.ORDINARY)
+    ec5_deflection.require_limits(country, building)
     return Ec5(
         service_class=int(service_class),
         load_sharing=_sharing(options.get("load_sharing", "auto")),
@@ -221,6 +247,7 @@ def ec5_standard(name: str, options: Mapping[str, object]) -> Ec5:
         load_over_bearing=bool(options.get("load_over_bearing", True)),
         truss_analysis=_analysis(str(options.get("truss_analysis", ec5_truss.FRAME))),
         node_loaded=bool(options.get("node_loaded", False)),
+        building=building,
     )
 
 

@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 from rooftruss.timber.ec5_resistance import Resistances
 from rooftruss.timber.ec5_truss import TrussRules
 from rooftruss.timber.terms import Array, Demand, Rule
-from rooftruss.timber.worst import blocks, by_member
+from rooftruss.timber.worst import blocks, by_member, spread
 
 RULES = (
     Rule(name="tension", clause="6.1.2, eq. (6.1)"),
@@ -99,7 +99,7 @@ def _flat(values: Array, batch: tuple[int, ...]) -> Array:
 def _largest(unit: _Unit, forces: list[Array], index: NDArray[np.intp], rules: TrussRules, out: Array) -> None:
     """Largest ratio of one block of trusses into `out` (b, m, k). Linear rules first; they share gamma_M/k_mod."""
     tension, compression, positive, negative, shear = forces
-    scale = np.take(unit.scale, index, axis=-1)
+    scale = spread(unit.scale, index)
     torsion = positive * unit.positive
     np.maximum(torsion, np.multiply(negative, unit.negative, out=out), out=torsion)
     bending = np.maximum(positive, negative)

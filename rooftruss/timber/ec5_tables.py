@@ -116,22 +116,6 @@ def system_strength() -> tuple[float, float, float]:
     return _number(row, "k_sys"), _number(row, "least_number"), _number(row, "spacing_up_to")
 
 
-def deflection_ratio(ceiling: str, kind: str) -> float:
-    """Length over the largest deflection [-]; EN 1995-1-1, Table 7.2. Raises JobError for an unknown ceiling or kind.
-
-    >>> deflection_ratio("plaster", "final")
-    350.0
-    """
-    table = _table("deflection_limits")
-    kinds = [c for c in table.columns if c not in ("ceiling", "source")]
-    ceilings = [str(cell) for cell in table.column("ceiling")]
-    if kind not in kinds:
-        raise JobError(f"kind of service combination {kind!r} is not one of EN 1995-1-1; {nearest(kind, kinds)}")
-    if ceiling not in ceilings:
-        raise JobError(f"[deflection] ceiling: {ceiling!r} is not known; {nearest(ceiling, ceilings)}")
-    return _number(table.where(ceiling=ceiling), kind)
-
-
 def strengths(row: Mapping[str, Cell]) -> dict[str, float]:
     """Characteristic values of a grade row [Pa, kg/m3]. Raises JobError for one that is missing or not above zero."""
     found = {}

@@ -10,13 +10,25 @@ from rooftruss.basis.grades import Grade
 from rooftruss.basis.sections import Section
 from rooftruss.basis.tables import Cell, read_table
 from rooftruss.errors import JobError, OutOfScopeError, nearest
+from rooftruss.timber import deflection
 from rooftruss.timber import nds_tables as tables
-from rooftruss.timber.deflection import limit_ratio
 from rooftruss.timber.nds_check import RULES, rule_ratios, utilisations
 from rooftruss.timber.nds_explain import explain_bearing, explain_member
 from rooftruss.timber.nds_formulas import lumber_density
 from rooftruss.timber.nds_resistance import at_durations, resistances
-from rooftruss.timber.terms import Array, Bays, Checks, Creep, Demand, Durations, Members, Step
+from rooftruss.timber.terms import (
+    Array,
+    Bays,
+    Checks,
+    Creep,
+    Deflected,
+    DeflectionKind,
+    DeflectionLimit,
+    Demand,
+    Durations,
+    Members,
+    Step,
+)
 from rooftruss.timber.worst import governing_checks
 
 MOISTURES = ("dry", "wet")
@@ -233,9 +245,18 @@ class Nds:
         total = np.array([kind == "total" for kind in kinds])
         return np.where(total[:, None] & dead, factors * (1 + self.creep().coefficient), factors)
 
-    def deflection_ratio(self, ceiling: str, kind: str) -> float:
-        """Span over the largest deflection [-]; IBC 2021 Table 1604.3."""
-        return limit_ratio(ceiling, kind)
+    @property
+    def deflection_kinds(self) -> tuple[DeflectionKind, ...]:
+        """The columns of IBC Table 1604.3."""
+        return deflection.DEFLECTION_KINDS
+
+    def deflection_limit(self, ceiling: str, kind: str) -> DeflectionLimit:
+        """Limit of a kind of deflection; IBC 2021 Table 1604.3."""
+        return deflection.deflection_limit(ceiling, kind)
+
+    def explain_deflection(self, moved: Deflected) -> tuple[Step, ...]:
+        """A deflection line by line; its last step is the share of the limit."""
+        return deflection.explain_deflection(moved, self.creep())
 
 
 def nds_standard(name: str, options: Mapping[str, object]) -> Nds:

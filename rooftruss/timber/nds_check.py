@@ -15,7 +15,7 @@ from rooftruss.timber.nds_formulas import AMPLIFIER_FLOOR
 from rooftruss.timber.nds_resistance import Resistances
 from rooftruss.timber.nds_tables import limit
 from rooftruss.timber.terms import Array, Demand, Rule
-from rooftruss.timber.worst import blocks, by_member
+from rooftruss.timber.worst import blocks, by_member, spread
 
 RULES = (
     Rule(name="tension", clause="3.8.1"),
@@ -117,7 +117,7 @@ def _largest(unit: _Unit, forces: list[Array], index: NDArray[np.intp], out: Arr
     moment = np.maximum(positive, negative)
 
     def lasting(ratio: Array) -> Array:
-        return np.take(ratio, index, axis=-1)
+        return spread(ratio, index)
 
     np.multiply(tension, lasting(unit.tension), out=out)
     spare = moment * lasting(unit.star)
@@ -155,7 +155,7 @@ def _bending(unit: _Unit, forces: list[Array], index: NDArray[np.intp], out: Arr
         if slender.any():
             np.multiply((moment > unit.least_moment).astype(np.float64), slender, out=spare)
             np.maximum(out, spare, out=out)
-    upper, lower = (np.take(ratio, index, axis=-1) for ratio in (unit.positive, unit.negative))
+    upper, lower = (spread(ratio, index) for ratio in (unit.positive, unit.negative))
     if len(forces) > len(_FORCES):
         relief = np.multiply(forces[5], unit.relief, out=spare)
         upper *= positive - relief

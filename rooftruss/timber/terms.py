@@ -95,10 +95,13 @@ class Rule:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Checks:
-    """Utilisation (..., k, m); of each member the largest, its combination (-1 where nothing acts), and its rule."""
+    """Of each member the largest utilisation, its combination (-1 where nothing acts) and its rule.
+
+    utilisation (..., k, m) under every combination; None where it was not kept.
+    """
 
     rules: tuple[Rule, ...]
-    utilisation: Array
+    utilisation: Array | None
     governing: Peak  # (..., m)
     rule: NDArray[np.int8]  # (..., m) number among `rules`
 
@@ -110,6 +113,45 @@ class Creep:
     coefficient: float
     clause: str
     text: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DeflectionKind:
+    """One deflection that a standard looks at, and the kind of service combination it is taken under."""
+
+    name: str  # "final"
+    symbol: str  # as the standard writes it, "w_fin"
+    combinations: str  # "characteristic"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DeflectionLimit:
+    """The limit of one kind of deflection, as a share of a length."""
+
+    ratio: float  # length over the largest deflection [-]; NaN: there is none
+    symbol: str  # what the source limits, "w_net,fin"
+    source: str  # of the limit; "" where there is none
+
+    @property
+    def limits(self) -> bool:
+        """Whether there is a limit."""
+        return self.ratio == self.ratio
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Deflected:
+    """How far one place of an unbatched truss moves under one service combination, by its cases (c,)."""
+
+    kind: DeflectionKind
+    clause: str  # of the combination
+    cases: tuple[str, ...]
+    actions: tuple[str, ...]
+    immediate: Array  # under each case, unfactored [m], up and right positive
+    factors: Array  # of the combination; 0 for a case that does not act
+    lasting: Mapping[str, float]  # share of each action that lasts, from the scheme
+    length: float  # l of the limit [m]; NaN for sideways movement
+    limit: float  # largest movement [m]; infinite where there is none
+    rule: DeflectionLimit  # what the limit follows from; of no meaning for sideways movement
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -178,13 +220,21 @@ class TimberStandard(Protocol):
     def creep(self) -> Creep:
         """Creep of the deflection under lasting load in the service conditions of the job."""
 
+    @property
+    def deflection_kinds(self) -> tuple[DeflectionKind, ...]:
+        """The deflections that the standard looks at."""
+
     def service_factors(
         self, factors: Array, *, actions: tuple[str, ...], kinds: tuple[str, ...], lasting: Mapping[str, float]
     ) -> Array:
-        """Factors (k, c) of service combinations of the given `kinds` (k,) on cases of `actions` (c,), with creep.
+        """Factors (k, c) of `kinds` of deflection (k,) on cases of `actions` (c,), with creep, from the factors of the
+        service combinations.
 
         lasting: share of each action that lasts, from the scheme; none where the timber standard knows it itself.
         """
 
-    def deflection_ratio(self, ceiling: str, kind: str) -> float:
-        """Span over the largest deflection [-] under a kind of service combination."""
+    def deflection_limit(self, ceiling: str, kind: str) -> DeflectionLimit:
+        """Limit of a kind of deflection. Raises JobError for a ceiling or kind that the standard does not know."""
+
+    def explain_deflection(self, moved: Deflected) -> tuple[Step, ...]:
+        """A deflection line by line; the last step is its share of the limit, or itself where there is none."""

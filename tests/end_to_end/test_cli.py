@@ -88,7 +88,10 @@ def test_a_truss_without_a_passing_size_gives_exit_code_1_and_says_what_failed(t
         (("quote", "absent.toml"), "there is no such file"),
         (("quote", HOUSE, "-o", "quote.txt"), "ends in .xlsx"),
         (("explain", HOUSE, "T9", "top 1"), "there is no truss 'T9'; allowed: 'T1', 'T2', 'T3'"),
-        (("explain", HOUSE, "T3", "topp 1"), "has no member, bearing or load case 'topp 1'; did you mean 'top 1'?"),
+        (
+            ("explain", HOUSE, "T3", "topp 1"),
+            "has no member, bearing, deflection or load case 'topp 1'; did you mean 'top 1'?",
+        ),
         (("explain", HOUSE, "T3", "bearing Z"), "no bearing at 'Z'"),
         (("explain", HOUSE, "T3", "top 1", "--combination", "9999"), "no strength combination '9999'"),
         (("size", "--like", HOUSE, "--span", "28"), "span: '28' has no unit"),

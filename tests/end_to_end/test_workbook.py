@@ -11,6 +11,7 @@ from openpyxl import load_workbook
 
 from rooftruss.cli import main
 from rooftruss.design.design import Design
+from rooftruss.design.serviceability import unlimited
 from rooftruss.run import Result
 from tests.end_to_end.demo import DEMO_JOBS, changed_house, designed
 
@@ -138,8 +139,9 @@ def test_every_reaction_and_bearing(quote):
 def test_every_deflection(quote):
     for design in quote.result.designs:
         rows, found = quote.grid(design.spec.mark, "Place"), design.outcome.deflection
-        assert len(rows) == len(found.places)
-        for k, (row, place) in enumerate(zip(rows, found.places, strict=True)):
+        others = unlimited(design.run)  # kinds without a limit stand below
+        assert len(rows) == len(found.places) + len(others)
+        for k, (row, place) in enumerate(zip(rows, found.places, strict=False)):
             assert str(row["Place"]).removeprefix("mid ") == place.name
             assert row["Direction"] == place.direction
             assert row["Deflection"] == pytest.approx(float(found.value[k]), rel=1e-9)
@@ -147,6 +149,16 @@ def test_every_deflection(quote):
             assert row["Share of limit"] == pytest.approx(float(found.ratio[k]), rel=1e-9)
             under = design.combination(int(found.combination[k])).removeprefix("deflection, ")
             assert quote.named(row["Share of limit by"]) == under
+            assert row["Result"] == "met"
+            assert str(row["Limit and loads"]).startswith(f"{found.about(k)}: ")
+            ratio = found.rule(k).ratio
+            assert (f", l/{ratio:g}: " in str(row["Limit and loads"])) == (place.direction == "vertical")
+        for row, largest in zip(rows[len(found.places) :], others, strict=True):
+            assert str(row["Place"]).removeprefix("mid ") == largest.place.name
+            assert row["Deflection"] == pytest.approx(largest.value, rel=1e-9)
+            assert (row["Limit"], row["Share of limit"], row["Result"]) == (None, None, None)
+            assert f"{largest.kind.name} " in str(row["Limit and loads"])
+            assert ", no limit: " in str(row["Limit and loads"])
 
 
 def test_the_first_page_and_its_sums(quote):

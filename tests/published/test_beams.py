@@ -24,8 +24,7 @@ def beam_of(entry):
 
 def place_of_largest(effects, cases, member):
     """Distance from the start of a member to its largest moment: where the shear of a segment changes sign."""
-    count = len(cases.member_of)
-    m0, m1, w = (effects.values[0, i * count : (i + 1) * count] for i in range(3))
+    m0, m1, w = effects.values[:3, :, 0]
     best = (-np.inf, 0.0)
     for s in (s for s, k in enumerate(cases.member_of) if k == member):
         run = float(effects.run[s])

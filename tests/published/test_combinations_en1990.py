@@ -80,8 +80,8 @@ def test_number_of_combinations_of_many_arrangements(gamma_G):
 
 
 def test_what_lasts_is_the_quasi_permanent_combination():
-    """EN 1990, 6.16b: G + psi_2 Q. It is not checked by itself: final deflection takes k_def times it (EN 1995-1-1,
-    2.2.3(3)), so the growth of the final over the characteristic combination must be k_def times (6.16b)."""
+    """EN 1990, 6.16b: G + psi_2 Q. Final deflection takes k_def times it (EN 1995-1-1, 2.2.3(3)), so the growth of the
+    final deflection over the characteristic combination must be k_def times (6.16b)."""
     quasi_permanent = {  # by hand from EN 1990, Table A1.1: S, W, loft of category A
         300.0: (1.0, 0.0, 0.0, 0.3),
         1200.0: (1.0, 0.2, 0.0, 0.3),
@@ -89,7 +89,7 @@ def test_what_lasts_is_the_quasi_permanent_combination():
     for altitude, expected in quasi_permanent.items():
         scheme = load_scheme("en1990-6.10", site={"altitude": altitude})
         made = combine(heads("S", "W", "L"), scheme, {})
-        rows = [k for k, kind in enumerate(made.kinds) if kind == "final" and made.factors[k].all()]
+        rows = [k for k, kind in enumerate(made.kinds) if kind == "characteristic" and made.factors[k].all()]
         assert len(rows) == 3  # each of the three leads once
         code = ec5_standard("EN 1995-1-1", {"service_class": 2})  # k_def = 0.8
         final = code.service_factors(
@@ -107,13 +107,14 @@ def test_published_factors():
     strength = found("en1990-6.10", "S", "W")
     assert {(1.35, 1.5, 0.9), (1.35, 0.75, 1.5)} <= strength
     # the same pages, serviceability, characteristic: G + S + 0.6 W and G + W + 0.5 S
-    assert {(1.0, 1.0, 0.6), (1.0, 0.5, 1.0)} <= found("en1990-6.10", "S", "W", kind="instantaneous")
-    assert found("en1990-6.10", "S", "W", kind="instantaneous") == found("en1990-6.10", "S", "W", kind="final")
+    assert {(1.0, 1.0, 0.6), (1.0, 0.5, 1.0)} <= found("en1990-6.10", "S", "W", kind="characteristic")
+    # frequent: G + 0.2 S and G + 0.2 W, and nothing else
+    assert found("en1990-6.10", "S", "W", kind="frequent") == {(1.0, 0.2, 0.0), (1.0, 0.0, 0.2)}
 
 
 def test_maintenance_never_stands_with_snow_or_wind():
     for scheme in ("en1990-6.10", "en1990-6.10ab"):
-        for kind in ("", "instantaneous", "final"):
+        for kind in ("", "characteristic", "frequent", "quasi-permanent"):
             for _, s, w, q_h in found(scheme, "S", "W", "Lr", kind=kind):
                 assert not (q_h and (s or w))
 
@@ -142,7 +143,7 @@ def test_design_effects():
     assert strength.min() == pytest.approx(-7.47)
     with_one = [c for c in found("en1990-6.10", "S", "W") if c[0] != 0.9]
     assert min(np.array(with_one) @ np.array([4.2, 6.0, -7.5])) == pytest.approx(-7.05)
-    service = np.array(sorted(found("en1990-6.10", "S", "W", kind="instantaneous"))) @ np.array([4.2, 6.0, -7.5])
+    service = np.array(sorted(found("en1990-6.10", "S", "W", kind="characteristic"))) @ np.array([4.2, 6.0, -7.5])
     assert service.max() == pytest.approx(10.2)
 
 

@@ -295,7 +295,7 @@ def test_service_factors_grow_dead_load_in_total_combinations_only():
     found = nds(moisture="wet").service_factors(factors, actions=("D", "L", "D"), kinds=("total", "live"))
     assert found.tolist() == [[2.0, 0.0, 2.0], [0.0, 1.0, 0.0]]
     assert nds().creep().coefficient == 0.5
-    assert nds().deflection_ratio("plaster", "live") == 360
+    assert nds().deflection_limit("plaster", "live").ratio == 360
 
 
 def test_an_impossible_question_is_refused():

@@ -19,6 +19,7 @@ from rooftruss.loads.wind_en1991_factors import (
     turbulence_intensity,
     wall_coefficient,
 )
+from tests.load_resultants import reactions
 from tests.roofs import gable_in_metres
 
 TERRAIN = {"0": (0.003, 1.0), "I": (0.01, 1.0), "II": (0.05, 2.0), "III": (0.3, 5.0), "IV": (1.0, 10.0)}  # Table 4.1
@@ -218,11 +219,43 @@ def test_line_load_normal_to_the_rafter():
     assert right / sin == pytest.approx(-273.0)
 
 
-@pytest.mark.parametrize(("pitch_deg", "across"), [(3.0, 2), (5.0, 4), (45.0, 4), (46.0, 1), (60.0, 1), (75.0, 1)])
+@pytest.mark.parametrize(
+    ("pitch_deg", "across"), [(3.0, 2), (5.0, 4), (45.0, 4), (46.0, 4), (60.0, 4), (60.1, 1), (75.0, 1)]
+)
 def test_number_of_patterns_by_pitch(pitch_deg, across):
     shorts = [c.short for c in wind_cases(gable(pitch_deg), SITE)]
     assert len([s for s in shorts if s.startswith("left")]) == 2 * across
     assert len([s for s in shorts if s.startswith("right")]) == 2 * across
+
+
+def test_no_case_jumps_or_ends_at_45_deg():
+    # EN 1991-1-4, Table 7.4a: a line that ends at 45 deg ends with 0.0; it stays there up to 60 deg
+    below, above = ({c.short: c for c in wind_cases(gable(45.0 + d, overhang=0.4), SITE)} for d in (-1e-6, 1e-6))
+    assert below.keys() == above.keys()
+    for short, case in below.items():
+        scale = max(abs(float(load.pressure)) for load in case.loads)
+        for found, expected in zip(
+            reactions(above[short], gable(45.0 + 1e-6, overhang=0.4)),
+            reactions(case, gable(45.0 - 1e-6, overhang=0.4)),
+            strict=True,
+        ):
+            assert found == pytest.approx(expected, abs=1e-5 * scale)
+
+
+@pytest.mark.parametrize(
+    ("pitch_deg", "windward", "leeward"),
+    [  # by hand: F, G, H +0.7, +0.7, +0.6 at 45 and +0.7 at 60 deg; I, J -0.2, -0.3 at both; the other lines 0.0
+        (45.0, (0.7, 0.6), (-0.3, -0.2)),
+        (52.5, (0.7, 0.65), (-0.3, -0.2)),
+        (60.0, (0.7, 0.7), (-0.3, -0.2)),
+    ],
+)
+def test_both_lines_of_either_face_between_45_and_60_deg(pitch_deg, windward, leeward):
+    cases = {c.short: c for c in wind_cases(gable(pitch_deg), SITE)}
+    for short in ("s/s", "s/p", "p/s", "p/p"):
+        values = {v.symbol: float(v.value) for v in cases[f"left {short}, +i"].values}
+        assert [values[f"c_pe, {z}"] for z in "GH"] == pytest.approx(windward if short[0] == "p" else (0.0, 0.0))
+        assert [values[f"c_pe, {z}"] for z in "JI"] == pytest.approx(leeward if short[2] == "s" else (0.0, 0.0))
 
 
 def test_zone_i_needs_a_long_building():

@@ -105,7 +105,7 @@ def test_a_shed_roof_runs_where_neither_snow_nor_wind_acts():
     # roof live of 20 psf on plan: R_2 = 1 at 3/12, R_1 = 1 under 200 ft2; the whole of it comes down at the bearings
     full = made.run.cases.names.index("roof live")
     down = float(made.run.solution.reactions[full, :, 1].sum()) / 4.4482216
-    assert down == pytest.approx(20 * 2 * LENGTH, rel=0.01)  # half a bearing has no slope to press on at the upper end
+    assert down == pytest.approx(20 * 2 * 24, rel=1e-6)  # 24 ft out to out of bearings, 2 ft apart
 
 
 @pytest.mark.parametrize("site", [{"ground_snow": "0 psf"}, {"wind_speed": "0 mph"}])

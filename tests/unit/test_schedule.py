@@ -8,7 +8,13 @@ import pytest
 from rooftruss.loads.roof import Value
 from rooftruss.output.case_grids import cases_grids
 from rooftruss.output.cautions import CAUTIONS, SHORT_CAUTIONS
-from rooftruss.output.job_grids import assumptions_grid, combinations_grid, comparison_grid, quote_grid
+from rooftruss.output.job_grids import (
+    assumptions_grid,
+    combinations_grid,
+    comparison_grid,
+    comparison_notes,
+    quote_grid,
+)
 from rooftruss.output.numbering import numbering_of
 from rooftruss.output.picture import picture
 from rooftruss.output.schedule import BEYOND, Column, Grid, Measure, frame, shown_grid
@@ -176,7 +182,8 @@ def test_sizes_and_comparison():
     rows = [Alternative(shape="fink", design=designs[0]), Alternative(shape="howe", design=None, reason="too steep")]
     shown = rows_of(comparison_grid(rows))
     assert shown[0]["Result"] == "all checks met"
-    assert shown[1]["Result"] == "not possible: too steep"
+    assert shown[1]["Result"] == "not possible (1)"
+    assert comparison_notes(rows) == ("(1) howe: not possible: too steep",)
 
 
 def test_assumptions_hold_those_of_the_job_and_of_the_model_once():

@@ -176,12 +176,12 @@ def cases_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbe
     """All load cases: the values they come from with their clauses, and the loads on the surfaces."""
     grids = cases_grids(designs, numbering)
     abreast = max((len(g.columns) - 5 for g in grids), default=1)
-    page.widths((7, 40, 30, 8, *(11,) * abreast, 36))
+    page.widths((7, 44, 30, 8, *(11,) * abreast, 36))
     page.line("Cases", "title", 24)
     page.line("Characteristic loads, before any factor. Pressure towards the surface, or down, is positive.")
     page.row += 1
     for grid in grids:
-        page.grid(grid, title="", look="data")
+        page.grid(grid, title="", wrap=(1, 2, len(grid.columns) - 1), look="data")
     for_print(page, job, landscape=True, repeat="4:4", freeze="A5")
 
 

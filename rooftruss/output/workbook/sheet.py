@@ -1,6 +1,7 @@
 """A sheet that is filled from the top: titles, notes and grids; and how it prints."""
 
 from collections.abc import Callable, Sequence
+from textwrap import wrap
 from typing import TYPE_CHECKING, Any
 
 from rooftruss.basis.job import Job
@@ -133,9 +134,9 @@ class Page:
 
     def _headings(self, columns: Sequence[ShownColumn], slots: Sequence[int]) -> None:
         place = dict(zip(slots, columns, strict=True))
-        double = any(len(c.heading) > self._widths[slot - 1] for slot, c in place.items())
+        most = max(_lines(c.heading, self._widths[slot - 1]) for slot, c in place.items())
         units = any(c.unit for c in columns)
-        lines = (("head" if units else "heads", 26 if double else 15), *((("unit", 11),) if units else ()))
+        lines = (("head" if units else "heads", 4 + 11 * most), *((("unit", 11),) if units else ()))
         for look, height in lines:
             for slot in range(1, max(slots) + 1):
                 column = place.get(slot)
@@ -167,6 +168,15 @@ class Page:
         lines = max((-(-len(text) // max(int(1.4 * width - 1), 1)) for text, width in texts), default=1)
         if lines > 1:
             self.sheet.row_dimensions[self.row].height = LINE_HEIGHT * lines + 1
+
+
+def _lines(heading: str, width: float) -> int:
+    """Lines that a heading takes in a column of a width in characters.
+
+    >>> _lines("Span", 8), _lines("Worst ratio", 7), _lines("Limit and service combination", 11.5)
+    (1, 2, 3)
+    """
+    return len(wrap(heading, max(int(width), 1), break_long_words=False, break_on_hyphens=False))
 
 
 def _align(column: ShownColumn, slot: int) -> str:
