@@ -72,6 +72,11 @@ class Design:
         return {g: self.run.choice.taken(g) for g in GROUPS}
 
     @property
+    def length_over_all(self) -> float:
+        """Plan length between the outermost joints, tails included [m]."""
+        return float(np.ptp(self.run.truss.xy[..., 0]))
+
+    @property
     def passes(self) -> bool:
         """Whether every check and limit is met."""
         return bool(self.outcome.passes)

@@ -193,6 +193,7 @@ def assumptions_grid(job: Job, designs: Sequence[Design]) -> Grid:
         *((a.place, a.text) for a in job.assumptions),
         *((d.run.family.timber.name, note) for d in designs for note in d.run.family.timber.notes),
         *((d.spec.mark, note) for d in designs for note in d.notes),
+        *((d.spec.mark, note) for d in designs for note in d.run.family.timber.truss_notes(d.length_over_all)),
         *given_rows(job, designs),
         *(("model", text) for text in MODEL_ASSUMPTIONS),
     ]
