@@ -198,6 +198,8 @@ def _scatter(topology: Topology) -> tuple[NDArray[np.intp], ...]:
 
 def _factor_and_solve(topology: Topology, stiffness: Array, load: Array) -> Array:
     """Movements (free, b, c) under loads (total + 1, b, c)."""
+    if not stiffness.shape[-1]:  # beams on supports of which none runs through
+        return load[:0]
     require_stable(topology, stiffness[:1])  # rounding hides a mechanism from the solver; one truss of a batch tells
     right = np.ascontiguousarray(np.swapaxes(load[: stiffness.shape[-1]], 0, 1))
     try:

@@ -21,7 +21,7 @@ from rooftruss.basis.sections import find_section
 from rooftruss.design.design import LIMIT, Outcome, outcome_of
 from rooftruss.design.family import GROUPS, Choice, Family, Option, family_of
 from rooftruss.design.stages import run
-from rooftruss.errors import JobError
+from rooftruss.errors import JobError, RooftrussError
 from rooftruss.loads.actions import AreaLoads
 from rooftruss.shapes.forming import Dimensions, layout_of
 from rooftruss.timber.check import standard
@@ -185,8 +185,22 @@ def _part(family: Family, rows: slice) -> Family:
     return replace(family, size=size, loads=loads, points=points)
 
 
+def _named_error(error: RooftrussError, chunk: _Chunk) -> RooftrussError:
+    """The error of a chunk with the mark of the first of its trusses that has it alone."""
+    for k, mark in enumerate(chunk.marks):
+        one = slice(k, k + 1)
+        try:
+            run(_part(chunk.family, one), chunk.choice.part(one))
+        except RooftrussError as own:
+            return type(own)(f"truss {mark}: {own}")
+    return error
+
+
 def _chunk_report(chunk: _Chunk) -> Report:
-    done = run(chunk.family, chunk.choice)
+    try:
+        done = run(chunk.family, chunk.choice)
+    except RooftrussError as error:
+        raise _named_error(error, chunk) from None
     outcome = outcome_of(done)
     each = np.arange(len(chunk.rows))
     member = outcome.utilisation.value.argmax(axis=-1)

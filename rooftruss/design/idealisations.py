@@ -1,4 +1,4 @@
-"""The two idealisations of a truss side by side: the frame that is checked, and the pin-jointed truss."""
+"""The two idealisations of a truss side by side: the frame, and the pin-jointed truss."""
 
 from dataclasses import dataclass
 
@@ -27,7 +27,7 @@ class Idealisations:
 def idealisations(design: Design) -> Idealisations:
     """Pin-jointed and frame forces of one truss, per case."""
     run = design.run
-    found = combined_extremes(run.effects, np.eye(len(run.cases.heads)))
+    found = combined_extremes(run.frame_effects, np.eye(len(run.cases.heads)))
     return Idealisations(
         pin_jointed=pin_jointed_axial(run.truss, run.stiffness_axial, run.cases),
         frame=_larger(found.axial_max, found.axial_min),

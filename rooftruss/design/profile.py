@@ -1,4 +1,6 @@
-"""Whether trusses have the profile that a simplified analysis is kept to."""
+"""Whether trusses are of the kind that a simplified analysis is kept to."""
+
+from itertools import combinations
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,6 +13,8 @@ from rooftruss.units import shown
 
 Array = NDArray[np.float64]
 FIT = 1e-6  # of the square of the span: a corner that turns by less is straight
+NEAR = 1e-3  # [m]
+STRAIGHT = 0.02  # sine of the angle between members of one line, about 1 deg
 FRAME = 'write [timber] truss_analysis = "frame"'
 
 
@@ -28,9 +32,12 @@ def deepest_chord(truss: Truss, rules: Simplified) -> Array:
 def require_profile(family: Family, truss: Truss, depth: Array, rules: Simplified) -> None:
     """Raise OutOfScopeError unless the simplified analysis of `rules` is for these trusses.
 
-    It asks for no re-entrant corner, and for a height over the span and over the depth (...,) [m] of the deeper chord.
+    It asks for chords in one line between hinges, bearings at the ends, no re-entrant corner, and a height over the
+    span and over the depth (...,) [m] of the deeper chord.
     """
     units = family.job.units
+    _require_straight(truss, rules)
+    _require_end_bearings(truss, rules)
     corner = _reentrant(truss)
     if corner is not None:
         raise OutOfScopeError(
@@ -51,6 +58,41 @@ def require_profile(family: Family, truss: Truss, depth: Array, rules: Simplifie
                 f"{rules.clause}(1): the simplified analysis is for trusses higher than {what}, here "
                 f"{shown(float(np.ravel(least)[low[0]]), 'length', units)}, and the truss is "
                 f"{shown(float(np.ravel(tall)[low[0]]), 'length', units)} high; {FRAME}"
+            )
+
+
+def _require_straight(truss: Truss, rules: Simplified) -> None:
+    """Chords are beams in one line: where members pass moment to each other, they are two that go straight on."""
+    made = truss.topology
+    for node, name in enumerate(made.nodes):
+        stiff = [
+            k
+            for k, m in enumerate(made.members)
+            if (m.start == node and not m.pinned_start) or (m.end == node and not m.pinned_end)
+        ]
+        for a, b in combinations(stiff, 2):
+            one, other = truss.direction[..., a, :], truss.direction[..., b, :]
+            turn = np.abs(one[..., 0] * other[..., 1] - one[..., 1] * other[..., 0])
+            if len(stiff) > 2 or np.any(turn > STRAIGHT):
+                raise OutOfScopeError(
+                    f"{rules.clause}(3): the simplified analysis takes chords as beams in one line, and here "
+                    f"{made.names[a]!r} and {made.names[b]!r} pass moment to each other at joint {name!r}; pin them "
+                    f"there, or {FRAME}"
+                )
+
+
+def _require_end_bearings(truss: Truss, rules: Simplified) -> None:
+    """Bearings stand below the ends of the chords."""
+    made = truss.topology
+    x = truss.xy[..., 0]
+    ends = x[..., _chord_joints(truss)]
+    for support in made.supports:
+        here = x[..., support.node]
+        inside = (here > ends.min(axis=-1) + NEAR) & (here < ends.max(axis=-1) - NEAR)
+        if np.any(inside):
+            raise OutOfScopeError(
+                f"{rules.clause}(1): the simplified analysis is for trusses that bear at their heels, and here a "
+                f"bearing stands below joint {made.nodes[support.node]!r}; {FRAME}"
             )
 
 

@@ -17,7 +17,7 @@ from rooftruss.design.checking import checked, demands
 from rooftruss.design.family import GROUPS, Choice, Family, family_of, options_of, unbatched
 from rooftruss.design.members import members_of, take_members
 from rooftruss.design.profile import require_profile
-from rooftruss.errors import UnstableTrussError
+from rooftruss.errors import OutOfScopeError, UnstableTrussError
 from rooftruss.loads.actions import (
     FORMED,
     action_cases,
@@ -112,7 +112,13 @@ def run(family: Family, choice: Choice) -> Run:
     forces, simplified = solution, family.timber.simplified
     if simplified is not None:
         require_profile(family, truss, np.maximum(depth["top chord"], depth["bottom chord"]), simplified)
-        forces = simplified_solution(truss, ea, ei, cases, support_moments=simplified.support_moments)
+        try:
+            forces = simplified_solution(truss, ea, ei, cases, support_moments=simplified.support_moments)
+        except UnstableTrussError as error:
+            raise OutOfScopeError(
+                f"{simplified.clause}(2): the simplified analysis is for trusses that stand with every joint pinned; "
+                f'here {error}, or write [timber] truss_analysis = "frame"'
+            ) from None
     effects = unit_effects(truss, cases, forces)
     strength = np.flatnonzero(combinations.strength)
     factors = combinations.factors[strength]

@@ -89,7 +89,7 @@ class Ec5:
 
     def effective_lengths(self, bays: Bays) -> Array:
         """Effective lengths (..., m) [m] in the plane of the truss; EN 1995-1-1, 9.2.1(3) and (4)."""
-        return ec5_truss.effective_lengths(bays, self.truss_analysis)
+        return ec5_truss.effective_lengths(bays, self.truss_analysis, node_loaded=self.node_loaded)
 
     def properties(self, grade: Grade, section: Section) -> dict[str, float]:
         """Characteristic values and what depends on the size [Pa, -] of a grade; E is E_0,mean, density rho_mean.

@@ -133,10 +133,20 @@ def _sizes(case: _Case, members: Members) -> Iterator[Step]:
         ("b", members.breadth, "size", "breadth of one ply"),
         ("h", members.depth, "size", "depth"),
         ("plies", members.plies, "ratio", "plies"),
-        ("l_ef,y", members.le_strong, "length", "effective length in the plane of the truss"),
-        ("l_ef,z", members.le_weak, "length", "effective length across the plane, 0 where held throughout"),
     ):
         yield Step(symbol=symbol, value=case.of(values), kind=kind, clause="job", text=text)
+    length = case.of(members.length)
+    times = f", {case.of(members.le_strong) / length:.3g} times the length between panel points" if length else ""
+    tail = members.roles[case.member] == "tail"
+    yield Step(
+        symbol="l_ef,y",
+        value=case.of(members.le_strong),
+        kind="length",
+        clause="Euler" if tail else f"{CODE} {case.rules.lengths}",
+        text=f"effective length in the plane of the truss{times}",
+    )
+    text = "effective length across the plane, 0 where held throughout"
+    yield Step(symbol="l_ef,z", value=case.of(members.le_weak), kind="length", clause="job", text=text)
     yield Step(symbol="A", value=case.of(case.r.area), kind="area", clause="b h", text="area of all plies")
     yield Step(
         symbol="W_y", value=case.of(case.r.modulus), kind="section modulus", clause="b h^2/6", text="of all plies"

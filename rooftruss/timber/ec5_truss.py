@@ -23,6 +23,8 @@ class TrussRules:
     axial: float = 1.0  # limit of eq. (6.1), (6.2) and (6.17); 9.2.1(6)
     combined: float = 1.0  # limit of eq. (6.19), (6.23) and (6.24); 9.2.1(1) and (6)
 
+    lengths: str = "9.2.1(3) and practice"  # clause of the effective length in the plane
+
     @property
     def clause(self) -> str:
         """Clause of the limits."""
@@ -34,9 +36,10 @@ def truss_rules(analysis: str, *, node_loaded: bool) -> TrussRules:
 
     9.2.1(1) names eq. (6.19) and (6.20); it is kept for (6.23) and (6.24), which stand in their place for slender
     members. 9.2.1(6) names tension and compression; it is kept for their sums with bending as well (safe side).
+    Eq. (6.35) keeps its limit of 1.
 
     >>> truss_rules("simplified", node_loaded=False)
-    TrussRules(compression=1.1, axial=1.0, combined=1.0)
+    TrussRules(compression=1.1, axial=1.0, combined=1.0, lengths='9.2.1(4)')
     """
     simple = analysis == SIMPLIFIED
     limit = constant("node_loaded_simplified") if simple else constant("node_loaded")
@@ -44,6 +47,7 @@ def truss_rules(analysis: str, *, node_loaded: bool) -> TrussRules:
         compression=constant("compression") if simple else 1.0,
         axial=limit if simple and node_loaded else 1.0,
         combined=limit if node_loaded else 1.0,
+        lengths="9.2.1(4)" if simple and not node_loaded else "9.2.1(3) and practice",
     )
 
 
@@ -70,7 +74,7 @@ def bay_lengths(bays: Array, *, moment_at_start: bool = False, moment_at_end: bo
     """Effective lengths in the plane in the bays (..., n) and at the inner panel points (..., n - 1) [m] of a chord.
 
     It runs through over n >= 2 `bays` (..., n) [m] with load between the panel points; EN 1995-1-1, 9.2.1(4), for the
-    the simplified analysis.
+    simplified analysis.
 
     moment_at_start, moment_at_end: a moment may act at that end, as from a tail. The bay next to the outer one then
     counts in full. That the outer bay need not be checked for buckling under such a moment is not made use of.
@@ -86,14 +90,16 @@ def bay_lengths(bays: Array, *, moment_at_start: bool = False, moment_at_end: bo
     return np.asarray(bays * ratio), np.asarray(constant("at_node") * np.maximum(bays[..., :-1], bays[..., 1:]))
 
 
-def effective_lengths(bays: Bays, analysis: str) -> Array:
+def effective_lengths(bays: Bays, analysis: str, *, node_loaded: bool = False) -> Array:
     """Effective length (..., m) [m] of every member in the plane of the truss; EN 1995-1-1, 9.2.1(3) and (4).
+
+    9.2.1(4) is for chords with load between the panel points: node_loaded says that there is none to speak of.
 
     A member is checked with its largest axial force and moment, in the bay or at a panel point: of the lengths there
     the largest counts.
     """
     out: Array = bays.length * np.array([_role_factor(role) for role in bays.roles])
-    if analysis != SIMPLIFIED:
+    if analysis != SIMPLIFIED or node_loaded:
         return out
     for run in bays.runs:
         inner = [k for k in run if bays.roles[k] != "tail"]
@@ -120,8 +126,9 @@ def _role_factor(role: str) -> float:
 def notes(analysis: str, rules: TrussRules) -> Sequence[str]:
     """What the printed assumptions say of the analysis."""
     found: tuple[str, ...] = (
-        "forces are those of the frame (EN 1995-1-1, 5.4.2); the effective length in the plane is the bay length "
-        "(9.2.1(3)), of a shorter distance between points of contraflexure (9.2.1(2)) no use is made",
+        "forces are those of the frame (EN 1995-1-1, 5.4.2); the effective length in the plane is the bay length, of "
+        "members of one bay by 9.2.1(3), of chords that run through by practice, in the place of the distance between "
+        "points of contraflexure (9.2.1(2))",
     )
     if analysis == SIMPLIFIED:
         lengths = (
@@ -132,7 +139,8 @@ def notes(analysis: str, rules: TrussRules) -> Sequence[str]:
             "simplified analysis (EN 1995-1-1, 5.4.3): axial forces with pinned joints, chords as beams on the panel "
             "points with moments there 10 % less, compression 10 % more in the checks (9.2.1(5)); reactions follow "
             "from it, deflections are those of the frame",
-            "each bearing stands under the heel joint, within the length that 5.4.3(1) allows",
+            "how far a bearing may reach and stand off the heel (5.4.3(1), lengths a_1 and a_2) is NOT checked: it is "
+            "yours to see to",
             lengths,
         )
     if rules.combined < 1:

@@ -12,7 +12,7 @@ from rooftruss.basis.tables import Cell, read_table
 from rooftruss.errors import JobError, OutOfScopeError, nearest
 from rooftruss.timber import deflection
 from rooftruss.timber import nds_tables as tables
-from rooftruss.timber.nds_check import RULES, rule_ratios, utilisations
+from rooftruss.timber.nds_check import RULES, least_effects, rule_ratios, utilisations
 from rooftruss.timber.nds_explain import explain_bearing, explain_member
 from rooftruss.timber.nds_formulas import lumber_density
 from rooftruss.timber.nds_resistance import at_durations, resistances
@@ -159,7 +159,7 @@ class Nds:
         batch = demand.tension.shape[:-2]
 
         def ratios(force: Demand, row: NDArray[np.intp]) -> Iterator[tuple[int, Array]]:
-            return rule_ratios(at_durations(r, index[row], batch), force, self.edition)
+            return rule_ratios(at_durations(r, index[row], batch), force, least_effects(r), self.edition)
 
         return governing_checks(RULES, utilisations(r, demand, index, self.edition), demand, ratios)
 

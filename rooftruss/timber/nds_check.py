@@ -97,8 +97,8 @@ def _unit_ratios(r: Resistances, batch: tuple[int, ...], edition: str) -> _Unit:
         "twist_positive": 1 / (modulus * r.positive.F_bE[..., None, :]),
         "twist_negative": 1 / (modulus * r.negative.F_bE[..., None, :]),
         "relief": modulus / area,
-        "least_force": NEGLIGIBLE * area * r.F_c_star.min(axis=-2, keepdims=True),
-        "least_moment": NEGLIGIBLE * modulus * r.F_b_star.min(axis=-2, keepdims=True),
+        "least_force": least_effects(r)[0][..., None, :],
+        "least_moment": least_effects(r)[1][..., None, :],
     }
     return _Unit(**{name: _flat(np.swapaxes(v, -1, -2), batch) for name, v in ratios.items()})
 
@@ -169,10 +169,19 @@ def _bending(unit: _Unit, forces: list[Array], index: NDArray[np.intp], out: Arr
     return ratio
 
 
-def rule_ratios(r: Resistances, force: Demand, edition: str) -> Iterator[tuple[int, Array]]:
-    """Ratio (..., m) of each rule under one combination a member: demands (..., m), `r` at the duration of each."""
+def least_effects(r: Resistances) -> tuple[Array, Array]:
+    """Force and moment (..., m) below which there is none, whatever the duration."""
+    force, moment = r.F_c_star.min(axis=-2), r.F_b_star.min(axis=-2)
+    return NEGLIGIBLE * r.area * force, NEGLIGIBLE * r.modulus * moment
+
+
+def rule_ratios(r: Resistances, force: Demand, least: tuple[Array, Array], edition: str) -> Iterator[tuple[int, Array]]:
+    """Ratio (..., m) of each rule under one combination a member: demands (..., m), `r` at the duration of each.
+
+    least: force and moment below which there is none.
+    """
     column, beam = limit("column slenderness", edition=edition), limit("bending slenderness", edition=edition)
-    least_force, least_moment = NEGLIGIBLE * r.area * r.F_c_star, NEGLIGIBLE * r.modulus * r.F_b_star
+    least_force, least_moment = least
 
     def acting(values: Array, least: Array) -> Array:
         return np.where(values > least, values, 0.0)

@@ -10,6 +10,7 @@ import pytest
 
 from rooftruss.analysis.effects import combined_extremes, unit_effects
 from rooftruss.analysis.simplified import simplified_solution
+from rooftruss.basis.job import CustomSpec
 from rooftruss.design.members import runs_of
 from rooftruss.design.sizing import size_truss
 from rooftruss.design.stages import durations_of
@@ -161,6 +162,65 @@ def test_chords_too_deep_for_the_simplified_analysis_are_left_out():
     spec = replace(spec, timber=replace(spec.timber, groups={**spec.timber.groups, "top chord": only}))
     with pytest.raises(OutOfScopeError, match="10 times the depth"):
         size_truss(barn(), spec)
+
+
+def test_chords_of_one_bay_are_beams_on_two_supports():
+    # a king post whose bottom chord is spliced in the middle and whose rafters are one bay: nothing runs through
+    spec = simplified(shape="king post", panels=None, span=6.0, overhang=0.0)
+    stock = replace(spec.timber, longest_stock=5.4)
+    run = size_truss(barn(), replace(spec, timber=stock)).run
+    assert all(len(r) == 1 for r in runs_of(run.truss.topology))
+    case, top = run.cases.names.index("dead, top chord"), run.members.names.index("top 1")
+    assert run.forces.end_forces[case, top, 2] == pytest.approx(0.0, abs=1e-9)
+    # roof load w across a rafter of length l: w l^2/8 in its middle
+    normal = 550 * 0.6 * float(run.truss.direction[top, 0])
+    found = combined_extremes(run.effects, np.eye(len(run.cases.names)))
+    assert found.moment_max[case, top] == pytest.approx(normal * float(run.truss.length[top]) ** 2 / 8)
+
+
+def custom(pins, *, support="C", triangulated=True):
+    """A custom king post with tails under the simplified analysis; pins: the pinned ends of the rafters."""
+    nodes = (("A", 0.0, 0.0), ("B", 3.0, 0.0), ("C", 6.0, 0.0), ("D", 3.0, 1.5), ("E", 1.5, 0.75), ("F", 4.5, 0.75))
+    members = [
+        ("top chord", "A", "E", (pins, False)),
+        ("top chord", "E", "D", (False, pins)),
+        ("top chord", "D", "F", (pins, False)),
+        ("top chord", "F", "C", (False, pins)),
+        ("bottom chord", "A", "B", (True, False)),
+        ("bottom chord", "B", "C", (False, True)),
+        ("web", "B", "D", (True, True)),
+    ]
+    if triangulated:
+        members += [("web", "B", "E", (True, True)), ("web", "B", "F", (True, True))]
+    spec = CustomSpec(
+        nodes=nodes,
+        members=tuple(
+            (f"m{k}", role, a, b, "web" if role == "web" else role, *ends)
+            for k, (role, a, b, ends) in enumerate(members)
+        ),
+        supports=(("A", True, True, None), (support, False, True, None)),
+    )
+    return simplified(shape="custom", custom=spec, span=6.1, pitch=0.5, overhang=0.0, bearing=0.1, panels=None)
+
+
+def test_custom_trusses_under_the_simplified_analysis():
+    assert size_truss(barn(), custom(pins=True)).run.forces is not None
+    with pytest.raises(OutOfScopeError, match=r"5\.4\.3\(3\).*pass moment to each other at joint"):
+        size_truss(barn(), custom(pins=False))
+    with pytest.raises(OutOfScopeError, match=r"5\.4\.3\(2\).*every joint pinned.*joint [EF]"):
+        size_truss(barn(), custom(pins=True, triangulated=False))
+
+
+def test_bearings_inside_the_span_are_refused():
+    inner = custom(pins=True)
+    supports = (*inner.custom.supports, ("B", False, True, None))
+    with pytest.raises(OutOfScopeError, match=r"5\.4\.3\(1\).*below joint 'B'"):
+        size_truss(barn(), replace(inner, custom=replace(inner.custom, supports=supports)))
+
+
+def test_bay_length_where_loads_act_at_the_panel_points():
+    rafter = bays([2.2, 2.0], ["top chord"] * 2, [(0, 1)])
+    assert effective_lengths(rafter, "simplified", node_loaded=True).tolist() == [2.2, 2.0]
 
 
 @pytest.mark.parametrize(("analysis", "axial", "combined"), [("frame", 1.0, 0.9), ("simplified", 0.7, 0.7)])

@@ -15,7 +15,8 @@ from rooftruss.design.batch import Report, check_many
 from rooftruss.design.design import outcome_of
 from rooftruss.design.family import Choice, Option, family_of, unbatched
 from rooftruss.design.stages import run
-from rooftruss.errors import JobError
+from rooftruss.errors import JobError, OutOfScopeError
+from tests.en_jobs import EN_SIZES, barn, en_spec
 from tests.jobs import SIZES, house, spec
 
 SPARE = {"top chord": ("2x8", "SPF SS"), "bottom chord": ("2x4", "SPF SS"), "web": ("2x6", "SPF Stud")}
@@ -173,3 +174,11 @@ def _unsheathed(truss: TrussSpec) -> dict[str, GroupTimber]:
     groups = dict(truss.timber.groups)
     groups["top chord"] = replace(groups["top chord"], restraint=Restraint(kind="spacing", spacing=1.2))
     return groups
+
+
+def test_what_a_standard_refuses_names_the_truss():
+    spec = en_spec()
+    timber = replace(spec.timber, options={**spec.timber.options, "truss_analysis": "simplified"})
+    specs = [replace(spec, mark=f"T{k}", pitch=p, timber=timber) for k, p in enumerate((0.5, 0.55, 0.25, 0.5))]
+    with pytest.raises(OutOfScopeError, match=r"^truss T2: EN 1995-1-1, 5\.4\.3\(1\)"):
+        check_many(barn(), specs, [EN_SIZES])
