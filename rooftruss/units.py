@@ -31,6 +31,18 @@ ROOM_FOR = {  # dimension asked for -> example that a message can show
     "kg/m^3": "35 lb/ft^3",
     "m^2*K/W": "30 ft^2*hour*delta_degF/Btu",
 }
+METRIC_ROOM_FOR = {  # kind of display, or dimension -> examples in metric units, the likeliest first
+    "length": ("9.6 m", "9600 mm"),
+    "size": ("600 mm", "20 mm", "0.6 m"),
+    "pressure": ("1.5 kN/m2", "1500 N/m2"),
+    "speed": ("26 m/s", "94 km/h"),
+    "force": ("1.5 kN", "1500 N"),
+    "line load": ("1.5 kN/m", "1500 N/m"),
+    "stress": ("24 N/mm2", "11 kN/mm2"),
+    "density": ("420 kg/m3", "1.25 kg/m3"),
+    "area": ("10 m2", "5400 mm2"),
+    "m^2*K/W": ("5.3 m^2*K/W",),
+}
 
 
 @cache
@@ -154,13 +166,14 @@ METRIC = {
 SYSTEMS = {"US": US, "metric": METRIC}
 
 
-def both(value: float, kind: str) -> str:
-    """Text of an SI value in US and metric units, for messages that do not know the job's.
+def both(value: float, kind: str, system: str = "US") -> str:
+    """Text of an SI value in US and metric units, those of the job first where the message knows them.
 
-    >>> both(0.3048, "size")
-    '12 in (305 mm)'
+    >>> both(0.3048, "size"), both(0.3048, "size", "metric")
+    ('12 in (305 mm)', '304.8 mm (12 in)')
     """
-    return f"{shown(value, kind, 'US')} ({shown(value, kind, 'metric', 3)})"
+    other = "metric" if system == "US" else "US"
+    return f"{shown(value, kind, system)} ({shown(value, kind, other, 3)})"
 
 
 def shown(value: float, kind: str, system: str, digits: int = 4) -> str:
@@ -170,7 +183,7 @@ def shown(value: float, kind: str, system: str, digits: int = 4) -> str:
     '40 psf'
     """
     display = SYSTEMS[system][kind]
-    number = f"{display.of(value):.{digits}g}"
+    number = f"{display.of(value) + 0.0:.{digits}g}"  # no "-0"
     if "e" in number and 1e-4 < abs(display.of(value)) < 1e9:
         number = f"{display.of(value):.0f}"
     return number if display.label == "-" else f"{number} {display.label}"

@@ -16,6 +16,7 @@ from rooftruss.shapes.truss import Truss
 Array = NDArray[np.float64]
 BLOCK = 64_000  # segments x combinations worked on at a time: about 512 kB an array
 TINY = 1e-200  # [N m] nothing next to what a load does to a segment
+NOTHING = 1e-10  # an effect below this share of the largest of its kind in the truss is round-off
 SLIVER = 1e-6  # [m] a shorter segment is two cuts a rounding apart; its step of moment over its length says nothing
 
 
@@ -166,12 +167,23 @@ def demands_and_envelope(effects: UnitEffects, factors: Array) -> tuple[Demands,
         _split_by_sign(found, parts)
         most = peak(parts[:5], -1)
         value[:, :, rows], number[:, :, rows] = most.value, most.combination
+    _drop_round_off(value, number)
     shape = (*batch, effects.members)
     peaks = (Peak(value=v.T.reshape(shape), combination=n.T.reshape(shape)) for v, n in zip(value, number, strict=True))
     tension, compression, high, low, shear = peaks
     names = [f.name for f in fields(Demands)]
     demands = Demands(**{n: _by_combination(array, batch) for n, array in zip(names, out, strict=True)})
     return demands, Envelope(tension=tension, compression=compression, moment=larger_of_signs(high, low), shear=shear)
+
+
+def _drop_round_off(value: Array, number: NDArray[np.intp]) -> None:
+    """Set what is nothing beside the largest effect of its kind in the truss to 0 and its combination to none.
+
+    value and number (5, m, b): tension, compression, sagging and hogging moment, shear.
+    """
+    for rows in (slice(0, 2), slice(2, 4), slice(4, 5)):
+        nothing = value[rows] <= NOTHING * value[rows].max(axis=(0, 1))
+        value[rows][nothing], number[rows][nothing] = 0.0, -1
 
 
 def _by_combination(values: Array, batch: tuple[int, ...]) -> Array:

@@ -149,6 +149,7 @@ class TrussSpec:
     loads: LoadSpec
     timber: TimberSpec
     custom: CustomSpec | None = None  # of the shape "custom"
+    units: str = "US"  # of the job, for messages
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -39,7 +39,8 @@ def check_attic(reader: TableReader, values: Mapping[str, Any], place: str) -> N
     """Note live loads of the ceiling that do not fit the word for the attic."""
     attic, live = values.get(ATTIC), values["ceiling_live"]
     if attic == NONE and live > 0:
-        reader.problem(f"{place} attic", 'is "none", so ceiling_live must be "0 psf"')
+        nothing = shown(0.0, "pressure", reader.system)
+        reader.problem(f"{place} attic", f'is "none", so ceiling_live must be "{nothing}"')
     if attic != STORAGE:
         return
     least = cast(float, read_table("loads/attic_asce7").rows[0]["rest"])

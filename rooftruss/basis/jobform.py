@@ -7,11 +7,13 @@ from typing import Any
 
 from rooftruss.basis.job import Job, LimitSpec
 from rooftruss.basis.jobattic import ATTIC, attic_defaults
+from rooftruss.basis.jobcountry import COUNTRY, check_country
 from rooftruss.basis.jobfile import read_toml
 from rooftruss.basis.jobkeys import Key, common_form, form_for, grade_family, with_grades
 from rooftruss.basis.jobrows import CUSTOM, read_grades
 from rooftruss.basis.jobtrusses import TrussReader
 from rooftruss.basis.kinds import Choice, Number
+from rooftruss.basis.newjob import usual_units
 from rooftruss.basis.schemes import Scheme, load_scheme
 from rooftruss.basis.tablereader import Entries, Given, TableReader
 from rooftruss.basis.written import told
@@ -39,10 +41,13 @@ def job_from_mapping(data: Mapping[str, object], source: str, folder: Path) -> J
     if scheme is None:
         raise reader.failure()
     reader.standard = scheme.load_standard
+    if heading["units"] is None:
+        reader.system = _usual_system(scheme)
     form = form_for(scheme.load_standard, scheme.timber_standard)
     own = read_grades(reader, form, data.get("grade"), grade_family(scheme.timber_standard))
     form = with_grades(form, own)
     site = reader.read(form["site"], given["site"], "[site]")
+    _check_site(reader, standard["scheme"], folder, site)
     limits = reader.read(form["deflection"], given["deflection"], "[deflection]")
     trusses = TrussReader(
         reader=reader,
@@ -102,6 +107,24 @@ def _system(data: Mapping[str, object]) -> str:
     """System of units of the job; "US" as long as the file does not say so properly (that is a mistake by itself)."""
     job = data.get("job")
     return "metric" if isinstance(job, Mapping) and job.get("units") == "metric" else "US"
+
+
+def _usual_system(scheme: Scheme) -> str:
+    """Units for the messages about a job that does not give its own: those of the form for its scheme."""
+    try:
+        return usual_units(scheme)
+    except JobError:  # a scheme of the user's own, for standards that no form joins
+        return "US"
+
+
+def _check_site(reader: TableReader, scheme: str, folder: Path, site: Mapping[str, Any]) -> None:
+    """Note a country that is not covered, or one that the scheme does not serve."""
+    before = reader.mistakes
+    with reader.at(f"[site] {COUNTRY}"):
+        check_country(site)
+    if reader.mistakes == before:
+        with reader.at(""):  # the scheme names the key
+            load_scheme(scheme, folder, site)
 
 
 def _tables(reader: TableReader, data: Mapping[str, object]) -> dict[str, dict[str, Given]]:

@@ -3,6 +3,7 @@
 A further load or timber standard adds one file there; nothing here asks which standard is in force.
 """
 
+import json
 import re
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
@@ -148,7 +149,8 @@ def _names(entry: dict[str, Any]) -> Names:
     if catalogue == "members":  # of a truss; which ones there are is known only when it is made
         return Names(known=str, **_take(entry, "example"))
     if catalogue == "sections":
-        return Names(known=sections.find_section, **_take(entry, "example"))
+        metric = json.dumps([section.name for section in sections.sections("metric")[:2]])
+        return Names(known=sections.find_section, metric_example=metric, **_take(entry, "example"))
     family, _, _ = catalogue.rpartition(" grades")
     return Names(known=partial(_grade_of, family), **_take(entry, "example"))
 

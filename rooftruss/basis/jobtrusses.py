@@ -88,7 +88,7 @@ class TrussReader:
         custom = self._custom(values, rows, place)
         if self.reader.mistakes > before:
             return None
-        truss = TrussSpec(**values, loads=load_values, timber=timber_values, custom=custom)
+        truss = TrussSpec(**values, loads=load_values, timber=timber_values, custom=custom, units=self.reader.system)
         _check_geometry(self.reader, truss, place)
         return truss
 

@@ -1,5 +1,6 @@
 """Kinds of values a job file may hold. Each reads one written value or raises a JobError without a place."""
 
+import math
 import re
 import unicodedata
 from collections.abc import Callable
@@ -9,7 +10,7 @@ from typing import Any, Protocol
 from rooftruss.basis import written
 from rooftruss.basis.job import Restraint
 from rooftruss.errors import JobError, nearest
-from rooftruss.units import SYSTEMS, shown
+from rooftruss.units import METRIC_ROOM_FOR, SYSTEMS, shown
 
 SI_UNIT = {
     "length": "m",
@@ -28,7 +29,7 @@ LONGEST_LIST = 100
 
 
 class Kind(Protocol):
-    """Reads one value; `system` ("US" or "metric") only decides how a message shows a range."""
+    """Reads one value; `system` ("US" or "metric") only decides on the units of a message."""
 
     def read(self, value: object, system: str) -> Any:
         """The value in SI. Raises JobError without a place."""
@@ -87,8 +88,11 @@ class Quantity:
 
     def read(self, value: object, system: str) -> float:
         """The SI value."""
-        number = written.quantity(value, self.unit)
-        least, most = (written.quantity(limit, self.unit) for limit in self.limits)
+        try:
+            number = written.quantity(value, self.unit)
+        except JobError:  # once more for its message: a right value needs no example
+            number = written.quantity(value, self.unit, self.example(value, system))
+        least, most = self._limits()
         if least >= 0 and number < 0:
             raise JobError(f"{written.told(value)} is negative; {self.range(system)}")
         if not least - 1e-9 <= number <= most * (1 + 1e-9):
@@ -99,8 +103,19 @@ class Quantity:
         """Sentence part that gives the limits in the job's units."""
         if self.shows not in SYSTEMS[system] or self.shows == "area":  # areas are shown in the unit of a section
             return "allowed: {} to {}".format(*self.limits)
-        least, most = (shown(written.quantity(v, self.unit), self.shows, system, 3) for v in self.limits)
+        least, most = (shown(limit, self.shows, system, 3) for limit in self._limits())
         return f"allowed: {least} to {most}"
+
+    def example(self, value: object = "", system: str = "US") -> str:
+        """What a message shows as an example: with the likeliest unit of the system; "" where `written` has its own."""
+        examples = METRIC_ROOM_FOR.get(self.shows or self.unit, ())
+        if system == "US" or not examples:
+            return ""
+        return written.likeliest(value, self.unit, examples, self._limits())
+
+    def _limits(self) -> tuple[float, float]:
+        least, most = (written.quantity(limit, self.unit) for limit in self.limits)
+        return least, most
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -111,11 +126,19 @@ class Pitch:
 
     def read(self, value: object, system: str) -> float:
         """Rise over run."""
-        ratio = written.pitch(value)
+        ratio = written.pitch(value, system)
         least, most = map(written.pitch, self.limits)
         if not least - 1e-9 <= ratio <= most + 1e-9:
-            raise JobError(f"{written.told(value)} is not plausible; allowed: {self.limits[0]} to {self.limits[1]}")
+            raise JobError(f"{written.told(value)} is not plausible; {self.range(system)}")
         return ratio
+
+    def range(self, system: str) -> str:
+        """Sentence part that gives the limits: as rise over run, in a metric job in degrees first."""
+        over_run = "{} to {}".format(*self.limits)
+        if system == "US":
+            return f"allowed: {over_run}"
+        least, most = (math.degrees(math.atan(written.pitch(limit))) for limit in self.limits)
+        return f"allowed: {least:.2g} deg to {most:.2g} deg ({over_run})"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -146,13 +169,15 @@ class Names:
 
     known: Callable[[str], object]
     example: str
+    metric_example: str = ""  # for jobs shown in metric units; left out: the same
 
     def read(self, value: object, system: str) -> tuple[str, ...]:
         """The names, in the order given."""
+        example = self.metric_example if system == "metric" and self.metric_example else self.example
         if not isinstance(value, list | tuple):
-            raise JobError(f"{written.told(value)} is not a list; write for example {self.example}")
+            raise JobError(f"{written.told(value)} is not a list; write for example {example}")
         if not 1 <= len(value) <= LONGEST_LIST:
-            raise JobError(f"the list has {len(value)} names; write 1 to {LONGEST_LIST}, for example {self.example}")
+            raise JobError(f"the list has {len(value)} names; write 1 to {LONGEST_LIST}, for example {example}")
         names = tuple(Text().read(item, system) for item in value)
         for name in names:
             self.known(name)
@@ -190,11 +215,13 @@ class RestraintKind:
         """The restraint."""
         if isinstance(value, str) and value.strip() in self.words:
             return Restraint(kind=value.strip())
+        spacing = Quantity(shows="size", unit="m", limits=self.limits)
         if not isinstance(value, str) or not re.match(r"\s*[-+.]?[0-9]", value):
             allowed = ", ".join(map(repr, self.words))
-            raise JobError(f"{written.told(value)} is not a restraint; write {allowed} or a spacing such as '24 in'")
-        spacing = Quantity(shows="size", unit="m", limits=self.limits).read(value, system)
-        return Restraint(kind="spacing", spacing=spacing)
+            example = spacing.example("", system) or "24 in"
+            hint = f"write {allowed} or a spacing such as '{example}'"
+            raise JobError(f"{written.told(value)} is not a restraint; {hint}")
+        return Restraint(kind="spacing", spacing=spacing.read(value, system))
 
 
 def _in_file(choice: str | bool | int) -> str:

@@ -46,6 +46,11 @@ def _form_serving(asked: Scheme) -> str:
     )
 
 
+def usual_units(scheme: Scheme) -> str:
+    """Units ("US" or "metric") that the form for a scheme shows results in. Raises JobError where there is no form."""
+    return str(tomllib.loads(_form_serving(scheme))["job"]["units"])
+
+
 def _keys(scheme: Scheme) -> set[tuple[str, str]]:
     """Table and name of every key that a job under this scheme may have, whatever the edition of the standard."""
     form = form_for(scheme.load_standard, scheme.timber_standard)

@@ -41,7 +41,8 @@ def _served(served: Mapping[str, Iterable[str]], site: Mapping[str, object], fil
     for key, words in served.items():
         if key in site and site[key] not in list(words):
             raise JobError(
-                f"[site] {key}: the scheme {file} is not that of {site[key]!r}; it serves {', '.join(words)}"
+                f"[site] {key}: the scheme {file} is not that of {site[key]!r}; it serves {', '.join(words)}: "
+                "write one of these, or take another scheme"
             )
 
 

@@ -127,7 +127,9 @@ def load_scheme(name: str, base_folder: Path = Path(), site: Mapping[str, object
     if name.lower().endswith(".toml"):
         return _read(base_folder / name, dict(plain))
     if name not in schemes():
-        raise JobError(f"there is no scheme {name!r}; {nearest(name, schemes())}, or the path of a .toml file")
+        hint = nearest(name, schemes())
+        path = " Or write the path of a .toml file" if hint.endswith("?") else ", or the path of a .toml file"
+        raise JobError(f"there is no scheme {name!r}; {hint}{path}")
     return _shipped(name, plain)
 
 

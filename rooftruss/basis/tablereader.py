@@ -41,9 +41,9 @@ class TableReader:
     assumptions: dict[Assumption, None] = field(default_factory=dict)
 
     def problem(self, place: str, message: str) -> None:
-        """Note one mistake."""
+        """Note one mistake; place "" where the message begins with it."""
         self.mistakes += 1
-        self.problems[f"{self.source} {place}: {message}"] = None
+        self.problems[f"{self.source} {place}: {message}" if place else f"{self.source} {message}"] = None
 
     @contextmanager
     def at(self, place: str) -> Iterator[None]:

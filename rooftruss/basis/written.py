@@ -5,6 +5,7 @@ The grammar is narrower than pint's on purpose: pint reads "3 1/2 in" as 3 x 1/2
 
 import math
 import re
+from collections.abc import Sequence
 from fractions import Fraction
 
 from rooftruss.errors import JobError
@@ -20,6 +21,10 @@ _ONE = re.compile(rf"({_NUMBER})\s*({_UNIT})")
 _FEET_AND_INCHES = re.compile(rf"([0-9]+)\s*(?:ft|['′])[\s-]*({_NUMBER})\s*(?:in|[\"″])")
 _PITCH = re.compile(rf"({_DECIMAL})\s*(?:[/:]\s*({_DECIMAL})|(deg|degrees|°)|(%))")
 _R_VALUE = re.compile(rf"[Rr]-?({_DECIMAL})")
+_PITCH_EXAMPLES = {
+    "US": "rise over run such as '6/12', or '26.57 deg', or '50 %'",
+    "metric": "degrees such as '26.5 deg', or '50 %', or rise over run such as '6/12'",
+}
 _SIGNS = {"'": "ft", "′": "ft", '"': "in", "″": "in"}
 
 
@@ -42,19 +47,20 @@ def told(value: object) -> str:
     return "a table" if isinstance(value, dict) else f"the {type(value).__name__} {value}"
 
 
-def quantity(value: object, unit: str) -> float:
+def quantity(value: object, unit: str, example: str = "") -> float:
     """Value in the SI `unit` of a written quantity: "28 ft", "28 ft 6 in", "28'-6\\"", "3 1/2 in", "1.5 kN/m2", "R-30".
 
+    example: what a message shows, in the units of the job; left out: one in US units.
     Raises JobError (without a place) for a bare number, an unknown unit, a unit that does not fit, or anything else.
 
     >>> round(quantity("3 1/2 in", "m"), 4), round(quantity("28 ft 6 in", "m"), 4), quantity("1.5 kN/m2", "Pa")
     (0.0889, 8.6868, 1500.0)
     """
-    example = ROOM_FOR.get(unit, f"10 {unit}")
+    example = example or ROOM_FOR.get(unit, f"10 {unit}")
     if isinstance(value, bool) or not isinstance(value, int | float | str):
         raise JobError(f"{told(value)} is not a quantity; write for example '{example}'")
     text = str(value).strip() if isinstance(value, str) else ""
-    if not isinstance(value, str) or re.fullmatch(_NUMBER, text):
+    if bare(value):
         raise JobError(f"{told(value)} has no unit; write for example '{_with_unit(value, example)}'")
     parts = _parts(text, unit) if len(text) <= LONGEST else []
     if not parts:
@@ -67,15 +73,50 @@ def quantity(value: object, unit: str) -> float:
         raise JobError(f"{told(value)} is not in a unit that fits; write for example '{example}'") from None
 
 
-def pitch(value: object) -> float:
-    """Rise over run of a written pitch: "6/12", "6:12", "26.57 deg" or "50 %".
+def bare(value: object) -> bool:
+    """Whether the value is a number without a unit, typed as text or not.
+
+    >>> bare("9600"), bare(9.6), bare("9600 mm"), bare(True)
+    (True, True, False, False)
+    """
+    if isinstance(value, str):
+        return re.fullmatch(_NUMBER, value.strip()) is not None
+    return isinstance(value, int | float) and not isinstance(value, bool)
+
+
+def likeliest(value: object, unit: str, examples: Sequence[str], limits: tuple[float, float]) -> str:
+    """The example to show for a value: the first within the limits [SI]; for a bare number the one whose unit, the
+    largest that does, brings the number within them.
+
+    >>> [likeliest(value, "m", ("8 m", "8000 mm"), (1.0, 40.0)) for value in ("9600", 9.6, "9,6")]
+    ['8000 mm', '8 m', '8 m']
+    """
+
+    def fits(text: str) -> bool:
+        try:
+            return limits[0] <= quantity(text, unit) <= limits[1]
+        except JobError:
+            return False
+
+    def unit_size(text: str) -> float:
+        return quantity(_with_unit(1, text), unit)
+
+    usual = next(filter(fits, examples), examples[0])
+    if not bare(value):
+        return usual
+    units = sorted(examples, key=unit_size, reverse=True)
+    return next((e for e in units if fits(_with_unit(value, e))), usual)
+
+
+def pitch(value: object, system: str = "US") -> float:
+    """Rise over run of a written pitch: "6/12", "6:12", "26.57 deg" or "50 %"; `system` decides on the example shown.
 
     >>> pitch("6/12"), round(pitch("45 deg"), 9), pitch("50 %")
     (0.5, 1.0, 0.5)
     """
     found = _PITCH.fullmatch(value.strip()) if isinstance(value, str) and len(value) <= LONGEST else None
     if found is None:
-        raise JobError(f"{told(value)} is not a pitch; write rise over run such as '6/12', or '26.57 deg', or '50 %'")
+        raise JobError(f"{told(value)} is not a pitch; write {_PITCH_EXAMPLES[system]}")
     rise, run, degrees, _ = found.groups()
     if degrees:
         if not abs(float(rise)) < 90:

@@ -136,7 +136,7 @@ def _placed(layout: AnyLayout, size: Dimensions, specs: Sequence[TrussSpec]) -> 
         if member is None:
             place = f"[[loads.case]] {case!r} points" if case else "[[loads.point]]"
             raise JobError(
-                f"{place} position: {both(point.position, 'length')} is outside the {point.chord} chord; "
+                f"{place} position: {both(point.position, 'length', specs[0].units)} is outside the {point.chord} chord; "
                 "measure from the outside of the left bearing"
             )
         force = np.array([own[k][1].force for own in given])

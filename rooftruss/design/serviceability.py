@@ -29,6 +29,7 @@ class Deflections:
 
     places: tuple[Place, ...]
     kinds: tuple[DeflectionKind, ...]  # those that are limited
+    alone: tuple[bool, ...]  # whether a kind is of the variable loads alone, though its combinations hold others too
     rules: tuple[tuple[DeflectionLimit, ...], ...]  # of each kind, at each place
     value: Array
     limit: Array
@@ -47,14 +48,16 @@ class Deflections:
         if rule is None:
             return "no service combination is limited"
         sideways = self.places[place].direction == "horizontal"
-        return about(self.kinds[int(self.kind[place])], rule, sideways=sideways)
+        kind = int(self.kind[place])
+        return about(self.kinds[kind], rule, sideways=sideways, alone=self.alone[kind])
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Largest:
-    """The largest vertical deflection of a kind that has no limit, of an unbatched truss [m]."""
+    """The largest vertical deflection of a kind, of an unbatched truss [m]."""
 
     kind: DeflectionKind
+    alone: bool  # as in Deflections
     rule: DeflectionLimit
     place: Place
     value: float
@@ -62,8 +65,8 @@ class Largest:
 
     @property
     def about(self) -> str:
-        """Its kind, and that it has no limit."""
-        return about(self.kind, self.rule)
+        """Its kind, and its limit or that it has none."""
+        return about(self.kind, self.rule, alone=self.alone)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -73,9 +76,10 @@ class _Looked:
     kind: DeflectionKind
     rows: NDArray[np.intp]
     factors: Array
+    alone: bool  # as in Deflections
 
 
-def about(kind: DeflectionKind, rule: DeflectionLimit, *, sideways: bool = False) -> str:
+def about(kind: DeflectionKind, rule: DeflectionLimit, *, sideways: bool = False, alone: bool = False) -> str:
     """A kind of deflection and its limit in words.
 
     >>> kind = DeflectionKind(name="final", symbol="w_fin", combinations="characteristic")
@@ -85,6 +89,8 @@ def about(kind: DeflectionKind, rule: DeflectionLimit, *, sideways: bool = False
     name = kind.name.replace("_", " or ")
     symbol = rule.symbol if rule.limits else kind.symbol
     words = f"{name} {symbol}" if symbol else name
+    if alone:  # the combination that stands beside it holds permanent loads as well
+        words += " of the variable loads alone"
     if sideways:
         return words
     return f"{words}, l/{rule.ratio:g}" if rule.limits else f"{words}, no limit"
@@ -124,13 +130,21 @@ def _kinds_and_rules(
 
 def _looked(run: Run, kind: DeflectionKind) -> _Looked:
     rows = np.array([k for k, name in enumerate(run.combinations.kinds) if name == kind.combinations], dtype=np.intp)
+    given = run.combinations.factors[rows]
     factors = run.family.timber.service_factors(
-        run.combinations.factors[rows],
+        given,
         actions=tuple(h.action for h in run.cases.heads),
         kinds=(kind.name,) * len(rows),
         lasting=dict(run.family.scheme.lasting),
     )
-    return _Looked(kind=kind, rows=rows, factors=factors)
+    dead = np.array([h.action == "D" for h in run.cases.heads])
+    alone = bool(given[:, dead].any()) and not factors[:, dead].any()
+    return _Looked(kind=kind, rows=rows, factors=factors, alone=alone)
+
+
+def of_variable_loads_alone(run: Run, kind: DeflectionKind) -> bool:
+    """Whether permanent loads are no part of this kind of deflection, though they are of its combinations."""
+    return _looked(run, kind).alone
 
 
 def extremes(unit: Array, factors: Array) -> tuple[Array, NDArray[np.intp]]:
@@ -164,8 +178,8 @@ def deflections(run: Run) -> Deflections:
     unit, reach = unit_movements(run, places), reaches(run, places)
     sideways = np.array([p.direction == "horizontal" for p in places])
     found: list[tuple[Array, Array, NDArray[np.intp]]] = []  # value, limit, combination
-    for kind, rules in limited:
-        looked = _looked(run, kind)
+    sought = [_looked(run, kind) for kind, _ in limited]
+    for looked, (_, rules) in zip(sought, limited, strict=True):
         value, row = extremes(unit, looked.factors)
         limit = np.where(sideways, run.family.job.limits.horizontal, reach / np.array([r.ratio for r in rules]))
         found.append((value, np.broadcast_to(np.where(np.isnan(limit), inf, limit), value.shape), looked.rows[row]))
@@ -181,6 +195,7 @@ def deflections(run: Run) -> Deflections:
     return Deflections(
         places=places,
         kinds=tuple(kind for kind, _ in limited),
+        alone=tuple(looked.alone for looked in sought),
         rules=tuple(rules for _, rules in limited),
         value=taken(values),
         limit=taken(limits),
@@ -221,22 +236,41 @@ def unlimited(run: Run) -> tuple[Largest, ...]:
     """The largest vertical deflection of each kind that has no limit, of an unbatched truss."""
     places = tuple(p for p in places_of(run) if p.direction == "vertical")
     unit = unit_movements(run, places)
-    out = []
-    for kind, rules in zip(*_kinds_and_rules(run, places), strict=True):
-        if not any(rule.limits for rule in rules):
-            looked = _looked(run, kind)
-            value, row = extremes(unit, looked.factors)
-            k = int(np.abs(value).argmax())
-            out.append(
-                Largest(
-                    kind=kind,
-                    rule=rules[k],
-                    place=places[k],
-                    value=float(value[k]),
-                    combination=int(looked.rows[row[k]]),
-                )
-            )
-    return tuple(out)
+    return tuple(
+        _largest(run, kind, rules, places, unit)
+        for kind, rules in zip(*_kinds_and_rules(run, places), strict=True)
+        if not any(rule.limits for rule in rules)
+    )
+
+
+def largest(run: Run) -> Largest | None:
+    """The largest vertical deflection of any kind, limited or not, of an unbatched truss; ends of tails do not count.
+
+    None without a service combination.
+    """
+    vertical = tuple(p for p in places_of(run) if p.direction == "vertical")
+    tips = tail_ends(run, vertical)
+    places = tuple(p for k, p in enumerate(vertical) if k not in tips)
+    unit = unit_movements(run, places)
+    each = [_largest(run, *found, places, unit) for found in zip(*_kinds_and_rules(run, places), strict=True)]
+    return max(each, key=lambda found: abs(found.value), default=None)
+
+
+def _largest(
+    run: Run, kind: DeflectionKind, rules: Sequence[DeflectionLimit], places: Sequence[Place], unit: Array
+) -> Largest:
+    """The largest deflection of one kind at the places, which the cases move by unit (place, c)."""
+    looked = _looked(run, kind)
+    value, row = extremes(unit, looked.factors)
+    k = int(np.abs(value).argmax())
+    return Largest(
+        kind=kind,
+        alone=looked.alone,
+        rule=rules[k],
+        place=places[k],
+        value=float(value[k]),
+        combination=int(looked.rows[row[k]]),
+    )
 
 
 def deflected(run: Run, place: int, combination: int, kind: DeflectionKind | None = None) -> Deflected:

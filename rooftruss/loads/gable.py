@@ -46,7 +46,7 @@ def gable_fault(truss: Truss, roof: Roof) -> str:
     chords = truss.topology.on(*ROOF)
     start, end = truss.start_xy[chords, 0], truss.end_xy[chords, 0]
     if name := _off_line(truss, lambda x: pitch * np.minimum(x, span - x)):
-        slopes = f"{np.degrees(np.arctan(pitch)):.3g} deg ({12 * pitch:.3g}/12)"
+        slopes = f"{12 * pitch:.3g}/12 ({np.degrees(np.arctan(pitch)):.3g} deg)"
         return f"joint {name!r} of the top chord is not on slopes of {slopes} that meet over the middle"
     if np.any((start < span / 2 - FIT) & (end > span / 2 + FIT)):
         return "a top chord member runs through the middle of the span, where the ridge is"

@@ -36,15 +36,16 @@ TERMINAL_CAUTIONS = (
 MODEL_ASSUMPTIONS = (
     "Each truss is a plane frame of straight, uniform members on their centre lines; elastic, small movements.",
     "Chords run through over panel points. Webs are pinned at both ends. The top and bottom chord are pinned to each "
-    "other at the heel, the two top chords at the peak; the members of a custom truss are pinned where the job says so.",
+    "other at the heel, the two top chords at the peak; the members of a custom truss are pinned where the job says "
+    "so.",
     "Where a heel is raised, its post stands on the bottom chord: the timber across the grain is checked over the "
     "bearing or the depth of the post, whichever is shorter.",
     "Deflections in the middle of chord panels are held against the limit of the whole span; the sag of a chord "
     "between its own panel points has no limit of its own.",
     "A chord piece longer than the longest stock is spliced at a panel point; the splice carries no moment.",
     "The tail (overhang) continues the top chord beyond the heel.",
-    "Pin at the left bearing, roller at the right; a custom truss is held as the job says. Bearings count at the middle of the wall plates: the span of the "
-    "analysis is the out-to-out span less one bearing length.",
+    "Pin at the left bearing, roller at the right; a custom truss is held as the job says. Bearings count at the "
+    "middle of the wall plates: the span of the analysis is the out-to-out span less one bearing length.",
     "Joints neither slip nor stand out of centre, and have no size; the wall plates do not settle.",
     "Dead load acts on the slope length, snow and roof live load on plan, wind normal to the surface, ceiling loads on "
     "the bottom chord; each truss carries a strip as wide as the spacing.",

@@ -7,7 +7,7 @@ import numpy as np
 from rooftruss.design.case_values import case_values
 from rooftruss.design.design import Design
 from rooftruss.design.members import take_members
-from rooftruss.design.serviceability import about, deflected
+from rooftruss.design.serviceability import about, deflected, of_variable_loads_alone
 from rooftruss.design.stages import bearing_members, durations_of
 from rooftruss.errors import JobError, nearest
 from rooftruss.output.explain_names import asked_text, deflection_place, unknown
@@ -79,7 +79,8 @@ def _deflection(design: Design, place: int, numbering: Numbering, combination: s
     kind = found.kinds[int(found.kind[place])] if governs else None
     moved = deflected(run, place, number, kind)
     sideways = found.places[place].direction == "horizontal"
-    what = f"{asked_text(found.places[place])}, {about(moved.kind, moved.rule, sideways=sideways)}"
+    alone = of_variable_loads_alone(run, moved.kind)
+    what = f"{asked_text(found.places[place])}, {about(moved.kind, moved.rule, sideways=sideways, alone=alone)}"
     return _heading(design, what, numbering, number, governs), _grid(run.family.timber.explain_deflection(moved))
 
 

@@ -3,12 +3,11 @@
 from collections.abc import Sequence
 from functools import cache
 
-import numpy as np
-
 from rooftruss.basis.job import Job
 from rooftruss.design.compare import Alternative
 from rooftruss.design.design import Design
 from rooftruss.design.family import GROUPS
+from rooftruss.design.serviceability import largest
 from rooftruss.output.basis_grids import given_rows
 from rooftruss.output.cautions import CAUTIONS, MODEL_ASSUMPTIONS
 from rooftruss.output.numbering import Numbering
@@ -111,7 +110,8 @@ def _reason(row: Alternative) -> str:
     if row.design is None:
         return f"not possible: {row.reason}"
     worst, *others = row.design.failures
-    return f"NOT met: {worst}" + (f"; {len(others)} more checks not met, too" if others else "")
+    more = f"{len(others)} more check{'s' if len(others) > 1 else ''} not met, too"
+    return f"NOT met: {worst}" + (f"; {more}" if others else "")
 
 
 def _compared(row: Alternative, note: int | None) -> tuple[Cell, ...]:
@@ -134,15 +134,10 @@ def _compared(row: Alternative, note: int | None) -> tuple[Cell, ...]:
 
 
 def largest_deflection(design: Design) -> float:
-    """Largest vertical deflection of a panel point or panel middle between the bearings [m], whatever its limit."""
-    found = design.outcome.deflection
-    tails = {n for m in design.run.family.topology.members if m.role == "tail" for n in (m.start, m.end)}
-    inside = [
-        k
-        for k, p in enumerate(found.places)
-        if p.direction == "vertical" and not (p.kind == "node" and p.number in tails)
-    ]
-    return float(np.abs(found.value[inside]).max())
+    """Largest vertical deflection of a panel point or panel middle [m] of any kind, whatever its limit; the ends of
+    tails do not count."""
+    found = largest(design.run)
+    return abs(found.value) if found else 0.0
 
 
 def combinations_grid(numbering: Numbering, designs: Sequence[Design]) -> Grid:

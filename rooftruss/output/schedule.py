@@ -148,12 +148,26 @@ def _turned(kind: str, units: str) -> Callable[[Cell], ShownCell]:
     }
     if kind in special:
         return special[kind]
-    size = display(kind, units).size
-    return lambda cell: _number(cell, size) if isinstance(cell, int | float) else None
+    shown = display(kind, units)
+    return lambda cell: _number(cell, shown) if isinstance(cell, int | float) else None
 
 
-def _number(value: float, size: float) -> ShownCell:
-    return value / size if math.isfinite(value) else BEYOND
+def _number(value: float, shown: Display) -> ShownCell:
+    return unsigned_zero(value / shown.size, shown.number_format) if math.isfinite(value) else BEYOND
+
+
+def _decimals(number_format: str) -> int:
+    return len(number_format.partition(".")[2])
+
+
+def unsigned_zero(value: float, number_format: str) -> float:
+    """The value; 0 in the place of a negative one that the format shows as nothing but zeros.
+
+    >>> unsigned_zero(-0.0, "General"), unsigned_zero(-0.004, "0.00"), unsigned_zero(-0.006, "0.00")
+    (0.0, 0.0, -0.006)
+    """
+    fixed = number_format not in ("", "General")
+    return 0.0 if value <= 0 and fixed and round(value, _decimals(number_format)) == 0 else value + 0.0
 
 
 def _pitch(rise_over_run: float, units: str) -> ShownCell:
@@ -161,7 +175,7 @@ def _pitch(rise_over_run: float, units: str) -> ShownCell:
 
 
 def _measure(cell: Measure, units: str) -> ShownCell:
-    value = _number(cell.value, display(cell.kind, units).size)
+    value = _number(cell.value, Display("", display(cell.kind, units).size, "General"))
     return float(f"{value:.4g}") if isinstance(value, int | float) else value
 
 
@@ -188,10 +202,10 @@ def formatted(value: ShownCell, number_format: str) -> str:
         return ""
     if isinstance(value, str):
         return value
+    value = unsigned_zero(value, number_format)
     if number_format in ("", "General"):
         return f"{value:,.0f}" if abs(value) >= 1e5 else f"{value:.5g}"
-    decimals = len(number_format.partition(".")[2])
-    return f"{value:{',' if ',' in number_format else ''}.{decimals}f}"
+    return f"{value:{',' if ',' in number_format else ''}.{_decimals(number_format)}f}"
 
 
 def texts(shown: ShownGrid) -> Iterator[list[str]]:

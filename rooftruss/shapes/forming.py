@@ -116,45 +116,49 @@ def layout_of(spec: TrussSpec) -> AnyLayout:
         panels=panels,
         tails=spec.overhang > 0,
         raised_heel=spec.heel_height is not None,
-        top_splices=_top_splices(top, 2 * run, slope, tail, stock),
-        bottom_splices=_bottom_splices(bottom, 2 * run, bottom_slope, stock, split=shape.sloping_bottom),
+        top_splices=_top_splices(top, 2 * run, slope, tail, stock, units=spec.units),
+        bottom_splices=_bottom_splices(
+            bottom, 2 * run, bottom_slope, stock, split=shape.sloping_bottom, units=spec.units
+        ),
     )
 
 
-def _too_long(piece: float, stock: float) -> JobError:
+def _too_long(piece: float, stock: float, units: str) -> JobError:
+    longest, needed = (both(length, "length", units) for length in (stock, piece))
     return JobError(
-        f"longest_stock: {both(stock, 'length')}, but a chord piece between panel points is {both(piece, 'length')} "
-        "long; "
+        f"longest_stock: {longest}, but a chord piece between panel points is {needed} long; "
         "allow longer stock or more panels"
     )
 
 
-def _greedy(places: Sequence[float], stock: float) -> list[int]:
+def _greedy(places: Sequence[float], stock: float, units: str) -> list[int]:
     """Fewest cuts at `places` (ascending, first and last are the ends) so that no piece exceeds the stock."""
     cuts: list[int] = []
     start = 0
     for k in range(1, len(places)):
         if places[k] - places[k - 1] > stock + 1e-9:
-            raise _too_long(places[k] - places[k - 1], stock)
+            raise _too_long(places[k] - places[k - 1], stock, units)
         if places[k] - places[start] > stock + 1e-9:
             start = k - 1
             cuts.append(start)
     return cuts
 
 
-def _top_splices(points: Sequence[float], span: float, slope: float, tail: float, stock: float) -> tuple[int, ...]:
+def _top_splices(
+    points: Sequence[float], span: float, slope: float, tail: float, stock: float, *, units: str
+) -> tuple[int, ...]:
     """Panel points of the top chord that are splices, the same on both slopes; counted from the peak down."""
     peak = (len(points) - 1) // 2
     if (span / 2 + tail) * slope <= stock:
         return ()
     places = [(0.5 - f) * span * slope for f in reversed(points[: peak + 1])]
     places[-1] += tail * slope
-    left = [peak - cut for cut in _greedy(places, stock)]
+    left = [peak - cut for cut in _greedy(places, stock, units)]
     return tuple(sorted(left + [2 * peak - k for k in left]))
 
 
 def _bottom_splices(
-    points: Sequence[float], span: float, slope: float, stock: float, *, split: bool
+    points: Sequence[float], span: float, slope: float, stock: float, *, split: bool, units: str
 ) -> tuple[int, ...]:
     """Panel points of the bottom chord that are splices, symmetric; the fewest that the stock allows."""
     last = len(points) - 1
@@ -165,10 +169,10 @@ def _bottom_splices(
     for middle in range(last // 2, 0, -1):  # the last splice left of, or at, the centre
         if places[last - middle] - places[middle] > stock + 1e-9 or (split and 2 * middle != last):
             continue
-        left = [*_greedy(places[: middle + 1], stock), middle]
+        left = [*_greedy(places[: middle + 1], stock, units), middle]
         found.append(tuple(sorted({*left, *(last - k for k in left)})))
     if not found:
-        raise _too_long(max(b - a for a, b in pairwise(places)), stock)
+        raise _too_long(max(b - a for a, b in pairwise(places)), stock, units)
     best = min(found, key=len)
     return tuple(k for k in best if not (split and 2 * k == last))
 

@@ -57,6 +57,8 @@ class Ec5:
     @property
     def notes(self) -> tuple[str, ...]:
         """Choices that belong among the printed assumptions."""
+        own = self.national_choices != "recommended"
+        country = f"values of {self.national_choices.capitalize()}" if own else "recommended values"
         clear = (
             "k_c,90 of discrete supports over the bearings: the job says that no load enters a chord within 2h of them "
             "(EN 1995-1-1, 6.1.5(4))"
@@ -66,7 +68,7 @@ class Ec5:
             "the largest axial force and the largest moment of a member are taken together (EN 1995-1-1, 6.2.3, 6.3.2)",
             "moment constant between lateral restraints, the least favourable row of EN 1995-1-1, Table 6.1",
             *ec5_truss.notes(self.truss_analysis, self.rules),
-            f"gamma_M and k_cr: {self.national_choices} values (EN 1995-1-1, 2.4.1 and 6.1.7)",
+            f"gamma_M and k_cr: {country} (EN 1995-1-1, 2.4.1 and 6.1.7)",
         )
 
     @property

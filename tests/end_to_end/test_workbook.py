@@ -1,5 +1,6 @@
 """The quote workbook, read back from the file: numbers, text, print settings, drawing."""
 
+import itertools
 import math
 import re
 import zipfile
@@ -8,10 +9,12 @@ from pathlib import Path
 import numpy as np
 import pytest
 from openpyxl import load_workbook
+from openpyxl.utils import get_column_letter
 
 from rooftruss.cli import main
 from rooftruss.design.design import Design
 from rooftruss.design.serviceability import unlimited
+from rooftruss.output.workbook.letters import column_pixels, lines_of, text_width
 from rooftruss.run import Result
 from tests.end_to_end.demo import DEMO_JOBS, changed_house, designed
 
@@ -33,6 +36,7 @@ UNITS = {
     "kN/m2": 1e3,
     "deg": math.pi / 180,
 }
+COLUMNS = range(1, 40)
 LETTER, A4 = 1, 9  # paper sizes as the file format numbers them
 ALWAYS = ("Combinations", "Cases", "Geometry", "Assumptions", "Cautions")
 Row = dict[str, object]
@@ -84,6 +88,33 @@ def quote(request, tmp_path_factory) -> Quote:
     if job == "metric":
         job = changed_house(folder / "metric.toml", ('units = "US"', 'units = "metric"'))
     return Quote(job, folder / "quote.xlsx")
+
+
+def cut_off(sheet) -> list[str]:
+    """Texts that are wider than their cell and the free ones to the right of it, or have more lines than their row."""
+    merged = {cell for part in sheet.merged_cells.ranges for row in sheet[part.coord] for cell in row}
+    pixels = [0.0, *(column_pixels(sheet.column_dimensions[get_column_letter(k)].width) for k in COLUMNS)]
+    found = []
+    for row in sheet.iter_rows():
+        for cell in row:
+            if not isinstance(cell.value, str) or cell in merged or cell.alignment.horizontal == "right":
+                continue
+            own = pixels[cell.column] - (9 if cell.alignment.indent else 0)  # an indent is 9 pixels
+            width = text_width(cell.value, cell.font.sz) * (1.08 if cell.font.b else 1.0)
+            if cell.alignment.wrap_text:
+                height = sheet.row_dimensions[cell.row].height or 12.75
+                fits = lines_of(cell.value, own) * 1.15 * cell.font.sz <= height + 2
+            else:
+                free = itertools.takewhile(lambda other: other.value is None, row[cell.column :])
+                fits = width + 4 <= own + sum(pixels[other.column] for other in free)
+            if not fits:
+                found.append(f"{cell.coordinate} {cell.value}")
+    return found
+
+
+def test_no_text_is_cut_off(quote):
+    for sheet in quote.book:
+        assert cut_off(sheet) == [], sheet.title
 
 
 def test_sheets(quote):

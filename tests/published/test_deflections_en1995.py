@@ -14,7 +14,7 @@ from rooftruss.basis.sections import find_section
 from rooftruss.design.design import outcome_of
 from rooftruss.design.family import Choice, Option, family_of, unbatched
 from rooftruss.design.places import places_of, unit_movements
-from rooftruss.design.serviceability import unlimited
+from rooftruss.design.serviceability import largest, unlimited
 from rooftruss.design.stages import Run, run
 from rooftruss.errors import JobError
 from rooftruss.timber.ec5 import Ec5, ec5_standard
@@ -259,16 +259,63 @@ def test_the_largest_of_a_kind_without_a_limit(country):
     found = {f.kind.name: f for f in unlimited(made)}
     assert found.keys() | OF_THE_BARN[country].keys() == {k.name for k in made.family.timber.deflection_kinds}
     assert not found.keys() & OF_THE_BARN[country].keys()
-    for kind, largest in found.items():
+    for kind, most in found.items():
         moved = {
             (p.name, c): by_hand(actions, made.combinations.factors[c], unit[k], psi_2, kind)
             for k, p in enumerate(places)
             for c, under in enumerate(made.combinations.kinds)
             if under == UNDER.get(kind, kind)
         }
-        assert abs(largest.value) == pytest.approx(max(map(abs, moved.values())), rel=1e-9)
-        assert moved[largest.place.name, largest.combination] == pytest.approx(largest.value, rel=1e-9)
-        assert largest.about.endswith(", no limit")
+        assert abs(most.value) == pytest.approx(max(map(abs, moved.values())), rel=1e-9)
+        assert moved[most.place.name, most.combination] == pytest.approx(most.value, rel=1e-9)
+        assert most.about.endswith(", no limit")
+        assert (" of the variable loads alone," in most.about) == (kind == "variable")
+
+
+@pytest.mark.parametrize(
+    ("country", "shape", "overhang"),
+    [
+        ("germany", "fink", 0.45),
+        ("finland", "king post", 0.45),
+        ("france", "queen post", 0.45),
+        ("finland", "fink", 1.5),
+    ],
+)
+def test_the_largest_deflection_of_all_kinds(country, shape, overhang):
+    made = one(country, shape=shape, overhang=overhang)
+    tails = {n for m in made.family.topology.members if m.role == "tail" for n in (m.start, m.end)}
+    every = places_of(made)
+    inside = [
+        k for k, p in enumerate(every) if p.direction == "vertical" and (p.kind == "member" or p.number not in tails)
+    ]
+    unit, actions = unit_movements(made, every), [h.action for h in made.cases.heads]
+    psi_2 = {"S": PSI_2_SNOW[country], "W": 0.0, "Lr": 0.0, "L": 0.3}
+    moved = {
+        (every[k].name, kind.name, c): by_hand(actions, made.combinations.factors[c], unit[k], psi_2, kind.name)
+        for k in inside
+        for kind in made.family.timber.deflection_kinds
+        for c, under in enumerate(made.combinations.kinds)
+        if under == kind.combinations
+    }
+    found = largest(made)
+    assert found is not None
+    assert abs(found.value) == pytest.approx(max(map(abs, moved.values())), rel=1e-9)
+    assert moved[found.place.name, found.kind.name, found.combination] == pytest.approx(found.value, rel=1e-9)
+    governing = max(abs(float(outcome_of(made).deflection.value[k])) for k in inside)
+    if overhang < 1:
+        assert (abs(found.value) > 1.05 * governing) == (country != "france")  # another kind is nearer to its limit
+        return
+    tips = [k for k, p in enumerate(every) if p.direction == "vertical" and k not in inside]
+    moved_most = max(abs(float(outcome_of(made).deflection.value[k])) for k in tips)
+    assert moved_most > 1.05 * abs(found.value)  # the ends of tails do not count
+
+
+def test_a_deflection_without_permanent_loads_says_so():
+    # French annex to 7.2(2): w_inst(Q) is of the variable loads; its combination, EN 1990, 6.14b, holds G
+    found = outcome_of(one("france")).deflection
+    said = {found.about(k) for k in range(len(found.places)) if found.kinds[int(found.kind[k])].name == "variable"}
+    assert said == {"variable w_inst(Q) of the variable loads alone, l/300"}
+    assert not any("alone" in found.about(k) for k in range(len(found.places)) if found.about(k) not in said)
 
 
 def test_a_farm_building_in_france_moves_further():

@@ -52,7 +52,7 @@ def test_every_truss_of_a_batch_has_to_fit():
     [
         (with_joint(custom_monopitch(), "F", 0.0, 0.02), "joint 'F' of the top chord is not on one slope of 15.0 deg"),
         (replace(custom_monopitch(), pitch=math.tan(math.radians(16.0))), "is not on one slope of 16.0 deg (3.44/12)"),
-        (with_joint(custom_monopitch(), "F", 0.0, 1.0), "not on slopes of 3.22/12 that meet over the middle"),
+        (with_joint(custom_monopitch(), "F", 0.0, 1.0), "not on slopes of 3.22/12 (15 deg) that meet over the middle"),
     ],
 )
 def test_what_is_neither_is_refused_by_clause(spec, fault):

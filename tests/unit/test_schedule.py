@@ -17,7 +17,7 @@ from rooftruss.output.job_grids import (
 )
 from rooftruss.output.numbering import numbering_of
 from rooftruss.output.picture import picture
-from rooftruss.output.schedule import BEYOND, Column, Grid, Measure, frame, shown_grid
+from rooftruss.output.schedule import BEYOND, Column, Grid, Measure, formatted, frame, shown_grid, texts
 from rooftruss.output.terminal import plain_lines, print_envelope, print_grid, wants_plain
 from rooftruss.output.truss_grids import (
     deflections_grid,
@@ -55,6 +55,27 @@ def test_every_kind_is_shown_in_the_units_asked_for():
     assert us.rows[1] == (BEYOND, None, "-", "NOT met", None, None)
     assert [c.label for c in us.columns] == ["Length [ft]", "Pitch", "Comb.", "Result", "Value", "unit"]
     assert [c.label for c in si.columns][:2] == ["Length [m]", "Pitch [deg]"]
+
+
+@pytest.mark.parametrize("units", ["US", "metric"])
+@pytest.mark.parametrize("kind", ["force", "moment", "stress", "deflection", "length", "ratio", "volume", "angle"])
+def test_no_number_is_shown_as_minus_nothing(kind, units):
+    grid = Grid("", (Column("Value", kind), Column("Own", "own")), tuple((v, Measure(v, kind)) for v in (-0.0, -1e-14)))
+    shown = shown_grid(grid, units)
+    decimals = shown.columns[0].number_format.partition(".")[2]
+    for cells, row in zip(texts(shown), shown.rows, strict=True):
+        assert cells[0] == ("0." + decimals if decimals else "0")
+        assert math.copysign(1.0, row[0]) == 1.0  # a spreadsheet shows the sign of what it rounds to nothing
+    assert next(texts(shown))[1] == "0"
+    large = shown_grid(Grid("", (Column("Value", kind),), ((-1e6,),)), units)
+    assert next(texts(large))[0].startswith("-")
+
+
+def test_a_negative_number_keeps_what_its_format_shows():
+    # 1 lbf is 4.4482216152605 N
+    rows = shown_grid(Grid("", (Column("Force", "force"),), ((-4.448 * 0.4,), (-4.448 * 0.6,))), "US").rows
+    assert rows == ((0.0,), (pytest.approx(-0.6, rel=1e-3),))
+    assert [formatted(v, "0.00") for v in (-0.004, -0.006)] == ["0.00", "-0.01"]
 
 
 def test_frame_has_units_in_its_headings():
@@ -182,6 +203,9 @@ def test_sizes_and_comparison():
     rows = [Alternative(shape="fink", design=designs[0]), Alternative(shape="howe", design=None, reason="too steep")]
     shown = rows_of(comparison_grid(rows))
     assert shown[0]["Result"] == "all checks met"
+    found = designs[0].outcome.deflection
+    sags = [abs(float(v)) for p, v in zip(found.places, found.value, strict=True) if p.name.startswith(("top", "bot"))]
+    assert shown[0]["Largest deflection"] >= max(sags) / 0.0254 * (1 - 1e-9)
     assert shown[1]["Result"] == "not possible (1)"
     assert comparison_notes(rows) == ("(1) howe: not possible: too steep",)
 

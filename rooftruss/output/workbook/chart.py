@@ -9,7 +9,7 @@ from functools import cache
 from typing import Any
 
 from rooftruss.output.picture import Label, Picture
-from rooftruss.output.schedule import display
+from rooftruss.output.schedule import display, unsigned_zero
 from rooftruss.output.workbook.sheet import Page
 from rooftruss.output.workbook.styles import plain
 
@@ -62,7 +62,8 @@ class PointSheet:
             page.row += 1
             page.put(first, word)
             for k, value in enumerate(place, start=1):
-                page.put(first + k, round(self.shown.of(value), 6), "body", self.shown.number_format)
+                number = unsigned_zero(round(self.shown.of(value), 6), self.shown.number_format)
+                page.put(first + k, number, "body", self.shown.number_format)
         last, page.row = page.row, top
         x, y = (Reference(page.sheet, min_col=first + k, min_row=top + 2, max_row=last) for k in (1, 2))
         return x, y

@@ -21,11 +21,12 @@ from rooftruss.output.truss_grids import (
     reactions_grid,
 )
 from rooftruss.output.workbook.chart import PointSheet, elevation, frame_of
+from rooftruss.output.workbook.letters import width_for
 from rooftruss.output.workbook.sheet import LINE_HEIGHT, Page, for_print
 from rooftruss.units import shown
 
 QUOTE_WIDTHS = (7, 8.5, 10, 7, 7, 8, 9, 15.5, 15.5, 15.5, 9, 9.5, 9.5, 10, 8.5, 8.5, 7, 17)
-TRUSS_WIDTHS = (11, 11, 8, 13.5, 7.5, 8.5, 5.5, 11.5, 5.5, 8.5, 5.5, 8.5, 5.5, 9.5, 5.5, 9, 24.5, 15.5, 9.5)
+TRUSS_WIDTHS = (11, 12, 9, 16.5, 7.5, 8.5, 5.5, 11.5, 5.5, 8.5, 5.5, 8.5, 5.5, 10.5, 5.5, 9, 24.5, 15.5, 9.5)
 REACTION_SLOTS = (1, 2, 5, 6, 7, 8, 9, 10, 11, 14, 15, 16, 17)
 DEFLECTION_SLOTS = (1, 2, 3, 4, 6, 7, 17, 8)  # the result last, so that the names of combinations have room
 LOADING_SLOTS = (1, 2, 5, 6, 8, 10, 12, 14, 17)
@@ -161,7 +162,18 @@ def _drawing(page: Page, points: PointSheet, design: Design) -> None:
 def combinations_page(page: Page, job: Job, designs: Sequence[Design], numbering: Numbering) -> None:
     """Every combination of the job once."""
     grid = combinations_grid(numbering, designs)
-    wide = {"No.": 6, "Clause": 18, "Combination": 54, "Limit state": 22, "Load duration": 14, "Trusses": 14}
+    wide: dict[str, float] = {
+        "No.": 6,
+        "Clause": 18,
+        "Combination": 54,
+        "Limit state": 22,
+        "Load duration": 14,
+        "Trusses": 14,
+    }
+    for k, column in enumerate(grid.columns):
+        if column.heading in ("Clause", "Limit state", "Load duration"):  # their words go by the standard
+            texts = {str(row[k]) for row in grid.rows}
+            wide[column.heading] = max(wide[column.heading], *(width_for(text, inset=True) for text in texts))
     page.widths([wide.get(c.heading, 9) for c in grid.columns])
     page.line(grid.title, "title", 24)
     page.line(

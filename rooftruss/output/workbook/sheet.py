@@ -1,11 +1,12 @@
 """A sheet that is filled from the top: titles, notes and grids; and how it prints."""
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from textwrap import wrap
 from typing import TYPE_CHECKING, Any
 
 from rooftruss.basis.job import Job
 from rooftruss.output.schedule import NOTHING, Grid, ShownCell, ShownColumn, ShownGrid, shown_grid
+from rooftruss.output.workbook.letters import MARGIN, column_pixels, lines_of, room
 from rooftruss.output.workbook.styles import Looks, looks_like_formula, plain
 
 if TYPE_CHECKING:
@@ -98,15 +99,16 @@ class Page:
 
     @property
     def width_cm(self) -> float:
-        """Width of the columns on screen: 7 pixels a character and 5 of margin, 96 pixels an inch."""
-        return sum(7 * w + 5 for w in self._widths) / 96 * 2.54
+        """Width of the columns on screen, 96 pixels an inch."""
+        return sum(map(column_pixels, self._widths)) / 96 * 2.54
 
     def paragraph(self, text: str, look: str = "body") -> None:
         """Text over the whole width, on as many lines as it needs."""
         last = len(self._widths)
         self.sheet.merge_cells(start_row=self.row, end_row=self.row, start_column=1, end_column=last)
         self.put(1, text, look, align="lines")
-        self._height([(text, sum(self._widths))])
+        pixels = sum(map(column_pixels, self._widths)) - MARGIN
+        self._height([lines_of(text, pixels, bold=look in ("strong", "fail"))])
         self.row += 1
 
     def grid(
@@ -160,12 +162,16 @@ class Page:
                     self.put(slot, cell, look, formats[k], "right" if cell == NOTHING else aligned[k])
             for slot in gaps if look != "data" else ():
                 self.put(slot, None, look)
-            self._height([(str(row[k]), self._widths[slots[k] - 1]) for k in wrap])
+            self._height(
+                lines_of(str(row[k]), room(self._widths[slots[k] - 1], inset=slots[k] > 1), bold=look == "fail")
+                for k in wrap
+                if row[k] is not None
+            )
             self.row += 1
 
-    def _height(self, texts: Sequence[tuple[str, float]]) -> None:
-        """Make the current row high enough for texts in columns of these widths."""
-        lines = max((-(-len(text) // max(int(1.4 * width - 1), 1)) for text, width in texts), default=1)
+    def _height(self, counts: Iterable[int]) -> None:
+        """Make the current row high enough for texts of these numbers of lines."""
+        lines = max(counts, default=1)
         if lines > 1:
             self.sheet.row_dimensions[self.row].height = LINE_HEIGHT * lines + 1
 
