@@ -136,8 +136,8 @@ def _placed(layout: AnyLayout, size: Dimensions, specs: Sequence[TrussSpec]) -> 
         if member is None:
             place = f"[[loads.case]] {case!r} points" if case else "[[loads.point]]"
             raise JobError(
-                f"{place} position: {both(point.position, 'length', specs[0].units)} is outside the {point.chord} chord; "
-                "measure from the outside of the left bearing"
+                f"{place} position: {both(point.position, 'length', specs[0].units)} is outside the {point.chord} "
+                "chord; measure from the outside of the left bearing"
             )
         force = np.array([own[k][1].force for own in given])
         out.append(PlacedPoint(action=point.action, note=point.note, case=case, member=member, x=x, force=force))

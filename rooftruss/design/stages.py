@@ -109,16 +109,7 @@ def run(family: Family, choice: Choice) -> Run:
     if isinstance(family.layout, CustomLayout):
         require_stable(truss.topology, _first(stiffness_matrix(truss, ea, ei), 2)[None])
     solution = solve(truss, ea, ei, cases)
-    forces, simplified = solution, family.timber.simplified
-    if simplified is not None:
-        require_profile(family, truss, np.maximum(depth["top chord"], depth["bottom chord"]), simplified)
-        try:
-            forces = simplified_solution(truss, ea, ei, cases, support_moments=simplified.support_moments)
-        except UnstableTrussError as error:
-            raise OutOfScopeError(
-                f"{simplified.clause}(2): the simplified analysis is for trusses that stand with every joint pinned; "
-                f'here {error}, or write [timber] truss_analysis = "frame"'
-            ) from None
+    forces = _simplified(family, truss, depth, (ea, ei), cases) or solution
     effects = unit_effects(truss, cases, forces)
     strength = np.flatnonzero(combinations.strength)
     factors = combinations.factors[strength]
@@ -152,6 +143,26 @@ def run(family: Family, choice: Choice) -> Run:
             durations,
         ),
     )
+
+
+def _simplified(
+    family: Family, truss: Truss, depth: dict[str, Array], stiffness: tuple[Array, Array], cases: LoadCases
+) -> Solution | None:
+    """Forces by the simplified analysis of the timber standard, where the job asks for it.
+
+    Raises OutOfScopeError for a truss that it is not for; depth of each group [m], stiffness EA and EI.
+    """
+    rules = family.timber.simplified
+    if rules is None:
+        return None
+    require_profile(family, truss, np.maximum(depth["top chord"], depth["bottom chord"]), rules)
+    try:
+        return simplified_solution(truss, *stiffness, cases, support_moments=rules.support_moments)
+    except UnstableTrussError as error:
+        raise OutOfScopeError(
+            f"{rules.clause}(2): the simplified analysis is for trusses that stand with every joint pinned; "
+            f'here {error}, or write [timber] truss_analysis = "frame"'
+        ) from None
 
 
 def _cases(family: Family, truss: Truss, weight: Array) -> LoadCases:

@@ -123,7 +123,7 @@ def _roof_cases(roof: Roof, site: Site, ground: float, action: str) -> list[Acti
         Value(symbol="C_t", value=C_t, kind="ratio", clause="EN 1991-1-3, 5.2(8)"),
     )
     if roof.form == MONOPITCH:
-        whole = Value(symbol="s", value=s, kind="pressure", clause=f"EN 1991-1-3, eq. ({eq}), 5.3.2(3) and Fig. 5.2")
+        whole = Value(symbol="s", value=s, kind="pressure", clause=f"EN 1991-1-3, eq. ({eq}) and 5.3.2(3)")
         return [
             ActionCase(
                 name=f"{word}, undrifted or drifted",
