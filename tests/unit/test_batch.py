@@ -182,3 +182,15 @@ def test_what_a_standard_refuses_names_the_truss():
     specs = [replace(spec, mark=f"T{k}", pitch=p, timber=timber) for k, p in enumerate((0.5, 0.55, 0.25, 0.5))]
     with pytest.raises(OutOfScopeError, match=r"^truss T2: EN 1995-1-1, 5\.4\.3\(1\)"):
         check_many(barn(), specs, [EN_SIZES])
+
+
+def test_round_off_is_no_effect_of_the_envelope():
+    # the tail of the barn hangs or stands beyond the heel under every load: the tension along it never turns
+    options = {g: (Option(find_section(size), find_grade(grade)),) for g, (size, grade) in EN_SIZES.items()}
+    choice = Choice(options=options, index={g: np.array(0) for g in EN_SIZES})
+    done = run(unbatched(family_of(barn(), [barn().trusses[0]])), choice)
+    tail = done.members.names.index("tail 1")
+    envelope = done.envelope
+    assert (envelope.compression.value[tail], envelope.compression.combination[tail]) == (0.0, -1)
+    assert envelope.tension.combination[tail] >= 0
+    assert np.all(envelope.compression.combination[[done.members.names.index(n) for n in ("top 1", "web 1")]] >= 0)
