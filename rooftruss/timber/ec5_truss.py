@@ -131,14 +131,15 @@ def notes(analysis: str, rules: TrussRules) -> Sequence[str]:
         "points of contraflexure (9.2.1(2))",
     )
     if analysis == SIMPLIFIED:
+        less, more = 1 - constant("support_moments"), rules.compression - 1
         lengths = (
             "effective length in the plane by EN 1995-1-1, 9.2.1(4): the larger of that in the bay and at the panel "
             "points beside it; a tail's end moment counts as significant"
         )
         found = (
             "simplified analysis (EN 1995-1-1, 5.4.3): axial forces with pinned joints, chords as beams on the panel "
-            "points with moments there 10 % less, compression 10 % more in the checks (9.2.1(5)); reactions follow "
-            "from it, deflections are those of the frame",
+            f"points with moments there {100 * less:.0f} % less, compression {100 * more:.0f} % more in the checks "
+            "(9.2.1(5)); reactions follow from it, deflections are those of the frame",
             "how far a bearing may reach and stand off the heel (5.4.3(1), lengths a_1 and a_2) is NOT checked: it is "
             "yours to see to",
             lengths,
